@@ -85,7 +85,21 @@ pub fn spans(lengths_m: &[f64], joints: &[Joint], axis: Axis) -> Vec<Span> {
     spans
 }
 
-/// Indices of the joints that turn about `axis`, from the head.
-pub fn axis_joints(joints: &[Joint], axis: Axis) -> Vec<usize> {
-    (0..joints.len()).filter(|&joint_idx| joints[joint_idx].has(axis)).collect()
+/// One joint's axis.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub struct AxisOf {
+    /// Joint, from 0 at the head.
+    pub joint_idx: usize,
+    /// About which it turns.
+    pub axis: Axis,
+}
+
+/// All axes of a chain's joints in the order that every list of them keeps: yaw axes from the
+/// head, then pitch axes from the head.
+pub fn joint_axes(joints: &[Joint]) -> Vec<AxisOf> {
+    let of_axis = |axis| {
+        let turning = joints.iter().enumerate().filter(move |(_, joint)| joint.has(axis));
+        turning.map(move |(joint_idx, _)| AxisOf { joint_idx, axis })
+    };
+    Axis::BOTH.into_iter().flat_map(of_axis).collect()
 }

@@ -1,1 +1,37 @@
-//! x
+//! A flight: release, equations of motion, integration, landing, and what it reports.
+//!
+//! Joints follow their commands exactly; the chain as a whole is free. The wake of one bend on the
+//! next, unsteady lag, finite span, elastic links and added mass are missing. Nothing here opens a
+//! file or prints. A flight is a pure function of its inputs: the same inputs give the same bits.
+//!
+//! World frame: x along the launch azimuth, y left, z up, origin on the floor under the release
+//! point. Roll is positive right side down, pitch positive nose up, yaw positive nose left. SI
+//! units and radians.
+
+mod attitude;
+mod bands;
+mod doubts;
+mod equations;
+mod error;
+mod flying;
+mod glider;
+mod loads;
+mod release;
+mod state;
+mod summary;
+mod trace;
+mod trajectory;
+
+pub use attitude::Attitude;
+pub use bands::{Bands, bands};
+pub use doubts::{Doubt, JointPeak, doubts, joint_peaks};
+pub use equations::Equations;
+pub use error::FlightError;
+pub use flying::{End, Flight, Settings, fly};
+pub use glider::{Glider, Launch};
+pub use loads::Wrench;
+pub use release::release;
+pub use state::State;
+pub use summary::{Summary, summary};
+pub use trace::{TraceRow, trace};
+pub use trajectory::Trajectory;

@@ -1,0 +1,288 @@
+use nalgebra::Matrix3;
+use undulift_chain::{Inertial, LANES, Number, Triple};
+use wide::f64x4;
+
+use crate::{FourFrames, Frames, Mechanics};
+
+/// A symmetric matrix.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct Symmetric<T> {
+    /// Diagonal.
+    pub xx: T,
+    /// Diagonal.
+    pub yy: T,
+    /// Diagonal.
+    pub zz: T,
+    /// Off the diagonal.
+    pub xy: T,
+    /// Off the diagonal.
+    pub xz: T,
+    /// Off the diagonal.
+    pub yz: T,
+}
+
+/// The whole chain about its centre of mass, with the head segment held still; root axes.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Centroidal {
+    /// Centre of mass, m.
+    pub centre_m: Triple<f64>,
+    /// Its velocity, m/s.
+    pub velocity_m_s: Triple<f64>,
+    /// Moments of inertia about the centre of mass, kg·m².
+    pub inertia_kg_m2: Symmetric<f64>,
+    /// Angular momentum about the centre of mass, kg·m²/s.
+    pub momentum_kg_m2_s: Triple<f64>,
+}
+
+/// Masses of four neighbouring segments, side by side; lanes past the tail have none.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(crate) struct FourInertials {
+    mass_kg: f64x4,
+    centre_m: Triple<f64x4>,
+    /// Second moments ∫r rᵀ dm about the segment's own centre, segment axes.
+    second: Symmetric<f64x4>,
+    /// Whether any second moment stands off the diagonal.
+    has_products: bool,
+}
+
+impl FourInertials {
+    pub(crate) fn new(inertials: &[Inertial]) -> Self {
+        let lanes = |value: &dyn Fn(&Inertial) -> f64| {
+            let mut lanes = [0.0; LANES];
+            for (lane, inertial) in lanes.iter_mut().zip(inertials) {
+                *lane = value(inertial);
+            }
+            f64x4::new(lanes)
+        };
+        // J = tr(S)·1 − S, so S = ½tr(J)·1 − J.
+        let second = |i: usize, j: usize| {
+            lanes(&|inertial| {
+                let inertia = &inertial.inertia_kg_m2;
+                let half_trace = if i == j { 0.5 * inertia.trace() } else { 0.0 };
+                half_trace - inertia[(i, j)]
+            })
+        };
+        let products = [second(0, 1), second(0, 2), second(1, 2)];
+        Self {
+            mass_kg: lanes(&|inertial| inertial.mass_kg),
+            centre_m: Triple {
+                x: lanes(&|inertial| inertial.centre_m.x),
+                y: lanes(&|inertial| inertial.centre_m.y),
+                z: lanes(&|inertial| inertial.centre_m.z),
+            },
+            second: Symmetric {
+                xx: second(0, 0),
+                yy: second(1, 1),
+                zz: second(2, 2),
+                xy: products[0],
+                xz: products[1],
+                yz: products[2],
+            },
+            has_products: products.iter().any(|lanes| lanes.to_array() != [0.0; LANES]),
+        }
+    }
+
+    /// R S Rᵀ: second moments about the segments' centres in root axes.
+    #[inline(always)]
+    fn turned(&self, at: &FourFrames) -> Symmetric<f64x4> {
+        let s = &self.second;
+        // The three axes' outer products add up to 1, which saves the third.
+        let along = at.x.times(s.xx - s.zz);
+        let across = at.y.times(s.yy - s.zz);
+        let mut turned = Symmetric {
+            xx: along.x * at.x.x + across.x * at.y.x + s.zz,
+            yy: along.y * at.x.y + across.y * at.y.y + s.zz,
+            zz: along.z * at.x.z + across.z * at.y.z + s.zz,
+            xy: along.x * at.x.y + across.x * at.y.y,
+            xz: along.x * at.x.z + across.x * at.y.z,
+            yz: along.y * at.x.z + across.y * at.y.z,
+        };
+        if self.has_products {
+            // xy(XYᵀ + YXᵀ) + xz(XZᵀ + ZXᵀ) + yz(YZᵀ + ZYᵀ) = sym of X aᵀ + Y bᵀ.
+            let a = at.y.times(s.xy) + at.z.times(s.xz);
+            let b = at.z.times(s.yz);
+            turned = Symmetric {
+                xx: turned.xx + (at.x.x * a.x + at.y.x * b.x) * f64x4::splat(2.0),
+                yy: turned.yy + (at.x.y * a.y + at.y.y * b.y) * f64x4::splat(2.0),
+                zz: turned.zz + (at.x.z * a.z + at.y.z * b.z) * f64x4::splat(2.0),
+                xy: turned.xy + at.x.x * a.y + at.x.y * a.x + at.y.x * b.y + at.y.y * b.x,
+                xz: turned.xz + at.x.x * a.z + at.x.z * a.x + at.y.x * b.z + at.y.z * b.x,
+                yz: turned.yz + at.x.y * a.z + at.x.z * a.y + at.y.y * b.z + at.y.z * b.y,
+            };
+        }
+        turned
+    }
+}
+
+/// Sums over segments, about the root frame's origin.
+struct Sums {
+    moment: Triple<f64x4>,
+    momentum: Triple<f64x4>,
+    second: Symmetric<f64x4>,
+    angular_momentum: Triple<f64x4>,
+}
+
+impl Mechanics {
+    /// The chain's mass, kg.
+    pub fn mass_kg(&self) -> f64 {
+        self.mass_kg
+    }
+
+    /// Centroidal inertia and momentum of these frames.
+    ///
+    /// # Source
+    ///
+    /// Featherstone, *Rigid Body Dynamics Algorithms*, 2008, ch. 2; Orin, Goswami, Lee,
+    /// *Centroidal dynamics of a humanoid robot*, Autonomous Robots 35, 2013.
+    #[inline]
+    pub fn centroidal(&self, frames: &Frames) -> Centroidal {
+        let mut sums = Sums {
+            moment: Triple::zero(),
+            momentum: Triple::zero(),
+            second: Symmetric::default(),
+            angular_momentum: Triple::zero(),
+        };
+        for (of, at) in self.inertials.iter().zip(&frames.fours) {
+            sums.add(of, at);
+        }
+        let mass_kg = self.mass_kg;
+        let moment = sums.moment.over_lanes();
+        let momentum = sums.momentum.over_lanes();
+        let centre_m = moment.times(1.0 / mass_kg);
+        let second = sums.second.over_lanes();
+        let about_centre = Symmetric {
+            xx: second.xx - moment.x * centre_m.x,
+            yy: second.yy - moment.y * centre_m.y,
+            zz: second.zz - moment.z * centre_m.z,
+            xy: second.xy - moment.x * centre_m.y,
+            xz: second.xz - moment.x * centre_m.z,
+            yz: second.yz - moment.y * centre_m.z,
+        };
+        Centroidal {
+            centre_m,
+            velocity_m_s: momentum.times(1.0 / mass_kg),
+            inertia_kg_m2: about_centre.moments_of_inertia(),
+            momentum_kg_m2_s: sums.angular_momentum.over_lanes() - centre_m.cross(momentum),
+        }
+    }
+
+    /// Kinetic energy of the motion about the centre of mass, J.
+    ///
+    /// - `angular_velocity_rad_s`: of the head segment, root axes
+    pub fn energy_about_centre_j(
+        &self,
+        frames: &Frames,
+        centroidal: &Centroidal,
+        angular_velocity_rad_s: Triple<f64>,
+    ) -> f64 {
+        let (centre_m, drift_m_s) =
+            (centroidal.centre_m.in_lanes(), centroidal.velocity_m_s.in_lanes());
+        let head_rad_s = angular_velocity_rad_s.in_lanes();
+        let mut twice_j = f64x4::splat(0.0);
+        for (of, at) in self.inertials.iter().zip(&frames.fours) {
+            let arm_m = of.arm_m(at);
+            let velocity_m_s = at.front_velocity_m_s
+                + at.angular_velocity_rad_s.cross(arm_m)
+                + head_rad_s.cross(at.front_m + arm_m - centre_m)
+                - drift_m_s;
+            let spin_rad_s = head_rad_s + at.angular_velocity_rad_s;
+            let own = of.turned(at).moments_of_inertia().times(spin_rad_s);
+            twice_j += of.mass_kg * velocity_m_s.dot(velocity_m_s) + spin_rad_s.dot(own);
+        }
+        0.5 * twice_j.reduce_add()
+    }
+}
+
+impl FourInertials {
+    /// From the front end to the centre of mass in root axes, m.
+    #[inline(always)]
+    fn arm_m(&self, at: &FourFrames) -> Triple<f64x4> {
+        at.x.times(self.centre_m.x) + at.y.times(self.centre_m.y) + at.z.times(self.centre_m.z)
+    }
+}
+
+impl Sums {
+    #[inline(always)]
+    fn add(&mut self, of: &FourInertials, at: &FourFrames) {
+        let arm_m = of.arm_m(at);
+        let place_m = at.front_m + arm_m;
+        let spin_rad_s = at.angular_velocity_rad_s;
+        let velocity_m_s = at.front_velocity_m_s + spin_rad_s.cross(arm_m);
+        let moment = place_m.times(of.mass_kg);
+        let own = of.turned(at);
+        self.moment = self.moment + moment;
+        self.momentum = self.momentum + velocity_m_s.times(of.mass_kg);
+        self.angular_momentum = self.angular_momentum
+            + moment.cross(velocity_m_s)
+            + own.moments_of_inertia().times(spin_rad_s);
+        let second = &mut self.second;
+        second.xx += own.xx + moment.x * place_m.x;
+        second.yy += own.yy + moment.y * place_m.y;
+        second.zz += own.zz + moment.z * place_m.z;
+        second.xy += own.xy + moment.x * place_m.y;
+        second.xz += own.xz + moment.x * place_m.z;
+        second.yz += own.yz + moment.y * place_m.z;
+    }
+}
+
+impl<T: Number> Symmetric<T> {
+    /// tr(S)·1 − S: moments of inertia from second moments.
+    #[inline(always)]
+    pub fn moments_of_inertia(self) -> Self {
+        Self {
+            xx: self.yy + self.zz,
+            yy: self.xx + self.zz,
+            zz: self.xx + self.yy,
+            xy: -self.xy,
+            xz: -self.xz,
+            yz: -self.yz,
+        }
+    }
+
+    /// Matrix times vector.
+    #[inline(always)]
+    pub fn times(&self, v: Triple<T>) -> Triple<T> {
+        Triple::new(
+            self.xx * v.x + self.xy * v.y + self.xz * v.z,
+            self.xy * v.x + self.yy * v.y + self.yz * v.z,
+            self.xz * v.x + self.yz * v.y + self.zz * v.z,
+        )
+    }
+}
+
+impl Symmetric<f64x4> {
+    fn over_lanes(self) -> Symmetric<f64> {
+        Symmetric {
+            xx: self.xx.reduce_add(),
+            yy: self.yy.reduce_add(),
+            zz: self.zz.reduce_add(),
+            xy: self.xy.reduce_add(),
+            xz: self.xz.reduce_add(),
+            yz: self.yz.reduce_add(),
+        }
+    }
+}
+
+impl Symmetric<f64> {
+    /// The vector that this matrix takes to `right`; the matrix has to be regular.
+    #[inline]
+    pub fn solve(&self, right: Triple<f64>) -> Triple<f64> {
+        let cofactors = Symmetric {
+            xx: self.yy * self.zz - self.yz * self.yz,
+            yy: self.xx * self.zz - self.xz * self.xz,
+            zz: self.xx * self.yy - self.xy * self.xy,
+            xy: self.xz * self.yz - self.xy * self.zz,
+            xz: self.xy * self.yz - self.xz * self.yy,
+            yz: self.xy * self.xz - self.xx * self.yz,
+        };
+        let determinant = self.xx * cofactors.xx + self.xy * cofactors.xy + self.xz * cofactors.xz;
+        cofactors.times(right).times(1.0 / determinant)
+    }
+
+    /// All nine entries.
+    pub fn matrix(&self) -> Matrix3<f64> {
+        Matrix3::new(
+            self.xx, self.xy, self.xz, self.xy, self.yy, self.yz, self.xz, self.yz, self.zz,
+        )
+    }
+}

@@ -1,0 +1,267 @@
+//! Equations of motion of a chain whose joints follow their commands.
+
+use nalgebra::{Matrix3, Vector3};
+use undulift_aero::STANDARD_GRAVITY_M_S2;
+use undulift_chain::{LANES, Triple};
+use undulift_dynamics::{Centroidal, Frames, Mechanics};
+use undulift_gait::{Commands, Instant, Motion};
+use wide::f64x4;
+
+use crate::attitude::{BodyFrame, BodyRoom};
+use crate::loads::{AirLoads, StripAir, Through};
+use crate::state::{Scaled, Units};
+use crate::{Attitude, FlightError, Glider, State, Wrench};
+
+/// A glider laid out for the inner loop, with the room for one evaluation.
+#[derive(Debug, Clone)]
+pub struct Equations {
+    commands: Commands,
+    mechanics: Mechanics,
+    loads: AirLoads,
+    body: BodyFrame,
+    boxes: Vec<FourBoxes>,
+    n_segments: usize,
+    wind_world_m_s: Vector3<f64>,
+    units: Units,
+    room: Room,
+}
+
+#[derive(Debug, Clone)]
+struct Room {
+    motion: Motion,
+    frames: Frames,
+    body: BodyRoom,
+}
+
+/// Boxes of four neighbouring segments: half their sides, and what lifts lanes past the tail out of
+/// the way.
+#[derive(Debug, Clone, Copy)]
+struct FourBoxes {
+    half_length_m: f64x4,
+    half_width_m: f64x4,
+    half_thickness_m: f64x4,
+    absent_m: f64x4,
+}
+
+/// The shape at one instant, and how it turns for a given momentum.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Moving {
+    pub(crate) centroidal: Centroidal,
+    pub(crate) head_to_world: Matrix3<f64>,
+    pub(crate) angular_velocity_rad_s: Triple<f64>,
+}
+
+impl Equations {
+    /// Lays out a glider.
+    ///
+    /// # Errors
+    ///
+    /// [`FlightError::Gait`] if the gait doesn't fit the chain.
+    pub fn new(glider: &Glider) -> Result<Self, FlightError> {
+        let commands = Commands::new(&glider.gait, &glider.chain)?;
+        let mechanics = Mechanics::new(&glider.chain);
+        let body = BodyFrame::new(&glider.chain);
+        let n_segments = glider.chain.n_segments();
+        let room =
+            Room { motion: commands.room(), frames: mechanics.room(), body: body.room(n_segments) };
+        Ok(Self {
+            commands,
+            mechanics,
+            loads: AirLoads::new(glider),
+            body,
+            boxes: glider.chain.segments().chunks(LANES).map(FourBoxes::new).collect(),
+            n_segments,
+            wind_world_m_s: glider.wind_world_m_s,
+            units: Units::of(&glider.chain),
+            room,
+        })
+    }
+
+    /// What the joints do.
+    pub fn commands(&self) -> &Commands {
+        &self.commands
+    }
+
+    pub(crate) fn units(&self) -> &Units {
+        &self.units
+    }
+
+    pub(crate) fn wind_world_m_s(&self) -> Vector3<f64> {
+        self.wind_world_m_s
+    }
+
+    /// Joint commands of an instant: angles and rates, yaw axes first.
+    pub fn motion(&mut self, at: Instant) -> &Motion {
+        self.commands.rates(at, &mut self.room.motion);
+        &self.room.motion
+    }
+
+    /// First stage: joint commands, frames and centroidal sums of an instant.
+    #[inline]
+    pub fn shape(&mut self, at: Instant) -> Centroidal {
+        self.commands.rates(at, &mut self.room.motion);
+        let motion = &self.room.motion;
+        self.mechanics.frames(&motion.angles_rad, &motion.rates_rad_s, &mut self.room.frames);
+        self.mechanics.centroidal(&self.room.frames)
+    }
+
+    /// Frames as the last call of [`Equations::shape`] left them.
+    pub(crate) fn frames(&self) -> &Frames {
+        &self.room.frames
+    }
+
+    /// The shape of an instant, turning as a state's momentum makes it.
+    #[inline]
+    pub(crate) fn moving(&mut self, at: Instant, state: &State) -> Moving {
+        let centroidal = self.shape(at);
+        let head_to_world = *state.head_to_world.to_rotation_matrix().matrix();
+        let momentum: Triple<f64> = head_to_world.tr_mul(&state.momentum_kg_m2_s).into();
+        let angular_velocity_rad_s =
+            centroidal.inertia_kg_m2.solve(momentum - centroidal.momentum_kg_m2_s);
+        Moving { centroidal, head_to_world, angular_velocity_rad_s }
+    }
+
+    #[inline]
+    fn through(&self, moving: &Moving, state: &State) -> Through {
+        let velocity =
+            moving.head_to_world.tr_mul(&(state.velocity_m_s - self.wind_world_m_s)).into();
+        Through::new(&moving.centroidal, velocity, moving.angular_velocity_rad_s)
+    }
+
+    /// Air loads at an instant, moment about the centre of mass; world axes.
+    pub fn air_loads(&mut self, at: Instant, state: &State) -> Wrench {
+        let moving = self.moving(at, state);
+        self.air_loads_on(&moving, state)
+    }
+
+    #[inline]
+    fn air_loads_on(&self, moving: &Moving, state: &State) -> Wrench {
+        let about_origin = self.loads.wrench(&self.room.frames, &self.through(moving, state));
+        let force = about_origin.force_n;
+        let moment = about_origin.moment_nm - moving.centroidal.centre_m.cross(force);
+        let to_world = |v: Triple<f64>| (moving.head_to_world * Vector3::from(v)).into();
+        Wrench { force_n: to_world(force), moment_nm: to_world(moment) }
+    }
+
+    /// What each strip meets at an instant.
+    pub(crate) fn strips(&mut self, at: Instant, state: &State, mut each: impl FnMut(StripAir)) {
+        let moving = self.moving(at, state);
+        let through = self.through(&moving, state);
+        self.loads.strips(&self.room.frames, &through).for_each(&mut each);
+    }
+
+    /// Time derivative of the scaled state.
+    #[inline]
+    pub(crate) fn derivative(&mut self, at: Instant, scaled: &Scaled, rates: &mut Scaled) {
+        let state = self.units.state(scaled);
+        let moving = self.moving(at, &state);
+        let loads = self.air_loads_on(&moving, &state);
+        let units = &self.units;
+        let mass_kg = self.mechanics.mass_kg();
+        let q = state.head_to_world.quaternion();
+        let w = moving.angular_velocity_rad_s;
+        let place = state.velocity_m_s / units.length_m;
+        let force = loads.force_n;
+        let accelerate = 1.0 / (mass_kg * units.speed_m_s);
+        let twist = 1.0 / units.momentum_kg_m2_s;
+        *rates = Scaled::from([
+            place.x,
+            place.y,
+            place.z,
+            -0.5 * (q.i * w.x + q.j * w.y + q.k * w.z),
+            0.5 * (q.w * w.x + q.j * w.z - q.k * w.y),
+            0.5 * (q.w * w.y + q.k * w.x - q.i * w.z),
+            0.5 * (q.w * w.z + q.i * w.y - q.j * w.x),
+            force.x * accelerate,
+            force.y * accelerate,
+            force.z * accelerate - STANDARD_GRAVITY_M_S2 / units.speed_m_s,
+            loads.moment_nm.x * twist,
+            loads.moment_nm.y * twist,
+            loads.moment_nm.z * twist,
+        ]);
+    }
+
+    /// Time derivatives of place (m/s), quaternion (w, x, y, z), velocity (m/s²) and momentum
+    /// (N·m) at an instant, in that order.
+    pub fn rates(&mut self, at: Instant, state: &State) -> [f64; 13] {
+        let mut rates = Scaled::zeros();
+        self.derivative(at, &self.units.scaled(state), &mut rates);
+        let units = &self.units;
+        std::array::from_fn(|k| {
+            rates[k]
+                * match k {
+                    0..3 => units.length_m,
+                    3..7 => 1.0,
+                    7..10 => units.speed_m_s,
+                    _ => units.momentum_kg_m2_s,
+                }
+        })
+    }
+
+    /// Body axes to root axes at an instant; leaves the frames of that instant behind.
+    pub(crate) fn body_in_root(&mut self, at: Instant) -> Matrix3<f64> {
+        self.commands.rates(at, &mut self.room.motion);
+        let motion = &self.room.motion;
+        self.mechanics.frames(&motion.angles_rad, &motion.rates_rad_s, &mut self.room.frames);
+        self.body_of_frames(at)
+    }
+
+    /// Body axes to root axes for the frames as they were left, which are of this instant.
+    pub(crate) fn body_of_frames(&mut self, at: Instant) -> Matrix3<f64> {
+        let Room { motion, frames, body } = &mut self.room;
+        self.body.in_root(&self.commands, at, self.n_segments, frames, motion, body)
+    }
+
+    /// How the body lies at an instant; leaves the frames of that instant behind.
+    pub fn attitude(&mut self, at: Instant, state: &State) -> Attitude {
+        let body_to_root = self.body_in_root(at);
+        let head_to_world = state.head_to_world.to_rotation_matrix();
+        Attitude { body_to_world: head_to_world.matrix() * body_to_root }
+    }
+
+    /// Height of the lowest corner above the ground's z = 0 at an instant, m.
+    pub fn lowest_corner_m(&mut self, at: Instant, state: &State) -> f64 {
+        let centroidal = self.shape(at);
+        let up: Triple<f64> = state.head_to_world.inverse_transform_vector(&Vector3::z()).into();
+        let lanes = up.in_lanes();
+        let lowest = self.boxes.iter().zip(&self.room.frames.fours).fold(
+            f64x4::splat(f64::INFINITY),
+            |lowest, (boxes, at)| {
+                let along = at.x.dot(lanes);
+                let corner = at.front_m.dot(lanes)
+                    - boxes.half_length_m * (along + along.abs())
+                    - boxes.half_width_m * at.y.dot(lanes).abs()
+                    - boxes.half_thickness_m * at.z.dot(lanes).abs()
+                    + boxes.absent_m;
+                lowest.fast_min(corner)
+            },
+        );
+        let lowest = lowest.to_array().into_iter().fold(f64::INFINITY, f64::min);
+        state.place_m.z + lowest - centroidal.centre_m.dot(up)
+    }
+
+    /// Kinetic energy of the whole chain at an instant, undulation and spin included, J.
+    pub fn kinetic_energy_j(&mut self, at: Instant, state: &State) -> f64 {
+        let moving = self.moving(at, state);
+        0.5 * self.mechanics.mass_kg() * state.velocity_m_s.norm_squared()
+            + self.mechanics.energy_about_centre_j(
+                &self.room.frames,
+                &moving.centroidal,
+                moving.angular_velocity_rad_s,
+            )
+    }
+}
+
+impl FourBoxes {
+    fn new(segments: &[undulift_chain::Segment]) -> Self {
+        let lanes = |value: &dyn Fn(&undulift_chain::Segment) -> f64, absent: f64| {
+            f64x4::new(std::array::from_fn(|lane| segments.get(lane).map_or(absent, value)))
+        };
+        Self {
+            half_length_m: lanes(&|segment| segment.length_m / 2.0, 0.0),
+            half_width_m: lanes(&|segment| segment.width_m / 2.0, 0.0),
+            half_thickness_m: lanes(&|segment| segment.thickness_m / 2.0, 0.0),
+            absent_m: lanes(&|_| 0.0, f64::INFINITY),
+        }
+    }
+}

@@ -1,0 +1,56 @@
+use undulift_chain::ChainError;
+use undulift_gait::GaitError;
+
+/// Why a flight can't be computed.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+#[non_exhaustive]
+pub enum FlightError {
+    /// The gait doesn't fit the chain.
+    #[error(transparent)]
+    Gait(#[from] GaitError),
+    /// The chain can't be built.
+    #[error(transparent)]
+    Chain(#[from] ChainError),
+    /// Released with a corner on or below the floor.
+    #[error("at release the lowest corner is {lowest_m:.3} m above the floor; raise the release height by more than {:.3} m", -lowest_m)]
+    ReleasedOnFloor {
+        /// Height of the lowest corner above the floor or the catch, m.
+        lowest_m: f64,
+    },
+    /// Released on its back.
+    #[error(
+        "at release the body is not upright: its back points {tilt_deg:.1}° away from the vertical, 90° or more"
+    )]
+    ReleasedInverted {
+        /// Angle between the body's dorsal axis and the vertical, degrees.
+        tilt_deg: f64,
+    },
+    /// A setting that can't be used.
+    #[error("{quantity} is {value}, but must be {allowed}")]
+    Setting {
+        /// Which.
+        quantity: &'static str,
+        /// What was given.
+        value: f64,
+        /// What could be.
+        allowed: &'static str,
+    },
+    /// The integrator gave up: motion faster than any step it can take.
+    #[error(
+        "the motion became too fast to follow at t = {time_s:.6} s; look for extreme speeds, tiny masses or a loose tolerance"
+    )]
+    StepTooSmall {
+        /// Time reached, s.
+        time_s: f64,
+    },
+    /// The bound on steps was met.
+    #[error(
+        "gave up after {steps} steps at t = {time_s:.6} s; loosen the tolerance or shorten the flight"
+    )]
+    TooManySteps {
+        /// Steps taken.
+        steps: u32,
+        /// Time reached, s.
+        time_s: f64,
+    },
+}

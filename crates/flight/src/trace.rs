@@ -1,0 +1,32 @@
+use crate::{Attitude, Flight, State};
+
+/// One output time of a flight.
+#[derive(Debug, Clone, PartialEq)]
+pub struct TraceRow {
+    /// After release, s.
+    pub time_s: f64,
+    /// Place, attitude of the head, velocity and momentum.
+    pub state: State,
+    /// How the body lies.
+    pub attitude: Attitude,
+    /// Joint angles, rad: yaw axes from the head, then pitch axes from the head.
+    pub angles_rad: Vec<f64>,
+}
+
+/// A flight at equal steps of time and at its end.
+///
+/// - `every_s`: between rows; above 0
+pub fn trace(flight: &mut Flight, every_s: f64) -> impl Iterator<Item = TraceRow> + '_ {
+    // A last whole step that falls on the end, but for rounding, is the end.
+    let whole = (flight.time_s / every_s - 1e-9).floor() as u64;
+    let end_s = flight.time_s;
+    let times_s = (0..=whole).map(move |row| row as f64 * every_s).chain([end_s]);
+    times_s.map(move |time_s| {
+        let state = flight.trajectory.state(time_s);
+        let at = flight.trajectory.instant(time_s);
+        let attitude = flight.equations.attitude(at, &state);
+        let n_axes = flight.equations.commands().axes().len();
+        let angles_rad = flight.equations.motion(at).angles_rad[..n_axes].to_vec();
+        TraceRow { time_s, state, attitude, angles_rad }
+    })
+}
