@@ -2,6 +2,8 @@
 
 use std::f64::consts::FRAC_PI_2;
 
+use wide::{f64x2, f64x4};
+
 use crate::pchip::hermite_cubic;
 use crate::section::{Row, cylinder_drag, plate};
 use crate::{Section, SectionKind, SectionTable};
@@ -19,7 +21,7 @@ const CYLINDER_CELLS: usize = 1024;
 ///
 /// t = −u_z/(|u_y| + |u_z|) = sin α/(cos α + |sin α|),
 ///
-/// so that no trigonometry is left in the inner loop. Slopes in α stay continuous, as
+/// so that no arctangent is left in the inner loop. Slopes in α stay continuous, as
 /// dα/dt = (cos α + |sin α|)² is, and t = 0 is an end of two cells.
 #[derive(Debug, Clone, PartialEq)]
 pub struct PreparedSection {
@@ -30,11 +32,12 @@ pub struct PreparedSection {
 #[derive(Debug, Clone, PartialEq)]
 enum Lookup {
     Incidence {
-        /// Logarithms of the rows' Reynolds numbers with the inverse of the step to the next.
-        rows: Vec<(f64, f64)>,
-        /// Lift and drag side by side, constant term first: rows × cells.
-        cells: Vec<[[f64; 2]; 4]>,
-        /// Tabulated moment: rows × cells, or empty.
+        /// Where a Reynolds number stands among the rows.
+        rows: RowScale,
+        /// Lift and drag side by side, constant term first: (rows + 1) × (cells + 1), so that both
+        /// upper ends have a neighbour.
+        cells: Vec<[f64x2; 4]>,
+        /// Tabulated moment, shape as `cells`, or empty.
         moment: Vec<[f64; 4]>,
     },
     Reynolds {
@@ -42,13 +45,104 @@ enum Lookup {
     },
 }
 
+/// A place in a table of incidence: the cell and how far into it.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Place {
+    cell: usize,
+    into: f64,
+}
+
+/// Cell and fraction of four places counted in cells, at or above 0.
+///
+/// Without a branch, and without the checks of a conversion to an integer: adding [`ROUNDING`]
+/// leaves the whole number in the last bits.
+#[inline(always)]
+fn split(places: f64x4) -> ([u32; 4], f64x4) {
+    let rounding = f64x4::splat(ROUNDING);
+    let rounded = (places - f64x4::splat(0.5)) + rounding;
+    (rounded.to_array().map(|lane| lane.to_bits() as u32), places - (rounded - rounding))
+}
+
+/// 1.5·2⁵²: a double of this size has no bits left for a fraction.
+const ROUNDING: f64 = 6_755_399_441_055_744.0;
+
+/// Places of four values of the stand-in.
+#[inline(always)]
+pub(crate) fn places(stand_in: f64x4) -> [Place; 4] {
+    let half = f64x4::splat((INCIDENCE_CELLS / 2) as f64);
+    let (cells, into) = split((stand_in * half + half).fast_max(f64x4::splat(0.0)));
+    let into = into.to_array();
+    std::array::from_fn(|lane| Place {
+        cell: (cells[lane] as usize).min(INCIDENCE_CELLS),
+        into: into[lane],
+    })
+}
+
+/// The rows' places on the square of the Reynolds number, piecewise linear over cells of equal
+/// leading bits, so that no logarithm is left in the inner loop.
+#[derive(Debug, Clone, PartialEq)]
+struct RowScale {
+    first_cell: u64,
+    /// Place, counted from the first row, is the first plus the second times the square.
+    cells: Vec<[f64; 2]>,
+    last_row: usize,
+}
+
+/// Bits of a double behind those that name a cell: 256 cells to a doubling of the square. A
+/// straight line misses the logarithm by 2e-6 at most.
+const CELL_SHIFT: u32 = 44;
+
+impl RowScale {
+    /// - `reynolds`: of the rows, rising
+    fn new(reynolds: &[f64]) -> Self {
+        let (first, last) = (reynolds[0], reynolds[reynolds.len() - 1]);
+        let place = |square: f64| -> f64 {
+            let steps = reynolds.windows(2).map(|pair| {
+                let share = (square.sqrt() / pair[0]).ln() / (pair[1] / pair[0]).ln();
+                share.clamp(0.0, 1.0)
+            });
+            steps.sum()
+        };
+        // A cell more on each side, in which nothing changes, stands for all that lies beyond.
+        let first_cell = (first * first).to_bits().wrapping_shr(CELL_SHIFT) - 1;
+        let last_cell = (last * last).to_bits().wrapping_shr(CELL_SHIFT) + 1;
+        let cells = (first_cell..=last_cell)
+            .map(|cell| {
+                let [start, end] = [cell, cell + 1].map(|cell| f64::from_bits(cell << CELL_SHIFT));
+                let slope = (place(end) - place(start)) / (end - start);
+                [place(start) - slope * start, slope]
+            })
+            .collect();
+        Self { first_cell, cells, last_row: reynolds.len() - 1 }
+    }
+
+    /// The row below and the weight of the row after it.
+    #[inline(always)]
+    fn row(&self, reynolds_squared: f64) -> (usize, f64) {
+        let cell = (reynolds_squared.to_bits() >> CELL_SHIFT).saturating_sub(self.first_cell);
+        let [constant, slope] = self.cells[(cell as usize).min(self.cells.len() - 1)];
+        let place = constant + slope * reynolds_squared;
+        let rounded = (place - 0.5) + ROUNDING;
+        let row = (rounded.to_bits() as u32 as usize).min(self.last_row);
+        (row, place - (rounded - ROUNDING))
+    }
+}
+
 impl PreparedSection {
+    /// C_l, C_d and the tabulated C_m (0 where none is) at an incidence in −π/2…π/2.
+    pub fn at(&self, alpha_rad: f64, reynolds: f64) -> [f64; 3] {
+        let stand_in = alpha_rad.sin() / (alpha_rad.cos() + alpha_rad.sin().abs());
+        let [place, ..] = places(f64x4::splat(stand_in));
+        let [lift, drag] = self.lift_drag(place, reynolds * reynolds).to_array();
+        [lift, drag, self.moment(place, reynolds * reynolds)]
+    }
+
     /// Tabulates a section.
     pub fn new(section: &Section) -> Self {
         let table = match &section.kind {
             SectionKind::Plate => Lookup::Incidence {
-                rows: vec![(0.0, 0.0)],
-                cells: incidence_cells(plate),
+                rows: RowScale::new(&[1.0]),
+                cells: doubled(incidence_cells(plate)),
                 moment: Vec::new(),
             },
             SectionKind::Round => Lookup::Reynolds { drag: cylinder_cells() },
@@ -62,97 +156,94 @@ impl PreparedSection {
         self.lever
     }
 
-    /// Whether coefficients depend on the Reynolds number.
-    pub fn needs_reynolds(&self) -> bool {
-        match &self.table {
-            Lookup::Incidence { rows, .. } => rows.len() > 1,
-            Lookup::Reynolds { .. } => true,
-        }
+    /// Whether the moment is tabulated rather than made from the pressure centre.
+    pub fn has_moment(&self) -> bool {
+        matches!(&self.table, Lookup::Incidence { moment, .. } if !moment.is_empty())
     }
 
-    /// C_l, C_d and the tabulated C_m (0 where none is).
+    /// C_l and C_d side by side.
     ///
-    /// - `stand_in`: t, from −1 to 1
-    /// - `ln_reynolds`: natural logarithm of the Reynolds number on the chord
-    #[inline]
-    pub fn at(&self, stand_in: f64, ln_reynolds: f64) -> [f64; 3] {
+    /// - `place`: among the cells of incidence
+    /// - `reynolds_squared`: of the Reynolds number on the chord
+    #[inline(always)]
+    pub(crate) fn lift_drag(&self, place: Place, reynolds_squared: f64) -> f64x2 {
         match &self.table {
-            Lookup::Incidence { rows, cells, moment } => {
-                let place = (stand_in + 1.0) * (INCIDENCE_CELLS / 2) as f64;
-                let cell = (place as i32).clamp(0, INCIDENCE_CELLS as i32 - 1) as usize;
-                let f = place - cell as f64;
-                let (row, weight) = row_of(rows, ln_reynolds);
-                let first = row * INCIDENCE_CELLS + cell;
-                let [mut lift, mut drag] = pair_at(&cells[first], f);
-                if rows.len() > 1 {
-                    let [next_lift, next_drag] = pair_at(&cells[first + INCIDENCE_CELLS], f);
-                    lift += weight * (next_lift - lift);
-                    drag += weight * (next_drag - drag);
-                }
-                let mut about_middle = 0.0;
-                if !moment.is_empty() {
-                    about_middle = cubic_at(&moment[first], f);
-                    if rows.len() > 1 {
-                        let next = cubic_at(&moment[first + INCIDENCE_CELLS], f);
-                        about_middle += weight * (next - about_middle);
-                    }
-                }
-                [lift, drag, about_middle]
+            Lookup::Incidence { rows, cells, .. } => {
+                let (first, weight) = cell_of(rows, place, reynolds_squared);
+                let here = pair_at(&cells[first], place.into);
+                let next = pair_at(&cells[first + INCIDENCE_CELLS + 1], place.into);
+                here + f64x2::splat(weight) * (next - here)
             }
-            Lookup::Reynolds { drag } => {
-                let [low, high] = CYLINDER_LN_REYNOLDS;
-                let place =
-                    (ln_reynolds.clamp(low, high) - low) * (CYLINDER_CELLS as f64 / (high - low));
-                let cell = (place as i32).clamp(0, CYLINDER_CELLS as i32 - 1) as usize;
-                [0.0, cubic_at(&drag[cell], place - cell as f64), 0.0]
+            Lookup::Reynolds { drag } => f64x2::new([0.0, drag_at(drag, reynolds_squared)]),
+        }
+    }
+
+    /// Tabulated C_m; 0 where none is.
+    #[inline]
+    pub(crate) fn moment(&self, place: Place, reynolds_squared: f64) -> f64 {
+        match &self.table {
+            Lookup::Incidence { rows, moment, .. } if !moment.is_empty() => {
+                let (first, weight) = cell_of(rows, place, reynolds_squared);
+                let here = cubic_at(&moment[first], place.into);
+                let next = cubic_at(&moment[first + INCIDENCE_CELLS + 1], place.into);
+                here + weight * (next - here)
             }
+            _ => 0.0,
         }
     }
 }
 
-/// Row below a Reynolds number, at most the last but one, and the weight of the row after it.
-#[inline]
-fn row_of(rows: &[(f64, f64)], ln_reynolds: f64) -> (usize, f64) {
-    if rows.len() == 1 {
-        return (0, 0.0);
-    }
-    let place: f64 = rows[..rows.len() - 1]
-        .iter()
-        .map(|&(start, per_step)| ((ln_reynolds - start) * per_step).clamp(0.0, 1.0))
-        .sum();
-    let row = (place as i32).clamp(0, rows.len() as i32 - 2) as usize;
-    (row, place - row as f64)
+/// Index of a cell among all rows' cells, and the weight of the same cell in the next row.
+#[inline(always)]
+fn cell_of(rows: &RowScale, place: Place, reynolds_squared: f64) -> (usize, f64) {
+    let (row, weight) = rows.row(reynolds_squared);
+    (row * (INCIDENCE_CELLS + 1) + place.cell, weight)
 }
 
-#[inline]
-fn pair_at(cell: &[[f64; 2]; 4], f: f64) -> [f64; 2] {
-    [0, 1].map(|k| cell[0][k] + f * (cell[1][k] + f * (cell[2][k] + f * cell[3][k])))
+fn drag_at(drag: &[[f64; 4]], reynolds_squared: f64) -> f64 {
+    let [low, high] = CYLINDER_LN_REYNOLDS;
+    let ln_reynolds = (0.5 * reynolds_squared.ln()).clamp(low, high);
+    let place = (ln_reynolds - low) * (CYLINDER_CELLS as f64 / (high - low));
+    let cell = (place as usize).min(CYLINDER_CELLS - 1);
+    cubic_at(&drag[cell], place - cell as f64)
 }
 
-#[inline]
+#[inline(always)]
+fn pair_at(cell: &[f64x2; 4], f: f64) -> f64x2 {
+    let f = f64x2::splat(f);
+    cell[0] + f * (cell[1] + f * (cell[2] + f * cell[3]))
+}
+
+#[inline(always)]
 fn cubic_at(cell: &[f64; 4], f: f64) -> f64 {
     cell[0] + f * (cell[1] + f * (cell[2] + f * cell[3]))
 }
 
 fn table_lookup(table: &SectionTable) -> Lookup {
     let rows = table.rows();
-    let starts: Vec<f64> = rows.iter().map(|row| row.reynolds.ln()).collect();
-    let per_step = |k: usize| starts.get(k + 1).map_or(0.0, |next| 1.0 / (next - starts[k]));
+    let reynolds: Vec<f64> = rows.iter().map(|row| row.reynolds).collect();
+    // The last row appears twice, so that every row has one after it.
+    let with_last_again = || rows.iter().chain(rows.last());
     let pair = |row: &Row| incidence_cells(|alpha| [row.lift.at(alpha), row.drag.at(alpha)]);
     let moment = |row: &Row| {
         let curve = row.moment.as_ref()?;
         let both = incidence_cells(|alpha| [curve.at(alpha), (0.0, 0.0)]);
-        Some(both.into_iter().map(|cell| cell.map(|coefficients| coefficients[0])))
+        Some(both.into_iter().map(|cell| cell.map(|coefficients| coefficients.to_array()[0])))
     };
     Lookup::Incidence {
-        rows: (0..rows.len()).map(|k| (starts[k], per_step(k))).collect(),
-        cells: rows.iter().flat_map(pair).collect(),
-        moment: rows.iter().filter_map(moment).flatten().collect(),
+        rows: RowScale::new(&reynolds),
+        cells: with_last_again().flat_map(pair).collect(),
+        moment: with_last_again().filter_map(moment).flatten().collect(),
     }
 }
 
+fn doubled(mut cells: Vec<[f64x2; 4]>) -> Vec<[f64x2; 4]> {
+    cells.extend_from_within(..);
+    cells
+}
+
 /// Cubic pieces over the stand-in of two curves, each given with its slope per radian.
-fn incidence_cells(curves: impl Fn(f64) -> [(f64, f64); 2]) -> Vec<[[f64; 2]; 4]> {
+fn incidence_cells(curves: impl Fn(f64) -> [(f64, f64); 2]) -> Vec<[f64x2; 4]> {
     let width = 2.0 / INCIDENCE_CELLS as f64;
     let node = |k: usize| {
         let stand_in = k as f64 * width - 1.0;
@@ -165,13 +256,14 @@ fn incidence_cells(curves: impl Fn(f64) -> [(f64, f64); 2]) -> Vec<[[f64; 2]; 4]
         curves(alpha_rad).map(|(value, slope)| (value, slope * alpha_per_cell))
     };
     let nodes: Vec<_> = (0..=INCIDENCE_CELLS).map(node).collect();
-    nodes
-        .windows(2)
-        .map(|ends| {
-            let [first, second] = [0, 1].map(|k| hermite_cubic(ends[0][k], ends[1][k]));
-            [0, 1, 2, 3].map(|power| [first[power], second[power]])
-        })
-        .collect()
+    let cells = nodes.windows(2).map(|ends| {
+        let [first, second] = [0, 1].map(|k| hermite_cubic(ends[0][k], ends[1][k]));
+        [0, 1, 2, 3].map(|power| f64x2::new([first[power], second[power]]))
+    });
+    // A place on the upper end may count as the start of a cell after the last.
+    let [first, second] = nodes[INCIDENCE_CELLS];
+    let end = [f64x2::new([first.0, second.0]), f64x2::ZERO, f64x2::ZERO, f64x2::ZERO];
+    cells.chain([end]).collect()
 }
 
 fn cylinder_cells() -> Vec<[f64; 4]> {

@@ -1,5 +1,6 @@
 use wide::{CmpGe, f64x4};
 
+use crate::prepared::places;
 use crate::{Air, PreparedSection};
 
 /// Factors on the coefficients, for uncertainty and calibration; they leave a tabulated moment and
@@ -16,12 +17,12 @@ pub struct Scales {
 #[derive(Debug, Clone, PartialEq)]
 pub struct FourStrips {
     sections: [usize; 4],
-    needs_reynolds: bool,
+    has_moment: bool,
     half_density_chord: f64x4,
     chord_m: f64x4,
     lever: f64x4,
-    /// ln(ρc/μ): with ln u_n it makes the Reynolds number's logarithm.
-    ln_reynolds_per_speed: f64x4,
+    /// (ρc/μ)²: times u_n² it makes the Reynolds number's square.
+    reynolds_per_speed_squared: f64x4,
     scales: Scales,
 }
 
@@ -37,7 +38,7 @@ pub struct StripLoads {
 }
 
 /// Keeps quotients of vanishing speeds at 0 without a branch.
-const NO_SPEED: f64 = 1e-150;
+const NO_SPEED: f64 = 1e-280;
 
 impl FourStrips {
     /// - `strips`: index into `sections`, and chord in m
@@ -49,15 +50,14 @@ impl FourStrips {
     ) -> Self {
         let chord_m = f64x4::new(strips.map(|(_, chord_m)| chord_m));
         let indices = strips.map(|(section_idx, _)| section_idx);
-        let reynolds_per_speed =
-            strips.map(|(_, chord_m)| (air.density_kg_m3 * chord_m / air.viscosity_pa_s).ln());
+        let reynolds_per_speed = chord_m * f64x4::splat(air.density_kg_m3 / air.viscosity_pa_s);
         Self {
             sections: indices,
-            needs_reynolds: indices.iter().any(|&idx| sections[idx].needs_reynolds()),
+            has_moment: indices.iter().any(|&idx| sections[idx].has_moment()),
             half_density_chord: chord_m * f64x4::splat(0.5 * air.density_kg_m3),
             chord_m,
             lever: f64x4::new(indices.map(|idx| sections[idx].lever())),
-            ln_reynolds_per_speed: f64x4::new(reynolds_per_speed),
+            reynolds_per_speed_squared: reynolds_per_speed * reynolds_per_speed,
             scales,
         }
     }
@@ -79,20 +79,25 @@ impl FourStrips {
         let (side_speed, up_speed) = (u_y.abs(), u_z.abs());
         let speed_squared = u_y * u_y + u_z * u_z;
         let speed = speed_squared.sqrt();
-        let stand_in = -u_z / (side_speed + up_speed + f64x4::splat(NO_SPEED));
-        let ln_reynolds = if self.needs_reynolds {
-            (speed_squared + f64x4::splat(f64::MIN_POSITIVE)).ln() * f64x4::splat(0.5)
-                + self.ln_reynolds_per_speed
+        let square_side = side_speed + up_speed;
+        // One division serves both quotients; without any speed all products below vanish.
+        let inverse = one / (speed * square_side + f64x4::splat(NO_SPEED));
+        let places = places(-u_z * speed * inverse);
+        let reynolds_squared = (speed_squared * self.reynolds_per_speed_squared).to_array();
+        // Written out, as a closure over the lanes goes by way of memory.
+        let pair = |lane: usize| {
+            sections[self.sections[lane]].lift_drag(places[lane], reynolds_squared[lane]).to_array()
+        };
+        let [a, b, c, d] = [pair(0), pair(1), pair(2), pair(3)];
+        let lift = f64x4::new([a[0], b[0], c[0], d[0]]) * f64x4::splat(self.scales.lift);
+        let drag = f64x4::new([a[1], b[1], c[1], d[1]]) * f64x4::splat(self.scales.drag);
+        let moment = if self.has_moment {
+            f64x4::new(std::array::from_fn(|lane| {
+                sections[self.sections[lane]].moment(places[lane], reynolds_squared[lane])
+            }))
         } else {
             zero
         };
-        let (stand_ins, ln_reynolds) = (stand_in.to_array(), ln_reynolds.to_array());
-        let looked_up: [[f64; 3]; 4] = std::array::from_fn(|lane| {
-            sections[self.sections[lane]].at(stand_ins[lane], ln_reynolds[lane])
-        });
-        let lift = f64x4::new(looked_up.map(|at| at[0])) * f64x4::splat(self.scales.lift);
-        let drag = f64x4::new(looked_up.map(|at| at[1])) * f64x4::splat(self.scales.drag);
-        let moment = f64x4::new(looked_up.map(|at| at[2]));
         let leading = u_y.cmp_ge(zero).blend(one, -one);
 
         // q c C = ½ρc u_n² C, with one u_n spent on making the directions' unit vectors.
@@ -100,7 +105,7 @@ impl FourStrips {
         let side = -strength * (lift * leading * u_z + drag * u_y);
         let up = strength * (lift * side_speed - drag * u_z);
         // u_n² cos²α C_n = u_y² (C_l|u_y| − C_d u_z)/u_n.
-        let normal = (lift * side_speed - drag * u_z) / (speed + f64x4::splat(NO_SPEED));
+        let normal = (lift * side_speed - drag * u_z) * square_side * inverse;
         let about_middle = speed_squared * moment + self.lever * u_y * u_y * normal;
         let couple = leading * self.half_density_chord * self.chord_m * about_middle;
         StripLoads { side, up, couple }

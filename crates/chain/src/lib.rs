@@ -24,7 +24,7 @@ pub use body_frame::{attitude_along_axis, nearest_rotation};
 pub use chain_of::Chain;
 pub use error::ChainError;
 pub use joint::{Axis, AxisOf, Joint, Span, joint_axes, spans};
-pub use number::{LANES, Number, Triple, sin_cos_all};
+pub use number::{LANES, Number, Triple, polynomial, sin_cos, sin_cos_all};
 pub use overlap::overlapping_segments;
 pub use profile::{Profile, ProfileShape, line_density_masses};
 pub use segment::{Inertial, Segment};

@@ -1,6 +1,6 @@
 //! A gait laid on one chain.
 
-use undulift_chain::{Axis, AxisOf, Chain, Span, joint_axes, spans};
+use undulift_chain::{Axis, AxisOf, Chain, Span, joint_axes, sin_cos, spans};
 use wide::f64x4;
 
 use crate::table::RowMotion;
@@ -269,7 +269,7 @@ fn fill_spans<const ACCELERATIONS: bool>(
         acceleration_rad_s2: phase.acceleration_rad_s2 * vertical_ratio,
     };
     let (sines, cosines) =
-        f64x4::new([phase.angle_rad, vertical_phase.angle_rad, 0.0, 0.0]).sin_cos();
+        sin_cos(f64x4::new([phase.angle_rad, vertical_phase.angle_rad, 0.0, 0.0]));
     let (sines, cosines) = (sines.to_array(), cosines.to_array());
     lateral.fill::<ACCELERATIONS>(phase, (sines[0], cosines[0]), &mut motion.lateral);
     vertical.fill::<ACCELERATIONS>(vertical_phase, (sines[1], cosines[1]), &mut motion.vertical);

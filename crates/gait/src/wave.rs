@@ -2,7 +2,7 @@
 
 use std::f64::consts::TAU;
 
-use undulift_chain::{LANES, Span};
+use undulift_chain::{LANES, Span, polynomial};
 use wide::{CmpGe, f64x4};
 
 use crate::Phase;
@@ -10,6 +10,22 @@ use crate::Phase;
 /// Below this sharpness the hyperbolic tangent is replaced by its series, which is then exact to
 /// rounding and keeps the digits that a quotient of two small numbers loses.
 const SERIES_SHARPNESS: f64 = 1e-3;
+
+/// 1/k!, highest first: the exponential's series, exact to rounding below ¼.
+const EXPONENTIAL: [f64; 12] = [
+    1.0 / 39_916_800.0,
+    1.0 / 3_628_800.0,
+    1.0 / 362_880.0,
+    1.0 / 40_320.0,
+    1.0 / 5040.0,
+    1.0 / 720.0,
+    1.0 / 120.0,
+    1.0 / 24.0,
+    1.0 / 6.0,
+    0.5,
+    1.0,
+    1.0,
+];
 
 /// A wave of heading, and one of elevation, travelling from nose to tail.
 ///
@@ -102,7 +118,7 @@ enum Crest {
     /// c(1 − σ²c²/3 + 2σ⁴c⁴/15) over its value at 1.
     Nearly { third: f64, fifth: f64, scale: f64 },
     /// tanh(σc)/tanh(σ).
-    Sharp { sharpness: f64, scale: f64 },
+    Sharp { sharpness: f64, scale: f64, squarings: u32 },
 }
 
 /// Angle, rate and acceleration of each span, padded to whole registers.
@@ -205,7 +221,9 @@ impl Crest {
             let (third, fifth) = (-square / 3.0, 2.0 * square * square / 15.0);
             Crest::Nearly { third, fifth, scale: 1.0 / (1.0 + third + fifth) }
         } else {
-            Crest::Sharp { sharpness, scale: 1.0 / sharpness.tanh() }
+            // e^(−2σ|c|) comes from a short series at an argument below ¼, squared back up.
+            let squarings = (8.0 * sharpness).log2().ceil().max(0.0) as u32;
+            Crest::Sharp { sharpness, scale: 1.0 / sharpness.tanh(), squarings }
         }
     }
 
@@ -225,9 +243,13 @@ impl Crest {
                     scale * cosine * (third * 6.0 + square * fifth * 20.0),
                 ]
             }
-            Crest::Sharp { sharpness, scale } => {
+            Crest::Sharp { sharpness, scale, squarings } => {
+                let reduced = -2.0 * sharpness / f64::from(1_u32 << squarings);
+                let mut decay = polynomial(cosine.abs() * f64x4::splat(reduced), &EXPONENTIAL);
+                for _ in 0..squarings {
+                    decay *= decay;
+                }
                 let (sharpness, scale) = (f64x4::splat(sharpness), f64x4::splat(scale));
-                let decay = (sharpness * cosine.abs() * -2.0).exp();
                 let upright = (one - decay) / (one + decay);
                 let tanh = cosine.cmp_ge(zero).blend(upright, -upright);
                 let slope = scale * sharpness * (one - tanh * tanh);

@@ -1,0 +1,63 @@
+//! What a derivative and a flight cost. `cargo bench -p undulift-flight`.
+
+use divan::Bencher;
+use undulift_flight::{Equations, Settings, State, fly, release, summary};
+use undulift_gait::{Commands, Instant};
+
+mod robot;
+use robot::robot;
+
+const SIZES: [usize; 4] = [8, 16, 32, 64];
+
+fn main() {
+    divan::main();
+}
+
+/// Equations, and a state half a second into the flight.
+fn in_flight(n: usize) -> (Equations, Instant, State) {
+    let glider = robot(n);
+    let mut equations = Equations::new(&glider).expect("flies");
+    let mut state = release(&mut equations, &glider.launch, 0.0).expect("flies");
+    state.velocity_m_s.z = -3.0;
+    (equations, Instant::at(0.523), state)
+}
+
+/// The whole right-hand side.
+#[divan::bench(args = SIZES)]
+fn derivative(bencher: Bencher, n: usize) {
+    let (mut equations, at, state) = in_flight(n);
+    bencher.bench_local(|| equations.rates(divan::black_box(at), divan::black_box(&state)));
+}
+
+/// Its first part: joint commands.
+#[divan::bench(args = SIZES)]
+fn part_gait(bencher: Bencher, n: usize) {
+    let glider = robot(n);
+    let commands = Commands::new(&glider.gait, &glider.chain).expect("fits");
+    let mut motion = commands.room();
+    bencher.bench_local(|| commands.rates(divan::black_box(Instant::at(0.523)), &mut motion));
+}
+
+/// Its first two parts: joint commands, then frames and centroidal sums.
+#[divan::bench(args = SIZES)]
+fn part_gait_and_mechanics(bencher: Bencher, n: usize) {
+    let (mut equations, at, _) = in_flight(n);
+    bencher.bench_local(|| equations.shape(divan::black_box(at)));
+}
+
+/// From a glider to where it landed.
+#[divan::bench(args = SIZES)]
+fn flight(bencher: Bencher, n: usize) {
+    let glider = robot(n);
+    bencher.bench_local(|| fly(&glider, &Settings::default()).expect("flies"));
+}
+
+/// The same with what it comes to.
+#[divan::bench]
+fn flight_and_summary(bencher: Bencher) {
+    let glider = robot(16);
+    bencher.bench_local(|| {
+        let mut flight = fly(&glider, &Settings::default()).expect("flies");
+        summary(&glider, &mut flight)
+    });
+}
