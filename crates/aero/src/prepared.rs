@@ -8,9 +8,9 @@ use crate::pchip::hermite_cubic;
 use crate::section::{Row, cylinder_drag, plate};
 use crate::{Section, SectionKind, SectionTable};
 
-/// Cells over the stand-in's range −1…1. Each reproduces values and slopes at its ends; in between
-/// the `domed` table is met within 2e-5.
-const INCIDENCE_CELLS: usize = 1024;
+/// Cells over the stand-in's range −1…1. Each reproduces values and slopes at its ends; inside the
+/// few that hold a knot of the table, where its curvature jumps, `domed` is missed by 2e-5 at most.
+const INCIDENCE_CELLS: usize = 4096;
 
 /// Natural logarithms of the Reynolds numbers between which the cylinder's drag is tabulated; the
 /// load outside is negligible below and unmeasured above.
@@ -34,8 +34,8 @@ enum Lookup {
     Incidence {
         /// Where a Reynolds number stands among the rows.
         rows: RowScale,
-        /// Lift and drag side by side, constant term first: (rows + 1) × (cells + 1), so that both
-        /// upper ends have a neighbour.
+        /// Lift and drag side by side, constant term first: rows × (cells + 1), so that the upper
+        /// end has a cell of its own.
         cells: Vec<[f64x2; 4]>,
         /// Tabulated moment, shape as `cells`, or empty.
         moment: Vec<[f64; 4]>,
@@ -88,9 +88,10 @@ struct RowScale {
     last_row: usize,
 }
 
-/// Bits of a double behind those that name a cell: 256 cells to a doubling of the square. A
-/// straight line misses the logarithm by 2e-6 at most.
-const CELL_SHIFT: u32 = 44;
+/// Bits of a double behind those that name a cell: 4096 cells to a doubling of the square. Inside
+/// the cell that holds a row's Reynolds number its change of slope is missed, by 2e-5 at most on
+/// `domed`.
+const CELL_SHIFT: u32 = 40;
 
 impl RowScale {
     /// - `reynolds`: of the rows, rising
@@ -106,11 +107,15 @@ impl RowScale {
         // A cell more on each side, in which nothing changes, stands for all that lies beyond.
         let first_cell = (first * first).to_bits().wrapping_shr(CELL_SHIFT) - 1;
         let last_cell = (last * last).to_bits().wrapping_shr(CELL_SHIFT) + 1;
-        let cells = (first_cell..=last_cell)
-            .map(|cell| {
-                let [start, end] = [cell, cell + 1].map(|cell| f64::from_bits(cell << CELL_SHIFT));
-                let slope = (place(end) - place(start)) / (end - start);
-                [place(start) - slope * start, slope]
+        let edges: Vec<(f64, f64)> = (first_cell..=last_cell + 1)
+            .map(|cell| f64::from_bits(cell << CELL_SHIFT))
+            .map(|square| (square, place(square)))
+            .collect();
+        let cells = edges
+            .windows(2)
+            .map(|ends| {
+                let slope = (ends[1].1 - ends[0].1) / (ends[1].0 - ends[0].0);
+                [ends[0].1 - slope * ends[0].0, slope]
             })
             .collect();
         Self { first_cell, cells, last_row: reynolds.len() - 1 }
@@ -142,7 +147,7 @@ impl PreparedSection {
         let table = match &section.kind {
             SectionKind::Plate => Lookup::Incidence {
                 rows: RowScale::new(&[1.0]),
-                cells: doubled(incidence_cells(plate)),
+                cells: incidence_cells(plate),
                 moment: Vec::new(),
             },
             SectionKind::Round => Lookup::Reynolds { drag: cylinder_cells() },
@@ -169,9 +174,9 @@ impl PreparedSection {
     pub(crate) fn lift_drag(&self, place: Place, reynolds_squared: f64) -> f64x2 {
         match &self.table {
             Lookup::Incidence { rows, cells, .. } => {
-                let (first, weight) = cell_of(rows, place, reynolds_squared);
+                let (first, second, weight) = cells_of(rows, place, reynolds_squared);
                 let here = pair_at(&cells[first], place.into);
-                let next = pair_at(&cells[first + INCIDENCE_CELLS + 1], place.into);
+                let next = pair_at(&cells[second], place.into);
                 here + f64x2::splat(weight) * (next - here)
             }
             Lookup::Reynolds { drag } => f64x2::new([0.0, drag_at(drag, reynolds_squared)]),
@@ -183,9 +188,9 @@ impl PreparedSection {
     pub(crate) fn moment(&self, place: Place, reynolds_squared: f64) -> f64 {
         match &self.table {
             Lookup::Incidence { rows, moment, .. } if !moment.is_empty() => {
-                let (first, weight) = cell_of(rows, place, reynolds_squared);
+                let (first, second, weight) = cells_of(rows, place, reynolds_squared);
                 let here = cubic_at(&moment[first], place.into);
-                let next = cubic_at(&moment[first + INCIDENCE_CELLS + 1], place.into);
+                let next = cubic_at(&moment[second], place.into);
                 here + weight * (next - here)
             }
             _ => 0.0,
@@ -193,11 +198,13 @@ impl PreparedSection {
     }
 }
 
-/// Index of a cell among all rows' cells, and the weight of the same cell in the next row.
+/// Indices among all rows' cells of one cell in two neighbouring rows, and the second's weight.
 #[inline(always)]
-fn cell_of(rows: &RowScale, place: Place, reynolds_squared: f64) -> (usize, f64) {
+fn cells_of(rows: &RowScale, place: Place, reynolds_squared: f64) -> (usize, usize, f64) {
     let (row, weight) = rows.row(reynolds_squared);
-    (row * (INCIDENCE_CELLS + 1) + place.cell, weight)
+    let next = (row + 1).min(rows.last_row);
+    let in_row = |row: usize| row * (INCIDENCE_CELLS + 1) + place.cell;
+    (in_row(row), in_row(next), weight)
 }
 
 fn drag_at(drag: &[[f64; 4]], reynolds_squared: f64) -> f64 {
@@ -222,8 +229,6 @@ fn cubic_at(cell: &[f64; 4], f: f64) -> f64 {
 fn table_lookup(table: &SectionTable) -> Lookup {
     let rows = table.rows();
     let reynolds: Vec<f64> = rows.iter().map(|row| row.reynolds).collect();
-    // The last row appears twice, so that every row has one after it.
-    let with_last_again = || rows.iter().chain(rows.last());
     let pair = |row: &Row| incidence_cells(|alpha| [row.lift.at(alpha), row.drag.at(alpha)]);
     let moment = |row: &Row| {
         let curve = row.moment.as_ref()?;
@@ -232,14 +237,9 @@ fn table_lookup(table: &SectionTable) -> Lookup {
     };
     Lookup::Incidence {
         rows: RowScale::new(&reynolds),
-        cells: with_last_again().flat_map(pair).collect(),
-        moment: with_last_again().filter_map(moment).flatten().collect(),
+        cells: rows.iter().flat_map(pair).collect(),
+        moment: rows.iter().filter_map(moment).flatten().collect(),
     }
-}
-
-fn doubled(mut cells: Vec<[f64x2; 4]>) -> Vec<[f64x2; 4]> {
-    cells.extend_from_within(..);
-    cells
 }
 
 /// Cubic pieces over the stand-in of two curves, each given with its slope per radian.
