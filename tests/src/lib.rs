@@ -2,6 +2,8 @@
 //!
 //! The tests themselves stand in `tests/`, the data in `data/` with a README that says who made it.
 
+pub mod gliders;
+
 use std::path::PathBuf;
 
 use serde::de::DeserializeOwned;
