@@ -248,14 +248,20 @@ impl Section {
         Coefficients { lift, drag, moment }
     }
 
+    /// The pressure centre where it is used, and so is an assumption.
+    pub fn assumed_pressure_centre(&self) -> Option<f64> {
+        let used = match &self.kind {
+            SectionKind::Plate => true,
+            SectionKind::Round => false,
+            SectionKind::Table(table) => !table.has_moment,
+        };
+        used.then_some(self.pressure_centre)
+    }
+
     /// Lever of the normal force ahead of mid-chord at small incidence, chords: ½ − x₀; it falls
     /// with cos²α to nothing broadside on. 0 where no lever is used.
     pub(crate) fn lever(&self) -> f64 {
-        match &self.kind {
-            SectionKind::Round => 0.0,
-            SectionKind::Table(table) if table.has_moment => 0.0,
-            _ => 0.5 - self.pressure_centre,
-        }
+        self.assumed_pressure_centre().map_or(0.0, |centre| 0.5 - centre)
     }
 }
 

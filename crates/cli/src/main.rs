@@ -1,2 +1,50 @@
-//! x
-fn main() {}
+//! The `undulift` command: flags, files, exit codes and the words that people read.
+//!
+//! Answers go to standard output, all else to standard error. Exit status: 0 done and within
+//! limits; 1 done, but a limit is missed; 2 could not run.
+
+mod args;
+mod doubts;
+mod fly;
+mod people;
+mod terminal;
+mod trace_file;
+
+use std::process::ExitCode;
+
+use args::{Args, Command};
+use clap::Parser;
+
+/// How a command ended when it ran.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+enum Outcome {
+    WithinLimits,
+    LimitMissed,
+    CouldNotRun,
+}
+
+impl From<Outcome> for ExitCode {
+    fn from(outcome: Outcome) -> Self {
+        ExitCode::from(match outcome {
+            Outcome::WithinLimits => 0,
+            Outcome::LimitMissed => 1,
+            Outcome::CouldNotRun => 2,
+        })
+    }
+}
+
+fn main() -> ExitCode {
+    // Wrong flags end here with status 2, help and version with 0.
+    let args = Args::parse();
+    let outcome = match &args.command {
+        Command::Fly(fly) => fly::run(fly),
+    };
+    match outcome {
+        Ok(outcome) => outcome.into(),
+        Err(error) if terminal::is_closed_pipe(&error) => ExitCode::SUCCESS,
+        Err(error) => {
+            terminal::tell_error(&format!("{error:#}"));
+            Outcome::CouldNotRun.into()
+        }
+    }
+}

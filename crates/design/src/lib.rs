@@ -1,1 +1,43 @@
-//! x
+//! Design files in: read, checked, explained, and turned into values of the crates below.
+//!
+//! A design is a TOML file; it may name a servo catalogue (TOML), section tables and a gait table
+//! (CSV). [`read`] finds all mistakes of all these files at once and tells each with its place, what
+//! was found, what may stand there and what to do. Values from outside ([`Override`]) are
+//! written into the text before it is read.
+//!
+//! Files hold degrees and the units that their keys name; values are in SI units
+//! and radians. Tables that other commands read (`spread`, `search`, `wiring`) are left alone.
+
+mod body;
+mod carried;
+mod catalogue;
+mod columns;
+mod design;
+mod document;
+mod error;
+mod files;
+mod gait;
+mod gait_table;
+mod joints;
+mod key_path;
+mod mistake;
+mod named_files;
+mod nearest;
+mod node;
+mod overrides;
+pub mod quantities;
+mod range;
+mod section_table;
+mod sections;
+mod servo;
+mod surroundings;
+mod table;
+
+pub use carried::{Battery, Payload, Regulator};
+pub use design::{Design, read};
+pub use error::DesignError;
+pub use joints::ServoNames;
+pub use mistake::{DesignErrors, Mistake};
+pub use overrides::Override;
+pub use servo::{Endurance, PositionLoop, Pulse, Servo};
+pub use surroundings::Limits;

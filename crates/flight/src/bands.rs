@@ -6,16 +6,24 @@ use crate::{Flight, Glider};
 const SAMPLE_S: f64 = 1e-3;
 
 /// 5th and 95th percentiles over strips and time, weighted by dynamic pressure, chord and length.
-#[derive(Debug, Clone, Copy, PartialEq)]
+#[derive(Debug, Clone, PartialEq)]
 pub struct Bands {
     /// Incidence, rad; absent where no strip met air.
     pub alpha_rad: Option<[f64; 2]>,
     /// Reynolds number on the chord; absent where no strip met air.
     pub reynolds: Option<[f64; 2]>,
-    /// Share of the weight outside the Reynolds numbers of each section that has a range: shape
-    /// (sections), with below and above.
-    pub outside_reynolds: [f64; 2],
-    /// Share of the weight on coefficients that were not measured, of those sections that were.
+    /// For each of the glider's sections, what share of all weight stretched it.
+    pub stretched: Vec<Stretched>,
+}
+
+/// Shares of the weight that met one section outside what is known of it, 0 to 1.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct Stretched {
+    /// Below its lowest Reynolds number.
+    pub reynolds_below: f64,
+    /// Above its highest.
+    pub reynolds_above: f64,
+    /// At incidences that were not measured, of a section that was measured in part.
     pub not_measured: f64,
 }
 
@@ -25,7 +33,7 @@ pub fn bands(glider: &Glider, flight: &mut Flight) -> Bands {
     let reynolds_per_speed_chord = glider.air.density_kg_m3 / glider.air.viscosity_pa_s;
     let mut alphas: Vec<(f64, f64)> = Vec::new();
     let mut reynolds_numbers: Vec<(f64, f64)> = Vec::new();
-    let (mut outside, mut not_measured) = ([0.0; 2], 0.0);
+    let mut stretched = vec![Stretched::default(); glider.sections.len()];
     for sample in 0..=samples {
         let time_s = flight.time_s * sample as f64 / samples as f64;
         let state = flight.trajectory.state(time_s);
@@ -38,13 +46,15 @@ pub fn bands(glider: &Glider, flight: &mut Flight) -> Bands {
             let reynolds = reynolds_per_speed_chord * speed_squared.sqrt() * strip.chord_m;
             alphas.push((alpha_rad, weight));
             reynolds_numbers.push((reynolds, weight));
-            let section = &glider.sections[glider.section_of[strip.segment_idx]];
+            let section_idx = glider.section_of[strip.segment_idx];
+            let (section, stretched) = (&glider.sections[section_idx], &mut stretched[section_idx]);
             if let Some([low, high]) = section.reynolds_range() {
-                outside[0] += if reynolds < low { weight } else { 0.0 };
-                outside[1] += if reynolds > high { weight } else { 0.0 };
+                stretched.reynolds_below += if reynolds < low { weight } else { 0.0 };
+                stretched.reynolds_above += if reynolds > high { weight } else { 0.0 };
             }
             if let Some([low, high]) = section.measured_rad {
-                not_measured += if alpha_rad < low || alpha_rad > high { weight } else { 0.0 };
+                let measured = (low..=high).contains(&alpha_rad);
+                stretched.not_measured += if measured { 0.0 } else { weight };
             }
         });
     }
@@ -53,8 +63,14 @@ pub fn bands(glider: &Glider, flight: &mut Flight) -> Bands {
     Bands {
         alpha_rad: percentiles(&mut alphas, total),
         reynolds: percentiles(&mut reynolds_numbers, total),
-        outside_reynolds: outside.map(of_total),
-        not_measured: of_total(not_measured),
+        stretched: stretched
+            .into_iter()
+            .map(|weights| Stretched {
+                reynolds_below: of_total(weights.reynolds_below),
+                reynolds_above: of_total(weights.reynolds_above),
+                not_measured: of_total(weights.not_measured),
+            })
+            .collect(),
     }
 }
 

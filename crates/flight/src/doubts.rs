@@ -1,8 +1,10 @@
 //! What to doubt about a flight's figures, each with its number.
 
+use undulift_aero::Section;
 use undulift_chain::{Axis, AxisOf, Shape, overlapping_segments};
 use undulift_gait::{Commands, Instant};
 
+use crate::bands::Stretched;
 use crate::{Bands, Equations, Flight, Glider, Summary};
 
 /// Reduced frequency above which quasi-steady loads lag what a wing would do. 0.1 is often quoted;
@@ -26,18 +28,30 @@ pub enum Doubt {
         /// π f c̄/Ū.
         reduced_frequency: f64,
     },
-    /// Coefficients were held constant outside the Reynolds numbers that were measured.
+    /// Coefficients were held constant below the lowest Reynolds number of a section's table.
     ReynoldsBelow {
+        /// The section's name.
+        section: String,
+        /// That number.
+        lowest: f64,
         /// Of the load, 0 to 1.
         share: f64,
     },
-    /// The same, above.
+    /// The same, above the highest.
     ReynoldsAbove {
+        /// The section's name.
+        section: String,
+        /// That number.
+        highest: f64,
         /// Of the load, 0 to 1.
         share: f64,
     },
     /// Coefficients came from a completion rather than a measurement.
     NotMeasured {
+        /// The section's name.
+        section: String,
+        /// Incidences between which it was measured, rad.
+        measured_rad: [f64; 2],
         /// Of the load, 0 to 1.
         share: f64,
     },
@@ -88,26 +102,40 @@ pub fn doubts(glider: &Glider, flight: &Flight, summary: &Summary, bands: &Bands
     if let Some(reduced_frequency) = summary.reduced_frequency.filter(|&k| k > QUASI_STEADY_LIMIT) {
         doubts.push(Doubt::Unsteady { reduced_frequency });
     }
-    let [below, above] = bands.outside_reynolds;
-    if below > WORTH_SAYING {
-        doubts.push(Doubt::ReynoldsBelow { share: below });
-    }
-    if above > WORTH_SAYING {
-        doubts.push(Doubt::ReynoldsAbove { share: above });
-    }
-    if bands.not_measured > WORTH_SAYING {
-        doubts.push(Doubt::NotMeasured { share: bands.not_measured });
+    for (section, stretched) in glider.sections.iter().zip(&bands.stretched) {
+        doubts.extend(stretched_doubts(section, stretched));
     }
     let ratio = added_mass_ratio(glider);
     if ratio > ADDED_MASS_LIMIT {
         doubts.push(Doubt::AddedMass { ratio });
     }
     doubts.extend(overlap(glider, flight));
-    let with_lever = glider.sections.iter().map(|section| section.pressure_centre);
-    if let Some(assumed) = with_lever.reduce(f64::min).filter(|&assumed| assumed < 0.5) {
+    let assumed = glider.sections.iter().filter_map(Section::assumed_pressure_centre);
+    if let Some(assumed) = assumed.reduce(f64::min) {
         doubts.push(Doubt::PressureCentre { assumed });
     }
     doubts
+}
+
+fn stretched_doubts(section: &Section, stretched: &Stretched) -> Vec<Doubt> {
+    let worth = |share: f64| (share > WORTH_SAYING).then_some(share);
+    let name = || section.name.clone();
+    let range = section.reynolds_range();
+    let below = range.zip(worth(stretched.reynolds_below));
+    let above = range.zip(worth(stretched.reynolds_above));
+    let guessed = section.measured_rad.zip(worth(stretched.not_measured));
+    [
+        below.map(|([lowest, _], share)| Doubt::ReynoldsBelow { section: name(), lowest, share }),
+        above.map(|([_, highest], share)| Doubt::ReynoldsAbove { section: name(), highest, share }),
+        guessed.map(|(measured_rad, share)| Doubt::NotMeasured {
+            section: name(),
+            measured_rad,
+            share,
+        }),
+    ]
+    .into_iter()
+    .flatten()
+    .collect()
 }
 
 /// Mass of the air that a flat chain carries with it, (π/4)ρΣc²L, over the chain's own.

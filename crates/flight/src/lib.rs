@@ -23,7 +23,7 @@ mod trace;
 mod trajectory;
 
 pub use attitude::Attitude;
-pub use bands::{Bands, bands};
+pub use bands::{Bands, Stretched, bands};
 pub use doubts::{Doubt, JointPeak, doubts, joint_peaks};
 pub use equations::Equations;
 pub use error::FlightError;

@@ -1,0 +1,80 @@
+use std::path::PathBuf;
+
+use clap::{Parser, Subcommand};
+use undulift_design::Override;
+
+/// Flies snake-inspired gliding robots before anyone builds them.
+///
+/// A design file describes a chain of segments joined by servos, the wave that runs down it and how
+/// it is let go. Exit status: 0 done and within limits, 1 done but a limit is missed, 2 could not
+/// run.
+#[derive(Debug, Parser)]
+#[command(name = "undulift", version, propagate_version = true)]
+pub struct Args {
+    /// What to do.
+    #[command(subcommand)]
+    pub command: Command,
+}
+
+/// What to do.
+#[derive(Debug, Subcommand)]
+pub enum Command {
+    Fly(Fly),
+}
+
+/// Fly designs from release to the floor, and say how it went.
+///
+/// Joints follow the gait exactly. Exit status 1 means that a flight did not land, rolled or pitched
+/// beyond `[limits] tilt_deg`, or asked a joint to go beyond its travel.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift fly designs/reed-16.toml
+  undulift fly designs/reed-16.toml --set gait.frequency_hz=1.0 --json
+  undulift fly designs/reed-16.toml --trace reed-16.csv --every-ms 2")]
+pub struct Fly {
+    /// Design files (TOML).
+    #[arg(required = true, value_name = "DESIGN")]
+    pub designs: Vec<PathBuf>,
+
+    /// Print JSON: an object for one design, a list for several.
+    #[arg(long)]
+    pub json: bool,
+
+    /// Write the flight as CSV, a row each output time; takes one design.
+    #[arg(long, value_name = "FILE.csv")]
+    pub trace: Option<PathBuf>,
+
+    /// Time between rows of the trace, ms.
+    #[arg(long, value_name = "MS", default_value_t = 5.0, requires = "trace", value_parser = every_ms)]
+    pub every_ms: f64,
+
+    /// Relative and absolute tolerance of the integration, from 1e-13 to 1e-2.
+    #[arg(long, value_name = "TOL", default_value_t = 1e-6)]
+    pub tolerance: f64,
+
+    /// Longest flight, s, at most 3600.
+    #[arg(long, value_name = "S", default_value_t = 30.0)]
+    pub max_time_s: f64,
+
+    /// Fly on to the floor after the body has turned over.
+    #[arg(long)]
+    pub through_inversion: bool,
+
+    /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
+    ///
+    /// Keys are dotted as in the file, list items count from 0: body.length_m[3]=0.1.
+    #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
+    pub sets: Vec<Override>,
+}
+
+/// More rows than this would fill a disk rather than tell something.
+const LEAST_EVERY_MS: f64 = 1e-3;
+
+fn every_ms(text: &str) -> Result<f64, String> {
+    let every_ms: f64 = text.parse().map_err(|_| "it must be a number".to_owned())?;
+    if (LEAST_EVERY_MS..=1e6).contains(&every_ms) {
+        Ok(every_ms)
+    } else {
+        Err(format!("it must be from {LEAST_EVERY_MS} to 1000000"))
+    }
+}

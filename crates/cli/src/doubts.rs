@@ -1,0 +1,90 @@
+//! Doubts in words, each with what to do about it.
+
+use undulift_flight::Doubt;
+
+/// What to say of a doubt, and what to do.
+pub fn in_words(doubt: &Doubt) -> (String, &'static str) {
+    match doubt {
+        Doubt::Unsteady { reduced_frequency } => (
+            format!(
+                "reduced frequency {reduced_frequency:.3} is above 0.05: real loads lag behind the \
+                 wave more than this model's, which answer at once"
+            ),
+            "a slower wave, a faster launch or a narrower body lowers it; until then read small \
+             differences between gaits as undecided",
+        ),
+        Doubt::ReynoldsBelow { section, lowest, share } => (
+            format!(
+                "section `{section}` was used below its lowest Reynolds number ({}) for {} of the \
+                 load, with the coefficients of that number",
+                thousands(*lowest),
+                percent(*share)
+            ),
+            "add rows at lower Reynolds numbers to its table",
+        ),
+        Doubt::ReynoldsAbove { section, highest, share } => (
+            format!(
+                "section `{section}` was used above its highest Reynolds number ({}) for {} of the \
+                 load, with the coefficients of that number",
+                thousands(*highest),
+                percent(*share)
+            ),
+            "add rows at higher Reynolds numbers in a table of your own, or vary air.lift_scale and \
+             air.drag_scale to see how much it matters",
+        ),
+        Doubt::NotMeasured { section, measured_rad: [low, high], share } => (
+            format!(
+                "section `{section}` was measured from {:.0}° to {:.0}° only; {} of the load met it \
+                 outside, on an engineering completion",
+                low.to_degrees(),
+                high.to_degrees(),
+                percent(*share)
+            ),
+            "the steeper the air meets the belly, the less the figures are worth; measure or borrow \
+             rows there if the flight hangs on them",
+        ),
+        Doubt::AddedMass { ratio } => (
+            format!(
+                "the air that moves with the body would weigh {} of it, and is left out",
+                percent(*ratio)
+            ),
+            "expect slower pitching and rolling than computed",
+        ),
+        Doubt::Overlap { segments: (ahead, behind), at_s, pairs } => (
+            format!(
+                "segments {ahead} and {behind} take the same space at t = {at_s:.3} s{}",
+                match pairs {
+                    1 => String::new(),
+                    _ => format!(", and {} more pairs do at some time", pairs - 1),
+                }
+            ),
+            "lower the amplitude, use more waves, or make the body narrower there",
+        ),
+        Doubt::PressureCentre { assumed } => (
+            format!(
+                "whether it stays upright hangs on the pressure centre, assumed at {assumed:.2} of the \
+                 chord and known least of all"
+            ),
+            "fly it again with 0.05 more and less, such as --set \
+             section.NAME.pressure_centre=0.3, before you trust that it lands upright",
+        ),
+    }
+}
+
+fn percent(share: f64) -> String {
+    format!("{:.0} %", 100.0 * share)
+}
+
+/// A whole number with its thousands set apart.
+pub fn thousands(value: f64) -> String {
+    let digits = format!("{value:.0}");
+    let (sign, digits) = digits.strip_prefix('-').map_or(("", digits.as_str()), |d| ("−", d));
+    let mut grouped = String::new();
+    for (k, digit) in digits.chars().enumerate() {
+        if k > 0 && (digits.len() - k) % 3 == 0 {
+            grouped.push('\u{202f}');
+        }
+        grouped.push(digit);
+    }
+    format!("{sign}{grouped}")
+}

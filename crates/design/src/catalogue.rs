@@ -1,0 +1,70 @@
+//! Servos by name: the design's own, and those of the catalogue that it names.
+
+use std::collections::BTreeMap;
+
+use crate::DesignError;
+use crate::document::{Document, Mark};
+use crate::key_path::KeyPath;
+use crate::named_files::NamedFiles;
+use crate::node::Node;
+use crate::servo::{Servo, read_servos};
+use crate::table::Table;
+
+/// Servos that a design may name.
+#[derive(Debug, Default)]
+pub(crate) struct Servos {
+    /// Absent where there are mistakes in one.
+    by_name: BTreeMap<String, Option<Servo>>,
+    /// Whether the catalogue, which may hold more, couldn't be read.
+    lacks_catalogue: bool,
+}
+
+impl Servos {
+    /// All names that are defined, where they are known.
+    pub(crate) fn names(&self) -> Option<Vec<String>> {
+        (!self.lacks_catalogue).then(|| self.by_name.keys().cloned().collect())
+    }
+
+    /// All of them, where nothing is wrong with any.
+    pub(crate) fn all_sound(self) -> Option<BTreeMap<String, Servo>> {
+        let sound = self.by_name.into_iter().map(|(name, servo)| Some((name, servo?)));
+        sound.collect::<Option<_>>().filter(|_| !self.lacks_catalogue)
+    }
+}
+
+/// Reads the servos of design and catalogue; where both have a name, the design's own holds.
+pub(crate) fn read_all_servos(top: &Table<'_>, files: &mut NamedFiles) -> Servos {
+    let mut servos = Servos::default();
+    if let Some(node) = top.get("servos") {
+        match read_catalogue(&node, files, top.document()) {
+            Some(by_name) => servos.by_name = by_name,
+            None => servos.lacks_catalogue = true,
+        }
+    }
+    servos.by_name.extend(read_servos(top));
+    servos
+}
+
+fn read_catalogue(
+    node: &Node<'_>,
+    files: &mut NamedFiles,
+    design: &Document<'_>,
+) -> Option<BTreeMap<String, Option<Servo>>> {
+    let source = files.read_toml(node)?;
+    let document = match Document::parse(&source) {
+        Ok(document) => document,
+        Err(mistakes) => {
+            design.note_all(mistakes);
+            return None;
+        }
+    };
+    let top = Table::top(&document);
+    if top.get("servos").is_some() {
+        let path = KeyPath::of(["servos"]);
+        document.note(&path, Mark::Key, &[], DesignError::NestedCatalogue);
+    }
+    let servos = read_servos(&top);
+    top.finish();
+    design.note_all(document.into_mistakes());
+    Some(servos)
+}

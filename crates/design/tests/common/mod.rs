@@ -1,0 +1,106 @@
+//! A sound design to spoil, in a folder of its own.
+
+#![allow(dead_code, reason = "each test file uses a part")]
+
+use std::path::{Path, PathBuf};
+
+use undulift_design::{Design, DesignErrors, Override, read};
+
+pub const SOUND: &str = r#"
+[body]
+segments = 4
+length_m = 0.4
+width_m = 0.1
+thickness_m = 0.02
+structure_kg = 0.1
+section = "plate"
+
+[joints]
+axes = "universal"
+
+[gait]
+frequency_hz = 1.0
+lateral_amplitude_deg = 60.0
+lateral_waves = 1.0
+
+[launch]
+height_m = 5.0
+speed_m_s = 3.0
+"#;
+
+pub const SERVO: &str = r#"
+[servo.mini]
+mass_kg = 0.020
+at_voltage_v = 6.0
+stall_torque_nm = 0.45
+no_load_speed_deg_s = 600.0
+stall_current_a = 1.9
+no_load_current_a = 0.15
+"#;
+
+/// The sound design with lines replaced, each by the key that they begin with, and text at its end.
+pub fn spoilt(lines: &[&str], end: &str) -> String {
+    let mut text = SOUND.to_owned();
+    for line in lines {
+        let key = line.split('=').next().unwrap().trim();
+        let at = text.find(&format!("\n{key} =")).unwrap_or_else(|| panic!("no {key}")) + 1;
+        let to = at + text[at..].find('\n').unwrap();
+        text.replace_range(at..to, line);
+    }
+    text + end
+}
+
+pub struct Folder(tempfile::TempDir);
+
+impl Folder {
+    pub fn new() -> Self {
+        Self(tempfile::tempdir().unwrap())
+    }
+
+    pub fn with(files: &[(&str, &str)]) -> Self {
+        let folder = Self::new();
+        for (name, text) in files {
+            folder.write(name, text.as_bytes());
+        }
+        folder
+    }
+
+    pub fn write(&self, name: &str, bytes: &[u8]) -> PathBuf {
+        let path = self.path().join(name);
+        std::fs::write(&path, bytes).unwrap();
+        path
+    }
+
+    pub fn path(&self) -> &Path {
+        self.0.path()
+    }
+
+    pub fn read(&self, sets: &[&str]) -> Result<Design, DesignErrors> {
+        let overrides: Vec<_> = sets.iter().map(|set| Override::parse(set).unwrap()).collect();
+        read(&self.path().join("d.toml"), &overrides)
+    }
+
+    /// Mistakes, a line each, without the folder's name.
+    pub fn mistakes(&self, sets: &[&str]) -> String {
+        let errors = match self.read(sets) {
+            Ok(_) => return "sound".to_owned(),
+            Err(errors) => errors,
+        };
+        let folder = format!("{}/", self.path().display());
+        errors.lines().map(|line| line.replace(&folder, "")).collect::<Vec<_>>().join("\n")
+    }
+}
+
+pub fn design(text: &str) -> Folder {
+    Folder::with(&[("d.toml", text)])
+}
+
+/// Mistakes of a design, a line each.
+pub fn mistakes_of(text: &str) -> String {
+    design(text).mistakes(&[])
+}
+
+/// Mistakes of the sound design with lines replaced and text at its end.
+pub fn mistakes(lines: &[&str], end: &str) -> String {
+    mistakes_of(&spoilt(lines, end))
+}
