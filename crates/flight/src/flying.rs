@@ -9,7 +9,7 @@ use crate::state::{Scaled, Units};
 use crate::{Attitude, Equations, FlightError, Glider, State, Trajectory, release};
 
 /// Steps a flight may take; at the default tolerance a flight takes a few hundred.
-const MOST_STEPS: u32 = 500_000;
+const MOST_STEPS: u32 = 200_000;
 
 /// A twentieth of a cycle, or this where the gait stands still, s.
 const STILL_STEP_S: f64 = 0.02;
