@@ -144,7 +144,7 @@ fn analytic_turn_and_arch_share_out_over_the_axes_there_are() {
         assert_relative_eq!(*found, expected, epsilon = 1e-15);
     }
     let (mut headings, mut elevations) = ([0.0; 4], [0.0; 4]);
-    commands.attitudes(Instant::at(0.0), &mut room, &mut headings, &mut elevations);
+    commands.attitudes(&room, &mut headings, &mut elevations);
     for (found, expected) in headings.iter().zip([-0.225, 0.0, 0.0, 0.225]) {
         assert_relative_eq!(*found, expected, epsilon = 1e-15);
     }
@@ -154,7 +154,8 @@ fn analytic_turn_and_arch_share_out_over_the_axes_there_are() {
     let yaw_only = chain(4, |_| Joint { yaw: true, ..Joint::default() });
     let commands = Commands::new(&running(wave), &yaw_only).unwrap();
     room = commands.room();
-    commands.attitudes(Instant::at(0.0), &mut room, &mut headings, &mut elevations);
+    commands.rates(Instant::at(0.0), &mut room);
+    commands.attitudes(&room, &mut headings, &mut elevations);
     assert_eq!(elevations, [0.0; 4], "an axis that the chain lacks counts 0");
 }
 
@@ -297,7 +298,8 @@ fn analytic_table_headings_are_sums_from_the_nose() {
         let commands = Commands::new(&gait, &universal(3)).unwrap();
         let (mut headings, mut elevations) = ([0.0; 3], [0.0; 3]);
         let mut room = commands.room();
-        commands.attitudes(Instant::at(0.3), &mut room, &mut headings, &mut elevations);
+        commands.rates(Instant::at(0.3), &mut room);
+        commands.attitudes(&room, &mut headings, &mut elevations);
         (headings, elevations)
     };
     let (headings, elevations) = at(None);

@@ -5,7 +5,7 @@ use std::f64::consts::FRAC_PI_2;
 
 use approx::assert_relative_eq;
 use serde::Deserialize;
-use undulift_aero::{Air, FourStrips, Polar, PreparedSection, Scales, Section, SectionTable};
+use undulift_aero::{Air, FourStrips, Polar, Scales, Section, SectionTable};
 use undulift_tests::read_json;
 use wide::f64x4;
 
@@ -50,7 +50,7 @@ fn section_of(case: &Case) -> Section {
         drag: row.drag.clone(),
         moment: row.moment.clone(),
     });
-    Section::from_table("random", SectionTable::new("random", polars.collect()).unwrap())
+    Section::from_table("random", SectionTable::new("random", polars.collect()).unwrap(), 0.25)
 }
 
 /// `domed` and a random table with a moment, at 200 random points and at every knot: PCHIP by
@@ -102,7 +102,7 @@ fn twin_prepared_sections_reproduce_their_tables() {
         (section_of(&file.random), 2e-4),
     ];
     for (section, allowed) in sections {
-        let prepared = PreparedSection::new(&section);
+        let prepared = section.prepared();
         for step in -9000..=9000 {
             for reynolds in [500.0, 4100.0, 8990.0, 12_345.0, 14_000.0, 15_000.0, 80_000.0] {
                 let alpha_rad = f64::from(step) / 9000.0 * FRAC_PI_2;
@@ -197,9 +197,14 @@ fn published_drag_of_a_cylinder() {
 
 /// Side force, up force and couple on one strip, for air that meets it at unit speed.
 fn loads(section: &Section, u_y: f64, u_z: f64) -> [f64; 3] {
-    let sections = [PreparedSection::new(section)];
+    let sections = [section.prepared()];
     let air = Air::at(293.15, 101_325.0);
-    let four = FourStrips::new(&sections, [(0, 0.1); 4], &air, Scales { lift: 1.0, drag: 1.0 });
+    let four = FourStrips::new(
+        std::slice::from_ref(section),
+        [(0, 0.1); 4],
+        &air,
+        Scales { lift: 1.0, drag: 1.0 },
+    );
     let loads = four.loads(&sections, f64x4::splat(u_y), f64x4::splat(u_z));
     [loads.side, loads.up, loads.couple].map(|lanes| lanes.to_array()[0])
 }
@@ -213,10 +218,10 @@ fn analytic_sections_have_no_kinks() {
     let sections =
         [Section::plate(0.25), Section::domed(0.25), section_of(&file.random), Section::round()];
     for section in sections {
-        let prepared = [PreparedSection::new(&section)];
+        let prepared = [section.prepared()];
         let air = Air::at(293.15, 101_325.0);
         let scales = Scales { lift: 1.0, drag: 1.0 };
-        let four = FourStrips::new(&prepared, [(0, 0.1); 4], &air, scales);
+        let four = FourStrips::new(std::slice::from_ref(&section), [(0, 0.1); 4], &air, scales);
         let at = |angle_rad: f64| {
             let (u_z, u_y) = angle_rad.sin_cos();
             let loads = four.loads(&prepared, f64x4::splat(1.5 * u_y), f64x4::splat(-1.5 * u_z));
@@ -252,7 +257,7 @@ fn published_sweep_factors_of_a_yawed_cylinder() {
         drag: vec![1.2; 3],
         moment: None,
     };
-    let section = Section::from_table("rod", SectionTable::new("rod", vec![polar]).unwrap());
+    let section = Section::from_table("rod", SectionTable::new("rod", vec![polar]).unwrap(), 0.25);
     let dynamic_pressure = 0.5 * Air::at(293.15, 101_325.0).density_kg_m3;
     for (sweep_deg, expected) in [(0.0_f64, 1.2), (30.0, 0.9), (45.0, 0.6), (60.0, 0.3)] {
         let across = sweep_deg.to_radians().cos();
@@ -304,10 +309,14 @@ fn analytic_signs_of_lift_and_couple() {
 fn analytic_no_speed_no_load() {
     for section in [Section::plate(0.25), Section::round(), Section::domed(0.25)] {
         assert_eq!(loads(&section, 0.0, 0.0).map(f64::abs), [0.0; 3]);
-        let sections = [PreparedSection::new(&section)];
+        let sections = [section.prepared()];
         let none = Air::at(293.15, 0.0);
-        let four =
-            FourStrips::new(&sections, [(0, 0.1); 4], &none, Scales { lift: 1.0, drag: 1.0 });
+        let four = FourStrips::new(
+            std::slice::from_ref(&section),
+            [(0, 0.1); 4],
+            &none,
+            Scales { lift: 1.0, drag: 1.0 },
+        );
         let found = four.loads(&sections, f64x4::splat(3.0), f64x4::splat(-4.0));
         assert_eq!(found.up.to_array(), [0.0; 4]);
         for speed in [1e-300, 1e-160, 1e-30] {
@@ -349,7 +358,10 @@ fn published_table_with_lift_broadside_is_refused() {
     };
     let refused = SectionTable::new("naca-0015", vec![polar(0.09)]).unwrap_err().to_string();
     assert!(refused.contains("0.09") && refused.contains("90"), "{refused}");
-    let section =
-        Section::from_table("naca-0015", SectionTable::new("naca-0015", vec![polar(0.0)]).unwrap());
+    let section = Section::from_table(
+        "naca-0015",
+        SectionTable::new("naca-0015", vec![polar(0.0)]).unwrap(),
+        0.25,
+    );
     assert_relative_eq!(section.at(10_f64.to_radians(), 5e4).lift, 0.8322, epsilon = 1e-12);
 }

@@ -6,7 +6,7 @@ use wide::{f64x2, f64x4};
 
 use crate::pchip::hermite_cubic;
 use crate::section::{Row, cylinder_drag, plate};
-use crate::{Section, SectionKind, SectionTable};
+use crate::{SectionKind, SectionTable};
 
 /// Cells over the stand-in's range −1…1. Each reproduces values and slopes at its ends; inside the
 /// few that hold a knot of the table, where its curvature jumps, `domed` is missed by 2e-5 at most.
@@ -26,7 +26,6 @@ const CYLINDER_CELLS: usize = 1024;
 #[derive(Debug, Clone, PartialEq)]
 pub struct PreparedSection {
     table: Lookup,
-    lever: f64,
 }
 
 #[derive(Debug, Clone, PartialEq)]
@@ -97,12 +96,11 @@ impl RowScale {
     /// - `reynolds`: of the rows, rising
     fn new(reynolds: &[f64]) -> Self {
         let (first, last) = (reynolds[0], reynolds[reynolds.len() - 1]);
+        let logs: Vec<f64> = reynolds.iter().map(|reynolds| 2.0 * reynolds.ln()).collect();
         let place = |square: f64| -> f64 {
-            let steps = reynolds.windows(2).map(|pair| {
-                let share = (square.sqrt() / pair[0]).ln() / (pair[1] / pair[0]).ln();
-                share.clamp(0.0, 1.0)
-            });
-            steps.sum()
+            let log = square.ln();
+            let share = |pair: &[f64]| ((log - pair[0]) / (pair[1] - pair[0])).clamp(0.0, 1.0);
+            logs.windows(2).map(share).sum()
         };
         // A cell more on each side, in which nothing changes, stands for all that lies beyond.
         let first_cell = (first * first).to_bits().wrapping_shr(CELL_SHIFT) - 1;
@@ -143,22 +141,17 @@ impl PreparedSection {
     }
 
     /// Tabulates a section.
-    pub fn new(section: &Section) -> Self {
-        let table = match &section.kind {
+    pub(crate) fn new(kind: &SectionKind) -> Self {
+        let table = match kind {
             SectionKind::Plate => Lookup::Incidence {
                 rows: RowScale::new(&[1.0]),
-                cells: incidence_cells(plate),
+                cells: incidence_cells(&nodes(), plate).collect(),
                 moment: Vec::new(),
             },
             SectionKind::Round => Lookup::Reynolds { drag: cylinder_cells() },
             SectionKind::Table(table) => table_lookup(table),
         };
-        Self { table, lever: section.lever() }
-    }
-
-    /// ½ − pressure centre, or 0 where the moment is tabulated or none.
-    pub fn lever(&self) -> f64 {
-        self.lever
+        Self { table }
     }
 
     /// Whether the moment is tabulated rather than made from the pressure centre.
@@ -227,13 +220,16 @@ fn cubic_at(cell: &[f64; 4], f: f64) -> f64 {
 }
 
 fn table_lookup(table: &SectionTable) -> Lookup {
-    let rows = table.rows();
+    let (rows, nodes) = (table.rows(), nodes());
     let reynolds: Vec<f64> = rows.iter().map(|row| row.reynolds).collect();
-    let pair = |row: &Row| incidence_cells(|alpha| [row.lift.at(alpha), row.drag.at(alpha)]);
+    let pair = |row: &Row| {
+        let (lift, drag) = (row.lift.clone(), row.drag.clone());
+        incidence_cells(&nodes, move |alpha| [lift.at(alpha), drag.at(alpha)])
+    };
     let moment = |row: &Row| {
-        let curve = row.moment.as_ref()?;
-        let both = incidence_cells(|alpha| [curve.at(alpha), (0.0, 0.0)]);
-        Some(both.into_iter().map(|cell| cell.map(|coefficients| coefficients.to_array()[0])))
+        let curve = row.moment.clone()?;
+        let both = incidence_cells(&nodes, move |alpha| [curve.at(alpha), (0.0, 0.0)]);
+        Some(both.map(|cell| cell.map(|coefficients| coefficients.to_array()[0])))
     };
     Lookup::Incidence {
         rows: RowScale::new(&reynolds),
@@ -242,8 +238,15 @@ fn table_lookup(table: &SectionTable) -> Lookup {
     }
 }
 
-/// Cubic pieces over the stand-in of two curves, each given with its slope per radian.
-fn incidence_cells(curves: impl Fn(f64) -> [(f64, f64); 2]) -> Vec<[f64x2; 4]> {
+/// An end of a cell: incidence, and how much of it a cell takes there.
+#[derive(Debug, Clone, Copy)]
+struct Node {
+    alpha_rad: f64,
+    alpha_per_cell: f64,
+}
+
+/// The ends of all cells of incidence.
+fn nodes() -> Vec<Node> {
     let width = 2.0 / INCIDENCE_CELLS as f64;
     let node = |k: usize| {
         let stand_in = k as f64 * width - 1.0;
@@ -252,18 +255,30 @@ fn incidence_cells(curves: impl Fn(f64) -> [(f64, f64); 2]) -> Vec<[f64x2; 4]> {
             INCIDENCE_CELLS => FRAC_PI_2,
             _ => stand_in.signum() * stand_in.abs().atan2(1.0 - stand_in.abs()),
         };
-        let alpha_per_cell = (1.0 + (2.0 * alpha_rad).sin().abs()) * width;
-        curves(alpha_rad).map(|(value, slope)| (value, slope * alpha_per_cell))
+        Node { alpha_rad, alpha_per_cell: (1.0 + (2.0 * alpha_rad).sin().abs()) * width }
     };
-    let nodes: Vec<_> = (0..=INCIDENCE_CELLS).map(node).collect();
-    let cells = nodes.windows(2).map(|ends| {
-        let [first, second] = [0, 1].map(|k| hermite_cubic(ends[0][k], ends[1][k]));
-        [0, 1, 2, 3].map(|power| f64x2::new([first[power], second[power]]))
-    });
+    (0..=INCIDENCE_CELLS).map(node).collect()
+}
+
+/// Cubic pieces over the stand-in of two curves, each given with its slope per radian.
+fn incidence_cells(
+    nodes: &[Node],
+    curves: impl Fn(f64) -> [(f64, f64); 2],
+) -> impl Iterator<Item = [f64x2; 4]> {
+    let end = move |node: &Node| {
+        curves(node.alpha_rad).map(|(value, slope)| (value, slope * node.alpha_per_cell))
+    };
+    let ends: Vec<[(f64, f64); 2]> = nodes.iter().map(end).collect();
+    let [first, second] = ends[INCIDENCE_CELLS];
     // A place on the upper end may count as the start of a cell after the last.
-    let [first, second] = nodes[INCIDENCE_CELLS];
-    let end = [f64x2::new([first.0, second.0]), f64x2::ZERO, f64x2::ZERO, f64x2::ZERO];
-    cells.chain([end]).collect()
+    let last = [f64x2::new([first.0, second.0]), f64x2::ZERO, f64x2::ZERO, f64x2::ZERO];
+    (0..INCIDENCE_CELLS)
+        .map(move |k| {
+            let [first, second] =
+                [0, 1].map(|curve| hermite_cubic(ends[k][curve], ends[k + 1][curve]));
+            [0, 1, 2, 3].map(|power| f64x2::new([first[power], second[power]]))
+        })
+        .chain([last])
 }
 
 fn cylinder_cells() -> Vec<[f64; 4]> {

@@ -1,6 +1,8 @@
 use std::f64::consts::FRAC_PI_2;
+use std::sync::{Arc, LazyLock, OnceLock};
 
-use crate::{AeroError, DEFAULT_PRESSURE_CENTRE, Parity, Pchip, domed};
+use crate::prepared::PreparedSection;
+use crate::{AeroError, Parity, Pchip, domed};
 
 /// Drag coefficient of a long flat plate broadside on (Hoerner, *Fluid-Dynamic Drag*, 1965).
 const PLATE_BROADSIDE_DRAG: f64 = 1.98;
@@ -52,18 +54,32 @@ pub enum SectionKind {
     Table(SectionTable),
 }
 
+/// Tables for the inner loop, made when first asked for and shared by copies.
+type SharedTables = Arc<OnceLock<Arc<PreparedSection>>>;
+
 /// A cross-section of the body as the air meets it.
-#[derive(Debug, Clone, PartialEq)]
+///
+/// Copies share the tables that the inner loop reads, which are made when first asked for.
+#[derive(Debug, Clone)]
 pub struct Section {
     /// As files and reports call it.
     pub name: String,
-    /// Where its coefficients come from.
-    pub kind: SectionKind,
+    kind: SectionKind,
     /// Pressure centre at small incidence, fraction of the chord from the leading edge. Not used
     /// by a round section, whose pressure centre is always mid-chord, nor beside a tabulated moment.
     pub pressure_centre: f64,
     /// Incidences between which the coefficients were measured, rad; absent where all or none were.
     pub measured_rad: Option<[f64; 2]>,
+    prepared: SharedTables,
+}
+
+impl PartialEq for Section {
+    fn eq(&self, other: &Self) -> bool {
+        self.name == other.name
+            && self.kind == other.kind
+            && self.pressure_centre == other.pressure_centre
+            && self.measured_rad == other.measured_rad
+    }
 }
 
 /// Lift, drag and moment of a section at one incidence.
@@ -177,7 +193,14 @@ impl Section {
     /// Lindenburg, *Stall coefficients*, ECN-RX--01-004, 2001: normal force of a plate of infinite
     /// span; broadside drag after Hoerner, *Fluid-Dynamic Drag*, 1965.
     pub fn plate(pressure_centre: f64) -> Self {
-        Self { name: "plate".into(), kind: SectionKind::Plate, pressure_centre, measured_rad: None }
+        static PREPARED: LazyLock<SharedTables> = LazyLock::new(Arc::default);
+        Self {
+            name: "plate".into(),
+            kind: SectionKind::Plate,
+            pressure_centre,
+            measured_rad: None,
+            prepared: PREPARED.clone(),
+        }
     }
 
     /// A circular cylinder: no lift, drag by Reynolds number.
@@ -186,8 +209,14 @@ impl Section {
     ///
     /// Cheng, *Calculation of drag coefficient of a cylinder*, J. Hydraulic Engineering 139, 2013.
     pub fn round() -> Self {
-        let name = "round".into();
-        Self { name, kind: SectionKind::Round, pressure_centre: 0.5, measured_rad: None }
+        static PREPARED: LazyLock<SharedTables> = LazyLock::new(Arc::default);
+        Self {
+            name: "round".into(),
+            kind: SectionKind::Round,
+            pressure_centre: 0.5,
+            measured_rad: None,
+            prepared: PREPARED.clone(),
+        }
     }
 
     /// The flattened, hollow-bellied section: measured from −10° to 60°, completed elsewhere.
@@ -196,6 +225,7 @@ impl Section {
     ///
     /// Holden, Socha, Cardwell, Vlachos, J. Exp. Biol. 217:382–394, 2014; the completion is ours.
     pub fn domed(pressure_centre: f64) -> Self {
+        static PREPARED: LazyLock<SharedTables> = LazyLock::new(Arc::default);
         let polar = |(row, reynolds): (usize, f64)| Polar {
             reynolds,
             alpha_rad: domed::ROWS.iter().map(|(alpha_deg, _)| alpha_deg.to_radians()).collect(),
@@ -210,17 +240,31 @@ impl Section {
             kind: SectionKind::Table(table),
             pressure_centre,
             measured_rad: Some(domed::MEASURED_DEG.map(f64::to_radians)),
+            prepared: PREPARED.clone(),
         }
     }
 
     /// A section of one's own.
-    pub fn from_table(name: &str, table: SectionTable) -> Self {
+    ///
+    /// - `pressure_centre`: not used beside a tabulated moment
+    pub fn from_table(name: &str, table: SectionTable, pressure_centre: f64) -> Self {
         Self {
             name: name.to_owned(),
             kind: SectionKind::Table(table),
-            pressure_centre: DEFAULT_PRESSURE_CENTRE,
+            pressure_centre,
             measured_rad: None,
+            prepared: Arc::default(),
         }
+    }
+
+    /// What the coefficients come from.
+    pub fn kind(&self) -> &SectionKind {
+        &self.kind
+    }
+
+    /// The tables that the inner loop reads.
+    pub fn prepared(&self) -> Arc<PreparedSection> {
+        self.prepared.get_or_init(|| Arc::new(PreparedSection::new(&self.kind))).clone()
     }
 
     /// Reynolds numbers beyond which the coefficients are held constant, where there are several.
@@ -248,14 +292,15 @@ impl Section {
         Coefficients { lift, drag, moment }
     }
 
+    /// Whether the moment is tabulated rather than made from the pressure centre.
+    pub fn has_moment(&self) -> bool {
+        matches!(&self.kind, SectionKind::Table(table) if table.has_moment)
+    }
+
     /// The pressure centre where it is used, and so is an assumption.
     pub fn assumed_pressure_centre(&self) -> Option<f64> {
-        let used = match &self.kind {
-            SectionKind::Plate => true,
-            SectionKind::Round => false,
-            SectionKind::Table(table) => !table.has_moment,
-        };
-        used.then_some(self.pressure_centre)
+        let unused = matches!(self.kind, SectionKind::Round) || self.has_moment();
+        (!unused).then_some(self.pressure_centre)
     }
 
     /// Lever of the normal force ahead of mid-chord at small incidence, chords: ½ − x₀; it falls

@@ -1,7 +1,9 @@
+use std::sync::Arc;
+
 use wide::{CmpGe, f64x4};
 
 use crate::prepared::places;
-use crate::{Air, PreparedSection};
+use crate::{Air, PreparedSection, Section};
 
 /// Factors on the coefficients, for uncertainty and calibration; they leave a tabulated moment and
 /// the friction alone.
@@ -42,12 +44,7 @@ const NO_SPEED: f64 = 1e-280;
 
 impl FourStrips {
     /// - `strips`: index into `sections`, and chord in m
-    pub fn new(
-        sections: &[PreparedSection],
-        strips: [(usize, f64); 4],
-        air: &Air,
-        scales: Scales,
-    ) -> Self {
+    pub fn new(sections: &[Section], strips: [(usize, f64); 4], air: &Air, scales: Scales) -> Self {
         let chord_m = f64x4::new(strips.map(|(_, chord_m)| chord_m));
         let indices = strips.map(|(section_idx, _)| section_idx);
         let reynolds_per_speed = chord_m * f64x4::splat(air.density_kg_m3 / air.viscosity_pa_s);
@@ -66,14 +63,14 @@ impl FourStrips {
     ///
     /// Sweep is felt only through what crosses the axis (independence principle).
     ///
-    /// - `sections`: those that [`FourStrips::new`] was given
+    /// - `sections`: tables of those that [`FourStrips::new`] was given
     /// - `u_y`, `u_z`: m/s in segment axes
     ///
     /// # Source
     ///
     /// Hoerner, *Fluid-Dynamic Drag*, 1965, ch. III (cross-flow principle).
     #[inline]
-    pub fn loads(&self, sections: &[PreparedSection], u_y: f64x4, u_z: f64x4) -> StripLoads {
+    pub fn loads(&self, sections: &[Arc<PreparedSection>], u_y: f64x4, u_z: f64x4) -> StripLoads {
         let zero = f64x4::splat(0.0);
         let one = f64x4::splat(1.0);
         let (side_speed, up_speed) = (u_y.abs(), u_z.abs());

@@ -8,6 +8,9 @@ use crate::nearest::nearest;
 use crate::node::shortened;
 use crate::range::Range;
 
+/// Most columns that are looked at; the longest body needs far fewer.
+const MOST_COLUMNS: usize = 1000;
+
 /// A column that a table may have.
 #[derive(Debug, Clone)]
 pub(crate) struct ColumnRule {
@@ -136,6 +139,12 @@ fn check_header(
         let what = DesignError::Row { why, remedy };
         return Err(vec![Mistake::at(source, start..start, String::new(), what)]);
     }
+    if names.len() > MOST_COLUMNS {
+        let why = format!("there are {} columns, but at most {MOST_COLUMNS} are read", names.len());
+        let remedy = "check that this is the file you mean";
+        let what = DesignError::Row { why, remedy };
+        return Err(vec![Mistake::at(source, start..start, String::new(), what)]);
+    }
     let mut mistakes = Vec::new();
     let named = |needed| {
         let rules = rules.iter().filter(move |rule| rule.needed == needed);
@@ -152,7 +161,7 @@ fn check_header(
         let what = DesignError::MissingColumn { column, nearest, wanted };
         mistakes.push(Mistake::at(source, start..start, String::new(), what));
     }
-    for (place, name) in names.iter().enumerate().take(MOST_COLLECTED) {
+    for (place, name) in names.iter().enumerate() {
         let why = if names[..place].contains(name) {
             "is there twice".to_owned()
         } else if unknown(&name) {

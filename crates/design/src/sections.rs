@@ -54,7 +54,7 @@ fn read_section(name: &str, table: Table<'_>, files: &mut NamedFiles) -> Option<
         let node = table.need("table", "the name of a CSV file");
         let source = node.and_then(|node| files.read_csv(&node));
         match source.map(|source| build_section_table(name, &source)) {
-            Some(Ok(rows)) => Some(Section { pressure_centre, ..Section::from_table(name, rows) }),
+            Some(Ok(rows)) => Some(Section::from_table(name, rows, pressure_centre)),
             Some(Err(mistakes)) => {
                 table.document().note_all(mistakes);
                 None

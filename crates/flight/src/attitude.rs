@@ -3,7 +3,7 @@
 use nalgebra::{Matrix3, Rotation3, Vector3};
 use undulift_chain::{Chain, LANES, Triple, nearest_rotation, sin_cos_all};
 use undulift_dynamics::Frames;
-use undulift_gait::{Commands, Instant, Motion};
+use undulift_gait::{Commands, Motion};
 use wide::f64x4;
 
 /// How the body lies in the world.
@@ -55,6 +55,7 @@ impl Attitude {
 /// that a segment would have in a body lying straight along its wave's axis.
 #[derive(Debug, Clone)]
 pub(crate) struct BodyFrame {
+    n_segments: usize,
     masses_kg: Vec<f64x4>,
 }
 
@@ -75,29 +76,28 @@ impl BodyFrame {
                 f64x4::new(std::array::from_fn(|lane| four.get(lane).map_or(0.0, |i| i.mass_kg)))
             })
             .collect();
-        Self { masses_kg }
+        Self { n_segments: chain.n_segments(), masses_kg }
     }
 
-    pub(crate) fn room(&self, n_segments: usize) -> BodyRoom {
-        let one = || vec![0.0; n_segments.next_multiple_of(LANES)];
+    pub(crate) fn room(&self) -> BodyRoom {
+        let one = || vec![0.0; self.masses_kg.len() * LANES];
         let both = || [one(), one()];
         BodyRoom { angles_rad: both(), sines: both(), cosines: both() }
     }
 
     /// Body axes to root axes.
     ///
-    /// - `frames`: of the same instant
+    /// - `motion`, `frames`: of the same instant
     pub(crate) fn in_root(
         &self,
         commands: &Commands,
-        at: Instant,
-        n_segments: usize,
+        motion: &Motion,
         frames: &Frames,
-        motion: &mut Motion,
         room: &mut BodyRoom,
     ) -> Matrix3<f64> {
+        let n = self.n_segments;
         let [headings, elevations] = &mut room.angles_rad;
-        commands.attitudes(at, motion, &mut headings[..n_segments], &mut elevations[..n_segments]);
+        commands.attitudes(motion, &mut headings[..n], &mut elevations[..n]);
         for which in 0..2 {
             sin_cos_all(&room.angles_rad[which], &mut room.sines[which], &mut room.cosines[which]);
         }

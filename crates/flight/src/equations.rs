@@ -20,7 +20,6 @@ pub struct Equations {
     loads: AirLoads,
     body: BodyFrame,
     boxes: Vec<FourBoxes>,
-    n_segments: usize,
     wind_world_m_s: Vector3<f64>,
     units: Units,
     room: Room,
@@ -61,16 +60,13 @@ impl Equations {
         let commands = Commands::new(&glider.gait, &glider.chain)?;
         let mechanics = Mechanics::new(&glider.chain);
         let body = BodyFrame::new(&glider.chain);
-        let n_segments = glider.chain.n_segments();
-        let room =
-            Room { motion: commands.room(), frames: mechanics.room(), body: body.room(n_segments) };
+        let room = Room { motion: commands.room(), frames: mechanics.room(), body: body.room() };
         Ok(Self {
             commands,
             mechanics,
             loads: AirLoads::new(glider),
             body,
             boxes: glider.chain.segments().chunks(LANES).map(FourBoxes::new).collect(),
-            n_segments,
             wind_world_m_s: glider.wind_world_m_s,
             units: Units::of(&glider.chain),
             room,
@@ -203,13 +199,8 @@ impl Equations {
         self.commands.rates(at, &mut self.room.motion);
         let motion = &self.room.motion;
         self.mechanics.frames(&motion.angles_rad, &motion.rates_rad_s, &mut self.room.frames);
-        self.body_of_frames(at)
-    }
-
-    /// Body axes to root axes for the frames as they were left, which are of this instant.
-    pub(crate) fn body_of_frames(&mut self, at: Instant) -> Matrix3<f64> {
         let Room { motion, frames, body } = &mut self.room;
-        self.body.in_root(&self.commands, at, self.n_segments, frames, motion, body)
+        self.body.in_root(&self.commands, motion, frames, body)
     }
 
     /// How the body lies at an instant; leaves the frames of that instant behind.

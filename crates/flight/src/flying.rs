@@ -120,7 +120,7 @@ struct Flying {
 struct Piece<'a> {
     equations: &'a RefCell<Equations>,
     inside_s: f64,
-    ends: &'a RefCell<Vec<f64>>,
+    ends: &'a RefCell<Vec<Look>>,
     settings: Settings,
     body_m: f64,
     stop_when_inverted: bool,
@@ -135,13 +135,14 @@ impl System<f64, Scaled> for Piece<'_> {
     /// Stops behind the first step that ends below the floor or on its back; where exactly it
     /// happened is found on the interpolant afterwards.
     fn solout(&mut self, time_s: f64, scaled: &Scaled, _rates: &Scaled) -> bool {
-        self.ends.borrow_mut().push(time_s);
         let mut equations = self.equations.borrow_mut();
         let at = Instant { time_s, piece_s: self.inside_s };
         let state = equations.units().state(scaled);
+        let attitude = equations.attitude(at, &state);
+        self.ends.borrow_mut().push(Look { time_s, state, attitude });
         let near_floor = state.place_m.z - self.settings.floor_m < self.body_m;
-        (near_floor && equations.lowest_corner_m(at, &state) <= self.settings.floor_m)
-            || (self.stop_when_inverted && equations.attitude(at, &state).uprightness() <= 0.0)
+        (self.stop_when_inverted && attitude.uprightness() <= 0.0)
+            || (near_floor && equations.lowest_corner_m(at, &state) <= self.settings.floor_m)
     }
 }
 
@@ -167,13 +168,13 @@ impl Flying {
             let next_s = self.equations.borrow().commands().next_break_s(time_s);
             let until_s =
                 next_s.map_or(self.settings.max_time_s, |s| s.min(self.settings.max_time_s));
-            let ends_s = self.integrate(time_s, until_s, &state)?;
+            let ends = self.integrate(time_s, until_s, &state)?;
             if time_s == 0.0 {
                 let first = self.look(0.0);
                 self.looks.push(first);
             }
-            for step_end_s in ends_s {
-                if let Some((end_s, end)) = self.look_along(step_end_s) {
+            for step_end in ends {
+                if let Some((end_s, end)) = self.look_along(step_end) {
                     return Ok(self.ended(end_s, end));
                 }
             }
@@ -186,19 +187,19 @@ impl Flying {
         }
     }
 
-    /// Integrates one smooth piece; returns the ends of its steps.
+    /// Integrates one smooth piece; returns what is seen at the ends of its steps.
     fn integrate(
         &mut self,
         from_s: f64,
         until_s: f64,
         start: &State,
-    ) -> Result<Vec<f64>, FlightError> {
+    ) -> Result<Vec<Look>, FlightError> {
         let inside_s = 0.5 * (from_s + until_s);
-        let ends_s = RefCell::new(Vec::new());
+        let ends = RefCell::new(Vec::new());
         let piece = Piece {
             equations: &self.equations,
             inside_s,
-            ends: &ends_s,
+            ends: &ends,
             settings: self.settings,
             body_m: self.body_m,
             stop_when_inverted: !self.settings.through_inversion,
@@ -240,7 +241,7 @@ impl Flying {
         drop(stepper);
         self.steps += stats.accepted_steps + stats.rejected_steps;
         self.trajectory.push(from_s, inside_s, model);
-        Ok(ends_s.into_inner())
+        Ok(ends.into_inner())
     }
 
     /// What is seen at a time.
@@ -252,13 +253,15 @@ impl Flying {
     }
 
     /// Looks along the step that follows the last look; returns its end if the flight ends in it.
-    fn look_along(&mut self, step_end_s: f64) -> Option<(f64, End)> {
+    fn look_along(&mut self, step_end: Look) -> Option<(f64, End)> {
         let start = *self.looks.last().expect("the release is looked at first");
-        let part_s = (step_end_s - start.time_s) / PARTS as f64;
+        let part_s = (step_end.time_s - start.time_s) / PARTS as f64;
         for part in 1..=PARTS {
-            let to_s = if part == PARTS { step_end_s } else { start.time_s + part_s * part as f64 };
             let before = *self.looks.last().expect("never empty");
-            let look = self.look(to_s);
+            let look = match part {
+                PARTS => step_end,
+                _ => self.look(start.time_s + part_s * part as f64),
+            };
             let landed_s = self.landing_between(&before, &look);
             let inverted_s = self.inversion_between(&before, &look);
             if let Some(event) = self.first_end(landed_s, inverted_s) {

@@ -1,7 +1,9 @@
 //! Air loads on the whole chain, strip by strip.
 
+use std::sync::Arc;
+
 use gauss_quad::GaussLegendre;
-use undulift_aero::{FourStrips, PreparedSection, SkinFrictionLaw};
+use undulift_aero::{FourStrips, PreparedSection, Section, SkinFrictionLaw};
 use undulift_chain::{LANES, Triple};
 use undulift_dynamics::{Centroidal, FourFrames, Frames};
 use wide::f64x4;
@@ -20,7 +22,7 @@ pub struct Wrench {
 /// The chain's strips, laid out once per design.
 #[derive(Debug, Clone)]
 pub(crate) struct AirLoads {
-    sections: Vec<PreparedSection>,
+    sections: Vec<Arc<PreparedSection>>,
     friction: SkinFrictionLaw,
     fours: Vec<FourSegments>,
 }
@@ -87,7 +89,6 @@ pub(crate) struct StripAir {
 
 impl AirLoads {
     pub(crate) fn new(glider: &Glider) -> Self {
-        let sections: Vec<_> = glider.sections.iter().map(PreparedSection::new).collect();
         let rule = gauss_legendre(glider.strips_per_segment);
         let segments = glider.chain.segments();
         let four = |first: usize| {
@@ -103,7 +104,7 @@ impl AirLoads {
             });
             let length_m = lanes(&|segment| segment.length_m);
             FourSegments {
-                strips: FourStrips::new(&sections, strips, &glider.air, glider.scales),
+                strips: FourStrips::new(&glider.sections, strips, &glider.air, glider.scales),
                 length_m,
                 chord_m: lanes(&|segment| segment.width_m),
                 perimeter_m: lanes(&|segment| 2.0 * (segment.width_m + segment.thickness_m)),
@@ -118,6 +119,7 @@ impl AirLoads {
         let fours = (0..segments.len()).step_by(LANES).map(four).collect();
         let friction =
             SkinFrictionLaw::new(glider.skin_friction, &glider.air, glider.chain.length_m());
+        let sections = glider.sections.iter().map(Section::prepared).collect();
         Self { sections, friction, fours }
     }
 
@@ -173,7 +175,7 @@ impl FourSegments {
     #[inline(always)]
     fn wrench(
         &self,
-        sections: &[PreparedSection],
+        sections: &[Arc<PreparedSection>],
         friction: &SkinFrictionLaw,
         at: &FourFrames,
         through: &Through,

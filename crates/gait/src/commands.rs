@@ -189,15 +189,9 @@ impl Commands {
     /// Heading and elevation of each segment along the body's axis, rad; an axis that the chain
     /// lacks counts 0.
     ///
+    /// - `motion`: commands of the instant that is meant
     /// - `headings_rad`, `elevations_rad`: shape (n), filled
-    pub fn attitudes(
-        &self,
-        at: Instant,
-        motion: &mut Motion,
-        headings_rad: &mut [f64],
-        elevations_rad: &mut [f64],
-    ) {
-        self.rates(at, motion);
+    pub fn attitudes(&self, motion: &Motion, headings_rad: &mut [f64], elevations_rad: &mut [f64]) {
         match &self.laid {
             Laid::Wave { .. } => {
                 spread(&self.yaw_spans, &motion.lateral.angles, headings_rad);
