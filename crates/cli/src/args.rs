@@ -49,7 +49,7 @@ pub struct Fly {
     pub every_ms: f64,
 
     /// Relative and absolute tolerance of the integration, from 1e-13 to 1e-2.
-    #[arg(long, value_name = "TOL", default_value_t = 1e-6)]
+    #[arg(long, value_name = "TOL", default_value = "1e-6")]
     pub tolerance: f64,
 
     /// Longest flight, s, at most 3600.

@@ -3,8 +3,8 @@
 use undulift_flight::Doubt;
 
 /// What to say of a doubt, and what to do.
-pub fn in_words(doubt: &Doubt) -> (String, &'static str) {
-    match doubt {
+pub fn in_words(doubt: &Doubt) -> (String, String) {
+    let (doubt, hint) = match doubt {
         Doubt::Unsteady { reduced_frequency } => (
             format!(
                 "reduced frequency {reduced_frequency:.3} is above 0.05: real loads lag behind the \
@@ -55,20 +55,26 @@ pub fn in_words(doubt: &Doubt) -> (String, &'static str) {
                 "segments {ahead} and {behind} take the same space at t = {at_s:.3} s{}",
                 match pairs {
                     1 => String::new(),
+                    2 => ", and one more pair does at some time".to_owned(),
                     _ => format!(", and {} more pairs do at some time", pairs - 1),
                 }
             ),
             "lower the amplitude, use more waves, or make the body narrower there",
         ),
-        Doubt::PressureCentre { assumed } => (
-            format!(
-                "whether it stays upright hangs on the pressure centre, assumed at {assumed:.2} of the \
-                 chord and known least of all"
-            ),
-            "fly it again with 0.05 more and less, such as --set \
-             section.NAME.pressure_centre=0.3, before you trust that it lands upright",
-        ),
-    }
+        Doubt::PressureCentre { section, assumed } => {
+            let hint = format!(
+                "before you trust that it lands upright, fly it again with 0.05 more and less: --set \
+                 section.{section}.pressure_centre={:.2}",
+                assumed + 0.05
+            );
+            let doubt = format!(
+                "whether it stays upright hangs on the pressure centre of section `{section}`, assumed \
+                 at {assumed:.2} of the chord and known least of all numbers"
+            );
+            return (doubt, hint);
+        }
+    };
+    (doubt, hint.to_owned())
 }
 
 fn percent(share: f64) -> String {

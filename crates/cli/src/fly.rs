@@ -77,7 +77,7 @@ pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
     for flown in &done {
         for missed in &flown.missed {
             outcome = outcome.max(Outcome::LimitMissed);
-            terminal::tell_warning(&format!("{}: {}", flown.design.name, missed.in_words()));
+            terminal::tell_limit(&format!("{}: {}", flown.design.name, missed.in_words()));
         }
     }
     Ok(outcome)
@@ -156,7 +156,7 @@ fn tell_doubts(flown: &Flown) {
     for doubt in &flown.doubts {
         let (doubt, hint) = words::in_words(doubt);
         terminal::tell_warning(&doubt);
-        terminal::tell_hint(hint);
+        terminal::tell_hint(&hint);
     }
 }
 

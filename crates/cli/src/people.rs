@@ -130,7 +130,7 @@ fn strips(flown: &Flown) -> String {
     let [low, high] = alpha_rad.map(f64::to_degrees);
     let [slow, fast] = reynolds.map(thousands);
     format!(
-        "incidence {low:.0}° to {high:.0}°, Reynolds number {slow} to {fast} (9/10 of the load)"
+        "incidence {low:.0}° to {high:.0}°, Reynolds number {slow} to {fast}, for nine tenths of the load"
     )
 }
 

@@ -30,7 +30,12 @@ pub fn tell_error(text: &str) {
     tell("error", AnsiColor::Red.on_default().bold(), text);
 }
 
-/// Says what to doubt, or which limit is missed.
+/// Says which limit is missed.
+pub fn tell_limit(text: &str) {
+    tell("limit", AnsiColor::Red.on_default().bold(), text);
+}
+
+/// Says what to doubt.
 pub fn tell_warning(text: &str) {
     tell("warning", AnsiColor::Yellow.on_default().bold(), text);
 }

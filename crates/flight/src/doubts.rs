@@ -71,6 +71,8 @@ pub enum Doubt {
     },
     /// Whether it stays upright hangs on the pressure centre, the number known least.
     PressureCentre {
+        /// Name of the section.
+        section: String,
         /// Assumed, fraction of the chord from the leading edge.
         assumed: f64,
     },
@@ -110,10 +112,7 @@ pub fn doubts(glider: &Glider, flight: &Flight, summary: &Summary, bands: &Bands
         doubts.push(Doubt::AddedMass { ratio });
     }
     doubts.extend(overlap(glider, flight));
-    let assumed = glider.sections.iter().filter_map(Section::assumed_pressure_centre);
-    if let Some(assumed) = assumed.reduce(f64::min) {
-        doubts.push(Doubt::PressureCentre { assumed });
-    }
+    doubts.extend(foremost_pressure_centre(&glider.sections));
     doubts
 }
 
@@ -136,6 +135,16 @@ fn stretched_doubts(section: &Section, stretched: &Stretched) -> Vec<Doubt> {
     .into_iter()
     .flatten()
     .collect()
+}
+
+/// The section whose assumed pressure centre is nearest to its leading edge.
+fn foremost_pressure_centre(sections: &[Section]) -> Option<Doubt> {
+    let assumed = sections.iter().filter_map(|section| {
+        let section_centre = section.assumed_pressure_centre()?;
+        Some((section_centre, &section.name))
+    });
+    let (assumed, name) = assumed.min_by(|a, b| a.0.total_cmp(&b.0))?;
+    Some(Doubt::PressureCentre { section: name.clone(), assumed })
 }
 
 /// Mass of the air that a flat chain carries with it, (π/4)ρΣc²L, over the chain's own.
