@@ -2,8 +2,9 @@
 
 use nalgebra::Vector3;
 use serde::Deserialize;
-use undulift_chain::{Carried, Chain, Joint, LANES, PointMass, Segment, Shape, Triple, joint_axes};
+use undulift_chain::{Carried, Chain, Joint, PointMass, Segment, Shape, joint_axes};
 use undulift_dynamics::{FourFrames, Mechanics};
+use undulift_lanes::{LANES, Triple};
 use undulift_tests::{read_json, relative_difference};
 
 #[derive(Deserialize)]

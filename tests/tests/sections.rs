@@ -6,8 +6,8 @@ use std::f64::consts::FRAC_PI_2;
 use approx::assert_relative_eq;
 use serde::Deserialize;
 use undulift_aero::{Air, FourStrips, Polar, Scales, Section, SectionTable};
+use undulift_lanes::f64x4;
 use undulift_tests::read_json;
-use wide::f64x4;
 
 #[derive(Deserialize)]
 struct File {

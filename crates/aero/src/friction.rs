@@ -1,4 +1,4 @@
-use wide::f64x4;
+use undulift_lanes::f64x4;
 
 use crate::Air;
 

@@ -2,7 +2,7 @@
 
 use std::f64::consts::FRAC_PI_2;
 
-use wide::{f64x2, f64x4};
+use undulift_lanes::{f64x2, f64x4, whole_and_rest};
 
 use crate::pchip::hermite_cubic;
 use crate::section::{Row, cylinder_drag, plate};
@@ -51,29 +51,14 @@ pub(crate) struct Place {
     into: f64,
 }
 
-/// Cell and fraction of four places counted in cells, at or above 0.
-///
-/// Without a branch, and without the checks of a conversion to an integer: adding [`ROUNDING`]
-/// leaves the whole number in the last bits.
-#[inline(always)]
-fn split(places: f64x4) -> ([u32; 4], f64x4) {
-    let rounding = f64x4::splat(ROUNDING);
-    let rounded = (places - f64x4::splat(0.5)) + rounding;
-    (rounded.to_array().map(|lane| lane.to_bits() as u32), places - (rounded - rounding))
-}
-
-/// 1.5·2⁵²: a double of this size has no bits left for a fraction.
-const ROUNDING: f64 = 6_755_399_441_055_744.0;
-
 /// Places of four values of the stand-in.
 #[inline(always)]
 pub(crate) fn places(stand_in: f64x4) -> [Place; 4] {
     let half = f64x4::splat((INCIDENCE_CELLS / 2) as f64);
-    let (cells, into) = split((stand_in * half + half).fast_max(f64x4::splat(0.0)));
-    let into = into.to_array();
-    std::array::from_fn(|lane| Place {
-        cell: (cells[lane] as usize).min(INCIDENCE_CELLS),
-        into: into[lane],
+    let places = (stand_in * half + half).fast_max(f64x4::splat(0.0)).to_array();
+    places.map(|place| {
+        let (cell, into) = whole_and_rest(place);
+        Place { cell: cell.min(INCIDENCE_CELLS), into }
     })
 }
 
@@ -125,9 +110,8 @@ impl RowScale {
         let cell = (reynolds_squared.to_bits() >> CELL_SHIFT).saturating_sub(self.first_cell);
         let [constant, slope] = self.cells[(cell as usize).min(self.cells.len() - 1)];
         let place = constant + slope * reynolds_squared;
-        let rounded = (place - 0.5) + ROUNDING;
-        let row = (rounded.to_bits() as u32 as usize).min(self.last_row);
-        (row, place - (rounded - ROUNDING))
+        let (row, weight) = whole_and_rest(place);
+        (row.min(self.last_row), weight)
     }
 }
 

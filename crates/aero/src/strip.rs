@@ -1,6 +1,6 @@
 use std::sync::Arc;
 
-use wide::{CmpGe, f64x4};
+use undulift_lanes::{CmpGe, f64x4};
 
 use crate::prepared::places;
 use crate::{Air, PreparedSection, Section};

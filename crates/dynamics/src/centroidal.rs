@@ -1,6 +1,6 @@
 use nalgebra::Matrix3;
-use undulift_chain::{Inertial, LANES, Number, Triple};
-use wide::f64x4;
+use undulift_chain::Inertial;
+use undulift_lanes::{LANES, Number, Triple, f64x4, lanes};
 
 use crate::{FourFrames, Frames, Mechanics};
 
@@ -47,16 +47,9 @@ pub(crate) struct FourInertials {
 
 impl FourInertials {
     pub(crate) fn new(inertials: &[Inertial]) -> Self {
-        let lanes = |value: &dyn Fn(&Inertial) -> f64| {
-            let mut lanes = [0.0; LANES];
-            for (lane, inertial) in lanes.iter_mut().zip(inertials) {
-                *lane = value(inertial);
-            }
-            f64x4::new(lanes)
-        };
         // J = tr(S)·1 − S, so S = ½tr(J)·1 − J.
         let second = |i: usize, j: usize| {
-            lanes(&|inertial| {
+            lanes(inertials, |inertial| {
                 let inertia = &inertial.inertia_kg_m2;
                 let half_trace = if i == j { 0.5 * inertia.trace() } else { 0.0 };
                 half_trace - inertia[(i, j)]
@@ -64,11 +57,11 @@ impl FourInertials {
         };
         let products = [second(0, 1), second(0, 2), second(1, 2)];
         Self {
-            mass_kg: lanes(&|inertial| inertial.mass_kg),
+            mass_kg: lanes(inertials, |inertial| inertial.mass_kg),
             centre_m: Triple {
-                x: lanes(&|inertial| inertial.centre_m.x),
-                y: lanes(&|inertial| inertial.centre_m.y),
-                z: lanes(&|inertial| inertial.centre_m.z),
+                x: lanes(inertials, |inertial| inertial.centre_m.x),
+                y: lanes(inertials, |inertial| inertial.centre_m.y),
+                z: lanes(inertials, |inertial| inertial.centre_m.z),
             },
             second: Symmetric {
                 xx: second(0, 0),

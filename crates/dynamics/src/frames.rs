@@ -1,5 +1,5 @@
-use undulift_chain::{Axis, Chain, LANES, Triple, joint_axes, sin_cos_all};
-use wide::f64x4;
+use undulift_chain::{Axis, Chain, joint_axes};
+use undulift_lanes::{LANES, Triple, f64x4, sin_cos_all};
 
 use crate::centroidal::FourInertials;
 

@@ -1,10 +1,10 @@
 //! The body frame: roll, pitch and yaw of an undulating chain.
 
 use nalgebra::{Matrix3, Rotation3, Vector3};
-use undulift_chain::{Chain, LANES, Triple, nearest_rotation, sin_cos_all};
+use undulift_chain::{Chain, nearest_rotation};
 use undulift_dynamics::Frames;
 use undulift_gait::{Commands, Motion};
-use wide::f64x4;
+use undulift_lanes::{LANES, Triple, f64x4, lanes, sin_cos_all};
 
 /// How the body lies in the world.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -72,9 +72,7 @@ impl BodyFrame {
         let masses_kg = chain
             .inertials()
             .chunks(LANES)
-            .map(|four| {
-                f64x4::new(std::array::from_fn(|lane| four.get(lane).map_or(0.0, |i| i.mass_kg)))
-            })
+            .map(|four| lanes(four, |inertial| inertial.mass_kg))
             .collect();
         Self { n_segments: chain.n_segments(), masses_kg }
     }

@@ -2,10 +2,10 @@
 
 use nalgebra::{Matrix3, Vector3};
 use undulift_aero::STANDARD_GRAVITY_M_S2;
-use undulift_chain::{LANES, Triple};
+use undulift_chain::Segment;
 use undulift_dynamics::{Centroidal, Frames, Mechanics};
 use undulift_gait::{Commands, Instant, Motion};
-use wide::f64x4;
+use undulift_lanes::{LANES, Triple, f64x4, lanes};
 
 use crate::attitude::{BodyFrame, BodyRoom};
 use crate::loads::{AirLoads, StripAir, Through};
@@ -244,15 +244,13 @@ impl Equations {
 }
 
 impl FourBoxes {
-    fn new(segments: &[undulift_chain::Segment]) -> Self {
-        let lanes = |value: &dyn Fn(&undulift_chain::Segment) -> f64, absent: f64| {
-            f64x4::new(std::array::from_fn(|lane| segments.get(lane).map_or(absent, value)))
-        };
+    fn new(segments: &[Segment]) -> Self {
+        let absent_m = |lane: usize| if lane < segments.len() { 0.0 } else { f64::INFINITY };
         Self {
-            half_length_m: lanes(&|segment| segment.length_m / 2.0, 0.0),
-            half_width_m: lanes(&|segment| segment.width_m / 2.0, 0.0),
-            half_thickness_m: lanes(&|segment| segment.thickness_m / 2.0, 0.0),
-            absent_m: lanes(&|_| 0.0, f64::INFINITY),
+            half_length_m: lanes(segments, |segment| segment.length_m / 2.0),
+            half_width_m: lanes(segments, |segment| segment.width_m / 2.0),
+            half_thickness_m: lanes(segments, |segment| segment.thickness_m / 2.0),
+            absent_m: f64x4::new(std::array::from_fn(absent_m)),
         }
     }
 }

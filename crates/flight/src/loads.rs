@@ -4,9 +4,9 @@ use std::sync::Arc;
 
 use gauss_quad::GaussLegendre;
 use undulift_aero::{FourStrips, PreparedSection, Section, SkinFrictionLaw};
-use undulift_chain::{LANES, Triple};
+use undulift_chain::Segment;
 use undulift_dynamics::{Centroidal, FourFrames, Frames};
-use wide::f64x4;
+use undulift_lanes::{LANES, Triple, f64x4, lanes};
 
 use crate::Glider;
 
@@ -92,22 +92,19 @@ impl AirLoads {
         let rule = gauss_legendre(glider.strips_per_segment);
         let segments = glider.chain.segments();
         let four = |first: usize| {
-            let in_lane = |lane: usize| segments.get(first + lane);
-            let lanes = |value: &dyn Fn(&undulift_chain::Segment) -> f64| {
-                f64x4::new(std::array::from_fn(|lane| in_lane(lane).map_or(0.0, value)))
-            };
+            let here: &[Segment] = &segments[first..];
             // Lanes past the tail copy the last section, so that they ask for nothing more.
             let last = segments.len() - 1;
             let strips: [(usize, f64); LANES] = std::array::from_fn(|lane| {
                 let segment_idx = (first + lane).min(last);
                 (glider.section_of[segment_idx], segments[segment_idx].width_m)
             });
-            let length_m = lanes(&|segment| segment.length_m);
+            let length_m = lanes(here, |segment| segment.length_m);
             FourSegments {
                 strips: FourStrips::new(&glider.sections, strips, &glider.air, glider.scales),
                 length_m,
-                chord_m: lanes(&|segment| segment.width_m),
-                perimeter_m: lanes(&|segment| 2.0 * (segment.width_m + segment.thickness_m)),
+                chord_m: lanes(here, |segment| segment.width_m),
+                perimeter_m: lanes(here, |segment| 2.0 * (segment.width_m + segment.thickness_m)),
                 stations: rule
                     .iter()
                     .map(|&(at, weight)| {

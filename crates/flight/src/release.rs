@@ -1,6 +1,6 @@
 use nalgebra::{UnitQuaternion, Vector3};
-use undulift_chain::Triple;
 use undulift_gait::Instant;
+use undulift_lanes::{LANES, Triple};
 
 use crate::{Attitude, Equations, FlightError, Launch, State};
 
@@ -35,8 +35,8 @@ pub fn release(
     let (velocity_m_s, momentum) = match launch.grip_segment_idx {
         None => (launch_m_s, Vector3::zeros()),
         Some(segment_idx) => {
-            let four = &equations.frames().fours[segment_idx / undulift_chain::LANES];
-            let lane = segment_idx % undulift_chain::LANES;
+            let four = &equations.frames().fours[segment_idx / LANES];
+            let lane = segment_idx % LANES;
             // The head turns so that the gripped segment doesn't.
             let head_rad_s = Triple::zero() - four.angular_velocity_rad_s.lane(lane);
             let apart_m = four.front_m.lane(lane) - centroidal.centre_m;

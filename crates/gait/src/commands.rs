@@ -1,7 +1,7 @@
 //! A gait laid on one chain.
 
-use undulift_chain::{Axis, AxisOf, Chain, Span, joint_axes, sin_cos, spans};
-use wide::f64x4;
+use undulift_chain::{Axis, AxisOf, Chain, Span, joint_axes, spans};
+use undulift_lanes::{f64x4, sin_cos};
 
 use crate::table::RowMotion;
 use crate::wave::{SpanMotion, SpanWave};

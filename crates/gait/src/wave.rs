@@ -2,8 +2,8 @@
 
 use std::f64::consts::TAU;
 
-use undulift_chain::{LANES, Span, polynomial};
-use wide::{CmpGe, f64x4};
+use undulift_chain::Span;
+use undulift_lanes::{CmpGe, LANES, f64x4, lanes, polynomial};
 
 use crate::Phase;
 
@@ -159,18 +159,11 @@ impl SpanWave {
         bend_rad: f64,
         offset_rad: impl Fn(f64) -> f64,
     ) -> Self {
-        let lanes = |spans: &[Span], value: &dyn Fn(f64) -> f64| {
-            let mut lanes = [0.0; LANES];
-            for (lane, span) in lanes.iter_mut().zip(spans) {
-                *lane = value(span.at_fraction);
-            }
-            f64x4::new(lanes)
-        };
         let four = |spans: &[Span]| FourSpans {
-            amplitude: lanes(spans, &|at| amplitude_rad * taper.at(at)),
-            cos_offset: lanes(spans, &|at| offset_rad(at).cos()),
-            sin_offset: lanes(spans, &|at| offset_rad(at).sin()),
-            steady: lanes(spans, &|at| bend_rad * (at - 0.5)),
+            amplitude: lanes(spans, |span| amplitude_rad * taper.at(span.at_fraction)),
+            cos_offset: lanes(spans, |span| offset_rad(span.at_fraction).cos()),
+            sin_offset: lanes(spans, |span| offset_rad(span.at_fraction).sin()),
+            steady: lanes(spans, |span| bend_rad * (span.at_fraction - 0.5)),
         };
         Self { profile, fours: spans.chunks(LANES).map(four).collect() }
     }

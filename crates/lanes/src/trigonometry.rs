@@ -1,37 +1,6 @@
-//! The number type of the inner loop.
-//!
-//! The inner loop is written for one number or four side by side: today the four are neighbouring
-//! segments of one chain.
-
-use std::ops::{Add, Mul, Neg, Sub};
-
-use nalgebra::Vector3;
 use wide::f64x4;
 
-/// Numbers that one vector register holds in the inner loop.
-pub const LANES: usize = 4;
-
-/// What the inner loop asks of a number: arithmetic without branches.
-pub trait Number:
-    Copy + Add<Output = Self> + Sub<Output = Self> + Mul<Output = Self> + Neg<Output = Self>
-{
-    /// The same value in every lane.
-    fn splat(value: f64) -> Self;
-}
-
-impl Number for f64 {
-    #[inline(always)]
-    fn splat(value: f64) -> Self {
-        value
-    }
-}
-
-impl Number for f64x4 {
-    #[inline(always)]
-    fn splat(value: f64) -> Self {
-        f64x4::splat(value)
-    }
-}
+use crate::{LANES, round};
 
 /// Sines and cosines of many angles, four at a time.
 ///
@@ -79,8 +48,6 @@ const COSINE: [f64; 6] = [
     4.166_666_666_666_659e-2,
 ];
 
-/// Adding it leaves no room for a fraction, so adding and taking it away rounds to a whole number.
-const ROUNDING: f64 = 6_755_399_441_055_744.0;
 /// 2π in two parts, the first exact when multiplied by a small whole number.
 const TURN: [f64; 2] = [6.283_185_243_606_567, 6.357_301_909_411_278e-8];
 
@@ -90,8 +57,7 @@ const TURN: [f64; 2] = [6.283_185_243_606_567, 6.357_301_909_411_278e-8];
 /// instructions; a joint's angle is never far from a turn.
 #[inline(always)]
 pub fn sin_cos(angle_rad: f64x4) -> (f64x4, f64x4) {
-    let rounding = f64x4::splat(ROUNDING);
-    let turns = (angle_rad * f64x4::splat(1.0 / std::f64::consts::TAU) + rounding) - rounding;
+    let turns = round(angle_rad * f64x4::splat(1.0 / std::f64::consts::TAU));
     let within = angle_rad - turns * f64x4::splat(TURN[0]) - turns * f64x4::splat(TURN[1]);
     let y = within * f64x4::splat(0.25);
     let square = y * y;
@@ -110,114 +76,6 @@ pub fn polynomial<const N: usize>(x: f64x4, coefficients: &[f64; N]) -> f64x4 {
         sum = sum * x + f64x4::splat(coefficient);
     }
     sum
-}
-/// Three numbers in space.
-#[derive(Debug, Clone, Copy, PartialEq, Default)]
-pub struct Triple<T> {
-    /// Along x.
-    pub x: T,
-    /// Along y.
-    pub y: T,
-    /// Along z.
-    pub z: T,
-}
-
-impl<T: Number> Triple<T> {
-    /// From its parts.
-    #[inline(always)]
-    pub fn new(x: T, y: T, z: T) -> Self {
-        Self { x, y, z }
-    }
-
-    /// 0 in every direction.
-    #[inline(always)]
-    pub fn zero() -> Self {
-        Self::new(T::splat(0.0), T::splat(0.0), T::splat(0.0))
-    }
-
-    /// Sum of products.
-    #[inline(always)]
-    pub fn dot(self, other: Self) -> T {
-        self.x * other.x + self.y * other.y + self.z * other.z
-    }
-
-    /// Right-handed.
-    #[inline(always)]
-    pub fn cross(self, other: Self) -> Self {
-        Self::new(
-            self.y * other.z - self.z * other.y,
-            self.z * other.x - self.x * other.z,
-            self.x * other.y - self.y * other.x,
-        )
-    }
-
-    /// Each part times a factor.
-    #[inline(always)]
-    pub fn times(self, factor: T) -> Self {
-        Self::new(self.x * factor, self.y * factor, self.z * factor)
-    }
-}
-
-impl Triple<f64> {
-    /// The same in every lane.
-    #[inline(always)]
-    pub fn in_lanes(self) -> Triple<f64x4> {
-        Triple { x: f64x4::splat(self.x), y: f64x4::splat(self.y), z: f64x4::splat(self.z) }
-    }
-}
-
-impl Triple<f64x4> {
-    /// Sum over the lanes.
-    #[inline(always)]
-    pub fn over_lanes(self) -> Triple<f64> {
-        Triple { x: self.x.reduce_add(), y: self.y.reduce_add(), z: self.z.reduce_add() }
-    }
-
-    /// Puts one lane.
-    #[inline(always)]
-    pub fn set_lane(&mut self, lane: usize, value: Triple<f64>) {
-        self.x.as_array_mut()[lane] = value.x;
-        self.y.as_array_mut()[lane] = value.y;
-        self.z.as_array_mut()[lane] = value.z;
-    }
-
-    /// Takes one lane.
-    #[inline(always)]
-    pub fn lane(&self, lane: usize) -> Triple<f64> {
-        Triple {
-            x: self.x.as_array_ref()[lane],
-            y: self.y.as_array_ref()[lane],
-            z: self.z.as_array_ref()[lane],
-        }
-    }
-}
-
-impl<T: Number> Add for Triple<T> {
-    type Output = Self;
-    #[inline(always)]
-    fn add(self, other: Self) -> Self {
-        Self::new(self.x + other.x, self.y + other.y, self.z + other.z)
-    }
-}
-
-impl<T: Number> Sub for Triple<T> {
-    type Output = Self;
-    #[inline(always)]
-    fn sub(self, other: Self) -> Self {
-        Self::new(self.x - other.x, self.y - other.y, self.z - other.z)
-    }
-}
-
-impl From<Vector3<f64>> for Triple<f64> {
-    fn from(v: Vector3<f64>) -> Self {
-        Self { x: v.x, y: v.y, z: v.z }
-    }
-}
-
-impl From<Triple<f64>> for Vector3<f64> {
-    fn from(t: Triple<f64>) -> Self {
-        Vector3::new(t.x, t.y, t.z)
-    }
 }
 
 #[cfg(test)]
