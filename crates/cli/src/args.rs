@@ -62,7 +62,7 @@ pub struct Fly {
 
     /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
     ///
-    /// Keys are dotted as in the file, list items count from 0: body.length_m[3]=0.1.
+    /// Keys are dotted as in the file, list items count from 0: `body.length_m[3]=0.1`.
     #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
     pub sets: Vec<Override>,
 }

@@ -1,9 +1,13 @@
 //! What the strips met: bands of incidence and Reynolds number, weighted by what they carry.
 
+use crate::weighted::percentiles;
 use crate::{Flight, Glider};
 
 /// Between samples, s; the flight is cut into equal steps about this long.
 const SAMPLE_S: f64 = 1e-3;
+
+/// The band's ends.
+const ENDS: [f64; 2] = [0.05, 0.95];
 
 /// 5th and 95th percentiles over strips and time, weighted by dynamic pressure, chord and length.
 #[derive(Debug, Clone, PartialEq)]
@@ -31,8 +35,14 @@ pub struct Stretched {
 pub fn bands(glider: &Glider, flight: &mut Flight) -> Bands {
     let samples = (flight.time_s / SAMPLE_S).round().max(1.0) as usize;
     let reynolds_per_speed_chord = glider.air.density_kg_m3 / glider.air.viscosity_pa_s;
-    let mut alphas: Vec<(f64, f64)> = Vec::new();
-    let mut reynolds_numbers: Vec<(f64, f64)> = Vec::new();
+    let n_values = samples * glider.chain.n_segments() * glider.strips_per_segment;
+    let mut stand_ins: Vec<(f64, f64)> = Vec::with_capacity(n_values);
+    let mut reynolds_squares: Vec<(f64, f64)> = Vec::with_capacity(n_values);
+    let measured: Vec<Option<[f64; 2]>> = glider
+        .sections
+        .iter()
+        .map(|section| section.measured_rad.map(|ends| ends.map(stand_in_of)))
+        .collect();
     let mut stretched = vec![Stretched::default(); glider.sections.len()];
     for sample in 0..=samples {
         let time_s = flight.time_s * sample as f64 / samples as f64;
@@ -42,27 +52,31 @@ pub fn bands(glider: &Glider, flight: &mut Flight) -> Bands {
         flight.equations.strips(at, &state, |strip| {
             let speed_squared = strip.u_y_m_s.powi(2) + strip.u_z_m_s.powi(2);
             let weight = share * speed_squared * strip.chord_m * strip.length_m;
-            let alpha_rad = (-strip.u_z_m_s).atan2(strip.u_y_m_s.abs());
-            let reynolds = reynolds_per_speed_chord * speed_squared.sqrt() * strip.chord_m;
-            alphas.push((alpha_rad, weight));
-            reynolds_numbers.push((reynolds, weight));
+            let (side, up) = (strip.u_y_m_s.abs(), -strip.u_z_m_s);
+            let stand_in = up / (side + up.abs()).max(f64::MIN_POSITIVE);
+            let reynolds_squared =
+                speed_squared * (reynolds_per_speed_chord * strip.chord_m).powi(2);
+            stand_ins.push((stand_in, weight));
+            reynolds_squares.push((reynolds_squared, weight));
             let section_idx = glider.section_of[strip.segment_idx];
             let (section, stretched) = (&glider.sections[section_idx], &mut stretched[section_idx]);
             if let Some([low, high]) = section.reynolds_range() {
-                stretched.reynolds_below += if reynolds < low { weight } else { 0.0 };
-                stretched.reynolds_above += if reynolds > high { weight } else { 0.0 };
+                let (below, above) = (reynolds_squared < low * low, reynolds_squared > high * high);
+                stretched.reynolds_below += if below { weight } else { 0.0 };
+                stretched.reynolds_above += if above { weight } else { 0.0 };
             }
-            if let Some([low, high]) = section.measured_rad {
-                let measured = (low..=high).contains(&alpha_rad);
+            if let Some([low, high]) = measured[section_idx] {
+                let measured = (low..=high).contains(&stand_in);
                 stretched.not_measured += if measured { 0.0 } else { weight };
             }
         });
     }
-    let total: f64 = alphas.iter().map(|(_, weight)| weight).sum();
+    let total: f64 = stand_ins.iter().map(|(_, weight)| weight).sum();
     let of_total = |weight: f64| if total > 0.0 { weight / total } else { 0.0 };
     Bands {
-        alpha_rad: percentiles(&mut alphas, total),
-        reynolds: percentiles(&mut reynolds_numbers, total),
+        // The stand-in and the square rise with what they stand for, so percentiles go through.
+        alpha_rad: percentiles(&stand_ins, ENDS).map(|ends| ends.map(incidence)),
+        reynolds: percentiles(&reynolds_squares, ENDS).map(|ends| ends.map(f64::sqrt)),
         stretched: stretched
             .into_iter()
             .map(|weights| Stretched {
@@ -74,32 +88,12 @@ pub fn bands(glider: &Glider, flight: &mut Flight) -> Bands {
     }
 }
 
-/// 5th and 95th percentiles of weighted values: each value stands at the middle of its own weight
-/// in the running sum, and between neighbours the value runs straight.
-fn percentiles(values: &mut [(f64, f64)], total: f64) -> Option<[f64; 2]> {
-    if !(total > 0.0 && total.is_finite()) {
-        return None;
-    }
-    values.sort_unstable_by(|a, b| a.0.total_cmp(&b.0));
-    let mut running = 0.0;
-    let mut before: Option<(f64, f64)> = None;
-    let mut found = [None; 2];
-    for &(value, weight) in values.iter() {
-        let place = (running + 0.5 * weight) / total;
-        running += weight;
-        for (share, found) in [0.05, 0.95].into_iter().zip(&mut found) {
-            if found.is_none() && place >= share {
-                *found = Some(match before {
-                    Some((place_before, value_before)) if place > place_before => {
-                        let f = (share - place_before) / (place - place_before);
-                        value_before + f * (value - value_before)
-                    }
-                    _ => value,
-                });
-            }
-        }
-        before = Some((place, value));
-    }
-    let last = values.last().map(|&(value, _)| value)?;
-    Some(found.map(|found| found.unwrap_or(last)))
+/// sin α/(cos α + |sin α|): rises with incidence and takes no trigonometry to find from a velocity.
+fn stand_in_of(alpha_rad: f64) -> f64 {
+    alpha_rad.sin() / (alpha_rad.cos() + alpha_rad.sin().abs())
+}
+
+/// Incidence of a stand-in, rad.
+fn incidence(stand_in: f64) -> f64 {
+    stand_in.atan2(1.0 - stand_in.abs())
 }

@@ -21,6 +21,7 @@ mod state;
 mod summary;
 mod trace;
 mod trajectory;
+mod weighted;
 
 pub use attitude::Attitude;
 pub use bands::{Bands, Stretched, bands};
