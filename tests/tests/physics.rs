@@ -223,6 +223,26 @@ fn analytic_landing_time() {
     assert_relative_eq!(flight.time_s, expected_s, epsilon = 1e-9);
 }
 
+/// A heavy mass far above the body takes the centre of mass with it; the body still lands when its
+/// lower face has fallen its own height: nothing looks at the centre's alone.
+#[test]
+fn analytic_landing_far_below_the_centre_of_mass() {
+    let mut glider = in_vacuum(uniform(2, SEGMENT, STILL, dropped_from(4.0)));
+    let mast = PointMass {
+        carried: Carried::Payload,
+        segment_idx: 0,
+        at_m: Vector3::new(-0.1, 0.0, 1.5),
+        mass_kg: 10.0,
+    };
+    glider.chain =
+        Chain::new(glider.chain.segments().to_vec(), glider.chain.joints().to_vec(), vec![mast])
+            .unwrap();
+    let flight = fly(&glider, &for_s(30.0)).unwrap();
+    let above_m = 1.5 * 10.0 / 10.25;
+    let expected_s = (2.0 * (4.0 - above_m - 0.0025) / STANDARD_GRAVITY_M_S2).sqrt();
+    assert_relative_eq!(flight.time_s, expected_s, epsilon = 1e-9);
+}
+
 /// Rolling about its length at a steady rate, a bar is on its back after a quarter turn: from there
 /// on the belly no longer points down. The earlier of landing and inversion ends the flight.
 #[test]

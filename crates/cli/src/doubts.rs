@@ -43,6 +43,16 @@ pub fn in_words(doubt: &Doubt) -> (String, String) {
             "the steeper the air meets the belly, the less the figures are worth; measure or borrow \
              rows there if the flight hangs on them",
         ),
+        Doubt::NotSteady { last_cycle } => (
+            format!(
+                "over the last cycle it came down {:.2} m and {} as much speed as {:.2} m of height is \
+                 worth, so that cycle's glide ratio isn't a steady glide's",
+                last_cycle.drop_m,
+                if last_cycle.speed_height_m > 0.0 { "lost" } else { "gained" },
+                last_cycle.speed_height_m.abs()
+            ),
+            "let it go from higher, in the computer, to see what it settles to",
+        ),
         Doubt::AddedMass { ratio } => (
             format!(
                 "the air that moves with the body would weigh {} of it, and is left out",

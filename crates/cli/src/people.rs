@@ -88,8 +88,15 @@ fn glide_ratio(flown: &Flown) -> String {
         None => "none, as it didn't come down".into(),
     };
     match summary.last_cycle_glide_ratio {
+        _ if summary.end == End::Inverted => format!("{whole}, until it turned over"),
         Some(ratio) => format!("{whole}, {ratio:.2} over the last cycle"),
-        None => format!("{whole}; no whole cycle to take the last of"),
+        None if flown.design.glider.gait.frequency_hz() == 0.0 => {
+            format!("{whole}; the gait stands still, so there is no last cycle")
+        }
+        None if flown.flight.last_cycle_start_s().is_none() => {
+            format!("{whole}; the flight was over before a cycle was")
+        }
+        None => format!("{whole}; in the last cycle it didn't come down"),
     }
 }
 
@@ -100,7 +107,11 @@ fn along(flown: &Flown) -> String {
         Some(_) => "the last cycle",
         None => "the flight",
     };
-    format!("{:.1} m/s of air, {way}, over {over}", forward_m_s.abs())
+    let lying = match flown.flight.inverted_at_s {
+        Some(_) if flown.summary.end == End::Landed => ", in part on its back",
+        _ => "",
+    };
+    format!("{:.1} m/s of air, {way}, over {over}{lying}", forward_m_s.abs())
 }
 
 fn at_end(flown: &Flown) -> String {

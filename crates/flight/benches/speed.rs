@@ -23,14 +23,14 @@ fn in_flight(n: usize) -> (Equations, Instant, State) {
 }
 
 /// The whole right-hand side.
-#[divan::bench(args = SIZES)]
+#[divan::bench(args = SIZES, sample_size = 500)]
 fn derivative(bencher: Bencher, n: usize) {
     let (mut equations, at, state) = in_flight(n);
     bencher.bench_local(|| equations.rates(divan::black_box(at), divan::black_box(&state)));
 }
 
 /// Its first part: joint commands.
-#[divan::bench(args = SIZES)]
+#[divan::bench(args = SIZES, sample_size = 500)]
 fn part_gait(bencher: Bencher, n: usize) {
     let glider = robot(n);
     let commands = Commands::new(&glider.gait, &glider.chain).expect("fits");
@@ -39,7 +39,7 @@ fn part_gait(bencher: Bencher, n: usize) {
 }
 
 /// Its first two parts: joint commands, then frames and centroidal sums.
-#[divan::bench(args = SIZES)]
+#[divan::bench(args = SIZES, sample_size = 500)]
 fn part_gait_and_mechanics(bencher: Bencher, n: usize) {
     let (mut equations, at, _) = in_flight(n);
     bencher.bench_local(|| equations.shape(divan::black_box(at)));

@@ -5,7 +5,7 @@ use undulift_chain::{Axis, AxisOf, Shape, overlapping_segments};
 use undulift_gait::{Commands, Instant};
 
 use crate::bands::Stretched;
-use crate::{Bands, Equations, Flight, Glider, Summary};
+use crate::{Bands, Equations, Flight, Glider, LastCycle, Summary};
 
 /// Reduced frequency above which quasi-steady loads lag what a wing would do. 0.1 is often quoted;
 /// 0.05 is the stricter limit (Leishman, *Principles of Helicopter Aerodynamics*, from memory).
@@ -13,6 +13,10 @@ const QUASI_STEADY_LIMIT: f64 = 0.05;
 
 /// Added mass over the robot's own above which leaving it out shows (our choice).
 const ADDED_MASS_LIMIT: f64 = 0.05;
+
+/// Speed lost over the last cycle, as height, over the height lost, above which its glide ratio
+/// isn't a steady glide's (our choice).
+const STEADY_SHARE: f64 = 0.1;
 
 /// Share of the load below which a doubt isn't worth a line.
 const WORTH_SAYING: f64 = 0.05;
@@ -54,6 +58,11 @@ pub enum Doubt {
         measured_rad: [f64; 2],
         /// Of the load, 0 to 1.
         share: f64,
+    },
+    /// The last cycle was still a dive, or a climb out of one.
+    NotSteady {
+        /// What it came down and what its speed lost.
+        last_cycle: LastCycle,
     },
     /// The air that moves with the body is left out.
     AddedMass {
@@ -107,6 +116,12 @@ pub fn doubts(glider: &Glider, flight: &Flight, summary: &Summary, bands: &Bands
     for (section, stretched) in glider.sections.iter().zip(&bands.stretched) {
         doubts.extend(stretched_doubts(section, stretched));
     }
+    doubts.extend(
+        summary
+            .last_cycle
+            .filter(|cycle| cycle.speed_height_m.abs() > STEADY_SHARE * cycle.drop_m.abs())
+            .map(|last_cycle| Doubt::NotSteady { last_cycle }),
+    );
     let ratio = added_mass_ratio(glider);
     if ratio > ADDED_MASS_LIMIT {
         doubts.push(Doubt::AddedMass { ratio });

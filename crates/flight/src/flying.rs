@@ -3,6 +3,7 @@ use std::cell::RefCell;
 use ode_solvers::continuous_output_model::ContinuousOutputModel;
 use ode_solvers::dop_shared::{IntegrationError, OutputType, System};
 use ode_solvers::dopri5::Dopri5;
+use undulift_chain::{Chain, Inertial, Segment};
 use undulift_gait::Instant;
 
 use crate::state::{Scaled, Units};
@@ -87,7 +88,17 @@ pub fn fly(glider: &Glider, settings: &Settings) -> Result<Flight, FlightError> 
     check(settings)?;
     let mut equations = Equations::new(glider)?;
     let start = release(&mut equations, &glider.launch, settings.floor_m)?;
-    Flying::new(equations, *settings, glider.chain.length_m()).from(start)
+    Flying::new(equations, *settings, reach_m(&glider.chain)).from(start)
+}
+
+/// No corner is ever further from the centre of mass than this, whatever the shape, m.
+fn reach_m(chain: &Chain) -> f64 {
+    let corner = |segment: &Segment| segment.half_extents_m().norm() + segment.length_m;
+    let farthest_corner_m = chain.segments().iter().map(corner).fold(0.0, f64::max);
+    // Masses may sit far outside their segments, and take the centre of mass with them.
+    let centre = |inertial: &Inertial| inertial.centre_m.norm();
+    let farthest_centre_m = chain.inertials().iter().map(centre).fold(0.0, f64::max);
+    chain.length_m() + farthest_corner_m + farthest_centre_m
 }
 
 fn check(settings: &Settings) -> Result<(), FlightError> {
@@ -108,7 +119,7 @@ fn check(settings: &Settings) -> Result<(), FlightError> {
 struct Flying {
     equations: RefCell<Equations>,
     settings: Settings,
-    body_m: f64,
+    reach_m: f64,
     units: Units,
     trajectory: Trajectory,
     looks: Vec<Look>,
@@ -122,7 +133,7 @@ struct Piece<'a> {
     inside_s: f64,
     ends: &'a RefCell<Vec<Look>>,
     settings: Settings,
-    body_m: f64,
+    reach_m: f64,
     stop_when_inverted: bool,
 }
 
@@ -140,19 +151,19 @@ impl System<f64, Scaled> for Piece<'_> {
         let state = equations.units().state(scaled);
         let attitude = equations.attitude(at, &state);
         self.ends.borrow_mut().push(Look { time_s, state, attitude });
-        let near_floor = state.place_m.z - self.settings.floor_m < self.body_m;
+        let near_floor = state.place_m.z - self.settings.floor_m < self.reach_m;
         (self.stop_when_inverted && attitude.uprightness() <= 0.0)
             || (near_floor && equations.lowest_corner_m(at, &state) <= self.settings.floor_m)
     }
 }
 
 impl Flying {
-    fn new(equations: Equations, settings: Settings, body_m: f64) -> Self {
+    fn new(equations: Equations, settings: Settings, reach_m: f64) -> Self {
         let units = *equations.units();
         Self {
             equations: RefCell::new(equations),
             settings,
-            body_m,
+            reach_m,
             units,
             trajectory: Trajectory::new(units),
             looks: Vec::new(),
@@ -201,7 +212,7 @@ impl Flying {
             inside_s,
             ends: &ends,
             settings: self.settings,
-            body_m: self.body_m,
+            reach_m: self.reach_m,
             stop_when_inverted: !self.settings.through_inversion,
         };
         let cycle_s = self.equations.borrow().commands().cycle_s();
@@ -299,7 +310,7 @@ impl Flying {
 
     fn landing_between(&self, before: &Look, after: &Look) -> Option<f64> {
         let floor_m = self.settings.floor_m;
-        if after.state.place_m.z - floor_m > self.body_m {
+        if after.state.place_m.z - floor_m > self.reach_m {
             return None;
         }
         let clearance_m = |time_s: f64| {

@@ -33,6 +33,6 @@ pub use glider::{Glider, Launch};
 pub use loads::Wrench;
 pub use release::release;
 pub use state::State;
-pub use summary::{Summary, summary};
+pub use summary::{LastCycle, Summary, summary};
 pub use trace::{TraceRow, trace};
 pub use trajectory::Trajectory;

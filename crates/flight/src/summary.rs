@@ -26,6 +26,8 @@ pub struct Summary {
     pub glide_ratio: Option<f64>,
     /// The same over the last cycle of the gait; absent before one has passed.
     pub last_cycle_glide_ratio: Option<f64>,
+    /// What the last cycle came down, and the height that its loss of speed was worth, m.
+    pub last_cycle: Option<LastCycle>,
     /// At the end, below the horizontal, over the ground, rad.
     pub glide_angle_rad: f64,
     /// At the end, over the ground, m/s.
@@ -52,6 +54,15 @@ pub struct Summary {
     pub reduced_frequency: Option<f64>,
 }
 
+/// Where the energy of the last cycle came from.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LastCycle {
+    /// Height lost, m.
+    pub drop_m: f64,
+    /// Speed lost, as the height that it could climb to, m; negative where it became faster.
+    pub speed_height_m: f64,
+}
+
 /// Sums up a flight.
 ///
 /// - `glider`: the one that flew
@@ -67,15 +78,21 @@ pub fn summary(glider: &Glider, flight: &mut Flight) -> Summary {
     let airspeed_m_s = flight.mean(0.0, |flight, look| flight.airspeed_m_s(look));
     let reduced = std::f64::consts::PI * frequency_hz * chain.mean_chord_m() / airspeed_m_s;
     let cycle_from_s = flight.last_cycle_start_s();
+    let cycle_start = cycle_from_s.map(|from_s| flight.trajectory.state(from_s));
     Summary {
         end: flight.end,
         time_s: flight.time_s,
         drop_m,
         distance_m,
         glide_ratio: ratio(distance_m, drop_m),
-        last_cycle_glide_ratio: cycle_from_s.and_then(|from_s| {
-            let way_m = place_m - flight.trajectory.state(from_s).place_m;
+        last_cycle_glide_ratio: cycle_start.and_then(|start| {
+            let way_m = place_m - start.place_m;
             ratio(way_m.xy().norm(), -way_m.z)
+        }),
+        last_cycle: cycle_start.map(|start| LastCycle {
+            drop_m: start.place_m.z - place_m.z,
+            speed_height_m: (start.velocity_m_s.norm_squared() - velocity_m_s.norm_squared())
+                / (2.0 * STANDARD_GRAVITY_M_S2),
         }),
         glide_angle_rad: (-velocity_m_s.z).atan2(velocity_m_s.xy().norm()),
         speed_m_s: velocity_m_s.norm(),
