@@ -6,7 +6,7 @@ use undulift_aero::{Air, Scales, Section, SkinFriction};
 use undulift_chain::{Carried, Chain, Joint, PointMass, Segment};
 use undulift_design::quantities::{Quantity, of_flight};
 use undulift_flight::{
-    FlightError, Glider, Launch, Settings, bands, doubts, fly, joint_peaks, summary,
+    FlightError, Glider, Launch, Settings, bands, doubts, doubts_ahead, fly, outlook, summary,
 };
 use undulift_gait::{Gait, GaitTable, Interpolation, Pattern, Start, Taper, Wave};
 
@@ -202,10 +202,13 @@ proptest! {
                 }
                 prop_assert!(flight.time_s > 0.0 && flight.time_s <= 1.5);
                 doubts(&glider, &flight, &summary, &bands);
-                let mut equations = undulift_flight::Equations::new(&glider).unwrap();
-                for peak in joint_peaks(&glider, &mut equations, flight.time_s) {
-                    prop_assert!(peak.angle_rad.is_finite());
+                for peak in flight.commands().peaks(0.0, flight.time_s) {
+                    prop_assert!(peak.angle_rad.is_finite() && peak.rate_rad_s.is_finite());
                 }
+                let outlook = outlook(&glider).unwrap();
+                doubts_ahead(&glider, &outlook);
+                prop_assert!(outlook.glide_speed_m_s.is_none_or(f64::is_finite));
+                prop_assert!(outlook.gap_chords.is_none_or(f64::is_finite));
                 for row in undulift_flight::trace(&mut flight, 0.1) {
                     prop_assert!(row.state.place_m.iter().all(|x| x.is_finite()));
                 }

@@ -20,6 +20,7 @@ pub struct Args {
 #[derive(Debug, Subcommand)]
 pub enum Command {
     Fly(Fly),
+    Check(Check),
 }
 
 /// Fly designs from release to the floor, and say how it went.
@@ -63,6 +64,28 @@ pub struct Fly {
     /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
     ///
     /// Keys are dotted as in the file, list items count from 0: `body.length_m[3]=0.1`.
+    #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
+    pub sets: Vec<Override>,
+}
+
+/// Look at designs without flying them: masses, wing, joints, and where the model is stretched.
+///
+/// Over a whole cycle, what the gait asks of every joint is held against its travel and its servo's
+/// no-load speed. Exit status 1 means that a joint is asked for more.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift check designs/reed-16.toml
+  undulift check designs/reed-16.toml --set gait.frequency_hz=2.5 --json")]
+pub struct Check {
+    /// Design files (TOML).
+    #[arg(required = true, value_name = "DESIGN")]
+    pub designs: Vec<PathBuf>,
+
+    /// Print JSON: an object for one design, a list for several.
+    #[arg(long)]
+    pub json: bool,
+
+    /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
     #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
     pub sets: Vec<Override>,
 }

@@ -2,6 +2,17 @@
 
 use undulift_flight::Doubt;
 
+use crate::terminal;
+
+/// Tells doubts, each with what to do about it.
+pub fn tell(doubts: &[Doubt]) {
+    for doubt in doubts {
+        let (doubt, hint) = in_words(doubt);
+        terminal::tell_warning(&doubt);
+        terminal::tell_hint(&hint);
+    }
+}
+
 /// What to say of a doubt, and what to do.
 pub fn in_words(doubt: &Doubt) -> (String, String) {
     let (doubt, hint) = match doubt {
@@ -42,6 +53,34 @@ pub fn in_words(doubt: &Doubt) -> (String, String) {
             ),
             "the steeper the air meets the belly, the less the figures are worth; measure or borrow \
              rows there if the flight hangs on them",
+        ),
+        Doubt::ReynoldsOutside { section, known: [low, high], met: [slow, fast] } => (
+            format!(
+                "at the estimated glide speed section `{section}` meets Reynolds numbers of {} to {}, \
+                 but its table runs from {} to {}; beyond, coefficients are held",
+                thousands(*slow),
+                thousands(*fast),
+                thousands(*low),
+                thousands(*high)
+            ),
+            "add rows there in a table of your own, or vary air.lift_scale and air.drag_scale to see \
+             how much it matters",
+        ),
+        Doubt::PartlyMeasured { section, measured_rad: [low, high] } => (
+            format!(
+                "section `{section}` was measured from {:.0}° to {:.0}° only; the rest is an \
+                 engineering completion",
+                low.to_degrees(),
+                high.to_degrees()
+            ),
+            "`undulift fly` says how much of the load meets it there",
+        ),
+        Doubt::NarrowGap { chords } => (
+            format!(
+                "runs of the body half a wave apart lie {chords:.1} mean chords apart, under 2: the \
+                 one behind flies in the wake of the one ahead, which is left out"
+            ),
+            "fewer waves, a smaller amplitude or a narrower body sets them apart",
         ),
         Doubt::NotSteady { last_cycle } => (
             format!(

@@ -4,8 +4,11 @@
 //! limits; 1 done, but a limit is missed; 2 could not run.
 
 mod args;
+mod check;
 mod doubts;
 mod fly;
+mod joints;
+mod json;
 mod people;
 mod terminal;
 mod trace_file;
@@ -14,6 +17,8 @@ use std::process::ExitCode;
 
 use args::{Args, Command};
 use clap::Parser;
+use undulift_design::DesignErrors;
+use undulift_flight::FlightError;
 
 /// How a command ended when it ran.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -21,6 +26,31 @@ enum Outcome {
     WithinLimits,
     LimitMissed,
     CouldNotRun,
+}
+
+/// Why nothing could be done with a design.
+enum Refused {
+    Design(DesignErrors),
+    Flight { name: String, error: FlightError },
+}
+
+impl From<DesignErrors> for Refused {
+    fn from(errors: DesignErrors) -> Self {
+        Self::Design(errors)
+    }
+}
+
+impl Refused {
+    fn flight(name: &str, error: FlightError) -> Self {
+        Self::Flight { name: name.to_owned(), error }
+    }
+
+    fn tell(&self) {
+        match self {
+            Self::Design(errors) => terminal::tell_diagnostic(errors),
+            Self::Flight { name, error } => terminal::tell_error(&format!("{name}: {error}")),
+        }
+    }
 }
 
 impl From<Outcome> for ExitCode {
@@ -38,6 +68,7 @@ fn main() -> ExitCode {
     let args = Args::parse();
     let outcome = match &args.command {
         Command::Fly(fly) => fly::run(fly),
+        Command::Check(check) => check::run(check),
     };
     match outcome {
         Ok(outcome) => outcome.into(),

@@ -3,6 +3,7 @@
 use std::fmt::Write;
 use std::path::Path;
 
+use undulift_design::Design;
 use undulift_flight::End;
 
 use crate::doubts::thousands;
@@ -14,22 +15,25 @@ const GLIDE: f64 = 0.5;
 /// The whole answer, some ten lines.
 pub fn answer(flown: &Flown, trace: Option<&Path>) -> String {
     let mut text = heading(flown);
-    let mut line = |label: &str, value: String| {
-        // Writing to a string can't fail.
-        let _ = writeln!(text, "  {label:<18}{value}");
-    };
+    let mut line = |label: &str, value: String| self::line(&mut text, label, &value);
     line(ending_label(flown.summary.end), ending(flown));
     line("Glide ratio", glide_ratio(flown));
     line("Along the body", along(flown));
     line("At the end", at_end(flown));
     line("Largest tilt", tilt(flown));
     line("On the strips", strips(flown));
-    line("Mass", mass(flown));
+    line("Mass", mass(&flown.design));
     line("Wing loading", wing_loading(flown));
     if let Some(path) = trace {
         line("Wrote", path.display().to_string());
     }
     text
+}
+
+/// A labelled line of an answer.
+pub fn line(text: &mut String, label: &str, value: &str) {
+    // Writing to a string can't fail.
+    let _ = writeln!(text, "  {label:<18}{value}");
 }
 
 fn heading(flown: &Flown) -> String {
@@ -145,8 +149,9 @@ fn strips(flown: &Flown) -> String {
     )
 }
 
-fn mass(flown: &Flown) -> String {
-    let split = flown.design.glider.chain.mass_split();
+/// Where the mass is.
+pub fn mass(design: &Design) -> String {
+    let split = design.glider.chain.mass_split();
     format!(
         "{:.3} kg: structure {:.3}, servos {:.3}, battery {:.3}, payload {:.3}",
         split.total_kg(),

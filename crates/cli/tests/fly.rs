@@ -106,7 +106,7 @@ fn exit_status_tells_limits_from_failures() {
     assert!(complaint(&short).contains("still in the air"));
     let stiff = undulift(&["fly", PLATE, "--set", "joints.yaw_travel_deg=30"]);
     assert_eq!(stiff.status.code(), Some(1));
-    assert!(complaint(&stiff).contains("its travel is 30.0°"), "{}", complaint(&stiff));
+    assert!(complaint(&stiff).contains("beyond its travel of 30.0°"), "{}", complaint(&stiff));
 }
 
 #[test]

@@ -4,7 +4,7 @@ use ode_solvers::continuous_output_model::ContinuousOutputModel;
 use ode_solvers::dop_shared::{IntegrationError, OutputType, System};
 use ode_solvers::dopri5::Dopri5;
 use undulift_chain::{Chain, Inertial, Segment};
-use undulift_gait::Instant;
+use undulift_gait::{Commands, Instant};
 
 use crate::state::{Scaled, Units};
 use crate::{Attitude, Equations, FlightError, Glider, State, Trajectory, release};
@@ -68,6 +68,13 @@ pub struct Flight {
     pub(crate) equations: Equations,
     /// Looks at each step: at its start, and after each of its parts.
     pub(crate) looks: Vec<Look>,
+}
+
+impl Flight {
+    /// What the joints did.
+    pub fn commands(&self) -> &Commands {
+        self.equations.commands()
+    }
 }
 
 /// What was seen at one time.

@@ -3,6 +3,7 @@
 use undulift_aero::STANDARD_GRAVITY_M_S2;
 
 use crate::flying::{Look, PARTS};
+use crate::outlook::wing_loading_pa;
 use crate::{End, Flight, Glider};
 
 /// Weights of Boole's rule over the four parts of a step.
@@ -106,7 +107,7 @@ pub fn summary(glider: &Glider, flight: &mut Flight) -> Summary {
         landing_energy_j: flight.equations.kinetic_energy_j(at_end, &end_state),
         mass_kg,
         planform_m2,
-        wing_loading_pa: mass_kg * STANDARD_GRAVITY_M_S2 / planform_m2,
+        wing_loading_pa: wing_loading_pa(chain),
         reduced_frequency: reduced.is_finite().then_some(reduced),
     }
 }

@@ -51,8 +51,8 @@ pub struct Commands {
 }
 
 #[derive(Debug, Clone, PartialEq)]
-enum Laid {
-    Wave { lateral: SpanWave, vertical: SpanWave, vertical_ratio: f64 },
+pub(crate) enum Laid {
+    Wave { lateral: SpanWave, vertical: SpanWave, vertical_ratio: f64, sharpness: f64 },
     Table(GaitTable),
 }
 
@@ -77,6 +77,7 @@ impl Commands {
                 lateral: SpanWave::lateral(wave, gait.phase_rad, &yaw_spans),
                 vertical: SpanWave::vertical(wave, gait.phase_rad, &pitch_spans),
                 vertical_ratio: f64::from(wave.vertical_ratio),
+                sharpness: wave.sharpness,
             },
             Pattern::Table(table) if table.n_axes() == axes.len() => Laid::Table(table.clone()),
             Pattern::Table(table) => {
@@ -117,6 +118,10 @@ impl Commands {
         (self.clock.frequency_hz > 0.0).then(|| 1.0 / self.clock.frequency_hz)
     }
 
+    pub(crate) fn laid(&self) -> &Laid {
+        &self.laid
+    }
+
     /// Room for one instant's commands.
     pub fn room(&self) -> Motion {
         let columns = match &self.laid {
@@ -147,7 +152,7 @@ impl Commands {
     fn fill<const ACCELERATIONS: bool>(&self, at: Instant, motion: &mut Motion) {
         let phase = self.clock.phase(at.time_s, at.piece_s);
         match &self.laid {
-            Laid::Wave { lateral, vertical, vertical_ratio } => {
+            Laid::Wave { lateral, vertical, vertical_ratio, .. } => {
                 fill_spans::<ACCELERATIONS>(lateral, vertical, *vertical_ratio, phase, motion);
                 self.differences::<ACCELERATIONS>(motion);
             }

@@ -9,6 +9,7 @@
 
 mod commands;
 mod error;
+mod peaks;
 mod spline;
 mod start;
 mod table;
@@ -16,6 +17,7 @@ mod wave;
 
 pub use commands::{Commands, Instant, Motion};
 pub use error::GaitError;
+pub use peaks::Peak;
 pub use spline::periodic_second_derivatives;
 pub use start::{Clock, Phase, Start};
 pub use table::{GaitTable, Interpolation};

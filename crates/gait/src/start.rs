@@ -100,6 +100,14 @@ impl Clock {
         Some(0.5 * (early_s + late_s))
     }
 
+    /// When the gait has come to full speed, s.
+    pub fn settled_s(&self) -> f64 {
+        match self.start {
+            Start::Running => 0.0,
+            Start::Held { delay_s, spin_up_s } => delay_s + spin_up_s,
+        }
+    }
+
     /// The next time after this one at which the ramp begins or ends.
     pub fn next_break_s(&self, time_s: f64) -> Option<f64> {
         let Start::Held { delay_s, spin_up_s } = self.start else { return None };

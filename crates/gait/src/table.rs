@@ -101,6 +101,10 @@ impl GaitTable {
         self.interpolation
     }
 
+    pub(crate) fn n_rows(&self) -> usize {
+        self.n_rows
+    }
+
     pub(crate) fn n_columns(&self) -> usize {
         self.n_axes + usize::from(self.has_heading) + usize::from(self.has_elevation)
     }
