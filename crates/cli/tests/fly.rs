@@ -1,9 +1,11 @@
 //! `undulift fly` as its users meet it.
 
-use std::path::{Path, PathBuf};
-use std::process::{Command, Output, Stdio};
+use std::process::{Command, Stdio};
 
 use serde_json::Value;
+
+mod common;
+use common::{answer, complaint, json, root, undulift};
 
 /// Keys that scripts hold on to, in the order in which they are printed.
 const KEYS: [&str; 24] = [
@@ -32,30 +34,6 @@ const KEYS: [&str; 24] = [
     "reduced_frequency",
     "warnings",
 ];
-
-fn root() -> PathBuf {
-    Path::new(env!("CARGO_MANIFEST_DIR")).join("../..")
-}
-
-fn undulift(args: &[&str]) -> Output {
-    Command::new(env!("CARGO_BIN_EXE_undulift"))
-        .args(args)
-        .current_dir(root())
-        .output()
-        .expect("the command runs")
-}
-
-fn answer(output: &Output) -> String {
-    String::from_utf8(output.stdout.clone()).expect("UTF-8")
-}
-
-fn complaint(output: &Output) -> String {
-    String::from_utf8(output.stderr.clone()).expect("UTF-8")
-}
-
-fn json(args: &[&str]) -> Value {
-    serde_json::from_str(&answer(&undulift(args))).expect("JSON")
-}
 
 const PLATE: &str = "tests/data/flights/open-1-plate.toml";
 const STEEP: &str = "tests/data/flights/open-2-domed.toml";

@@ -1,14 +1,12 @@
 //! What the README shows is what happens.
 
-use std::path::Path;
 use std::process::{Command, Output};
+
+mod common;
+use common::root;
 
 /// How the README calls the program before it is installed, and after.
 const CALLS: [&str; 2] = ["$ cargo run --release -- ", "$ undulift "];
-
-fn root() -> std::path::PathBuf {
-    Path::new(env!("CARGO_MANIFEST_DIR")).join("../..")
-}
 
 fn readme() -> String {
     std::fs::read_to_string(root().join("README.md")).unwrap()
