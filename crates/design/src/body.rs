@@ -57,7 +57,7 @@ pub(crate) fn read_segment(node: Option<Node<'_>>, segments: Option<u32>) -> Opt
 
 pub(crate) fn read_body(table: Table<'_>) -> Body<'_> {
     let n_segments = table.need_whole("segments", 2..=MOST_SEGMENTS as u32);
-    let strips_per_segment = table.whole("strips_per_segment", 1..=8).unwrap_or(2) as usize;
+    let strips_per_segment = table.whole_or("strips_per_segment", 1..=8, 2) as usize;
     let count = per_segment(n_segments);
     let lengths_m = table
         .need("length_m", "the body's length, or a list with one length a segment")
@@ -152,7 +152,7 @@ fn read_structure_kg(
     let shape = table.word("shape", &SHAPES).unwrap_or(ProfileShape::Parabolic);
     let ratio = match shape {
         ProfileShape::Parabolic => table.need_number("ends_to_middle", RATIO),
-        ProfileShape::Uniform => Some(table.number("ends_to_middle", RATIO).unwrap_or(1.0)),
+        ProfileShape::Uniform => Some(table.number_or("ends_to_middle", RATIO, 1.0)),
     };
     if let (ProfileShape::Uniform, Some(ratio)) = (shape, ratio)
         && ratio != 1.0

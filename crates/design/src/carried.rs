@@ -66,9 +66,9 @@ pub(crate) fn read_battery(
     let capacity_mah = table.need_number("capacity_mah", Range::above_0_to(1e6));
     let cell_mohm = table.need_number("cell_resistance_mohm", Range::from_to(0.0, 1e5));
     let current_limit_a = table.number("current_limit_a", CURRENT_A);
-    let charge = table.number("charge", Range::from_to(0.0, 1.0)).unwrap_or(1.0);
+    let charge = table.number_or("charge", Range::from_to(0.0, 1.0), 1.0);
     let regulator = read_regulator(table.table("regulator"));
-    let electronics_w = table.number("electronics_w", Range::from_to(0.0, 10_000.0));
+    let electronics_w = table.number_or("electronics_w", Range::from_to(0.0, 10_000.0), 0.0);
     let mass = read_mass(&table, Carried::Battery, segments, boxes);
     table.finish();
     Some(Battery {
@@ -79,7 +79,7 @@ pub(crate) fn read_battery(
         current_limit_a,
         charge,
         regulator,
-        electronics_w: electronics_w.unwrap_or(0.0),
+        electronics_w,
     })
 }
 

@@ -35,20 +35,23 @@ impl Servos {
 /// Reads the servos of design and catalogue; where both have a name, the design's own holds.
 pub(crate) fn read_all_servos(top: &Table<'_>, files: &mut NamedFiles) -> Servos {
     let mut servos = Servos::default();
+    let own = read_servos(top);
     if let Some(node) = top.get("servos") {
-        match read_catalogue(&node, files, top.document()) {
+        match read_catalogue(&node, files, top.document(), &own) {
             Some(by_name) => servos.by_name = by_name,
             None => servos.lacks_catalogue = true,
         }
     }
-    servos.by_name.extend(read_servos(top));
+    servos.by_name.extend(own);
     servos
 }
 
+/// - `own`: servos of the design itself
 fn read_catalogue(
     node: &Node<'_>,
     files: &mut NamedFiles,
     design: &Document<'_>,
+    own: &BTreeMap<String, Option<Servo>>,
 ) -> Option<BTreeMap<String, Option<Servo>>> {
     let source = files.read_toml(node)?;
     let document = match Document::parse(&source) {
@@ -65,6 +68,11 @@ fn read_catalogue(
     }
     let servos = read_servos(&top);
     top.finish();
+    for (path, number) in document.take_numbers() {
+        if !own.keys().any(|name| path.is_within(&KeyPath::of(["servo", name]))) {
+            design.record(path, number);
+        }
+    }
     design.note_all(document.into_mistakes());
     Some(servos)
 }

@@ -1,7 +1,7 @@
 //! A whole design: read, checked and turned into values of the crates below.
 
 use std::collections::BTreeMap;
-use std::path::Path;
+use std::path::{Path, PathBuf};
 
 use nalgebra::Vector3;
 use undulift_chain::{Axis, Carried, Chain, ChainError, Joint, PointMass, Segment};
@@ -11,12 +11,13 @@ use crate::body::read_body;
 use crate::carried::{Battery, Payload, read_battery, read_payload};
 use crate::catalogue::read_all_servos;
 use crate::document::{Document, Mark, source_of};
-use crate::files::{MOST_TOML_BYTES, read_text};
+use crate::files::{MOST_TOML_BYTES, check_text, read_file};
 use crate::gait::read_gait;
 use crate::joints::{ServoNames, read_joints};
 use crate::key_path::KeyPath;
-use crate::mistake::Mistake;
+use crate::mistake::{Mistake, Source};
 use crate::named_files::NamedFiles;
+use crate::origin::Origin;
 use crate::overrides::apply;
 use crate::sections::{read_sections, sections_of_body};
 use crate::servo::Servo;
@@ -46,8 +47,9 @@ pub struct Design {
     /// SHA-256, in hexadecimal, of the text and then, for every file it names in turn, of its
     /// length (eight bytes, the lowest first) and bytes.
     pub input_sha256: String,
-    /// The file's text with the overrides in it.
+    /// The file's text with the overrides in it; numbers that a [`crate::Knob`] set later are not.
     pub text: String,
+    pub(crate) origin: Origin,
 }
 
 /// Reads a design file, with values set from outside.
@@ -56,22 +58,44 @@ pub struct Design {
 ///
 /// All mistakes that it and the files it names hold.
 pub fn read(path: &Path, overrides: &[Override]) -> Result<Design, DesignErrors> {
+    let text = read_file(path, MOST_TOML_BYTES).map_err(|error| unusable(path, error))?;
+    read_kept(path, text, overrides, BTreeMap::new())
+}
+
+/// Reads a design from memory, with values set from outside.
+///
+/// - `path`: where it would stand; the names of files count from its folder
+///
+/// # Errors
+///
+/// As for [`read`].
+pub fn read_text(path: &Path, text: &str, overrides: &[Override]) -> Result<Design, DesignErrors> {
+    check_text(path, text, MOST_TOML_BYTES).map_err(|error| unusable(path, error))?;
+    read_kept(path, text.to_owned(), overrides, BTreeMap::new())
+}
+
+fn unusable(path: &Path, error: DesignError) -> DesignErrors {
+    DesignErrors::new(path.display().to_string(), vec![Mistake::of_file(error)])
+}
+
+/// - `kept`: files that it names and that needn't be read again
+pub(crate) fn read_kept(
+    path: &Path,
+    text: String,
+    overrides: &[Override],
+    kept: BTreeMap<PathBuf, Source>,
+) -> Result<Design, DesignErrors> {
     let fail = |mistakes| DesignErrors::new(path.display().to_string(), mistakes);
-    let text =
-        read_text(path, MOST_TOML_BYTES).map_err(|error| fail(vec![Mistake::of_file(error)]))?;
+    let files = NamedFiles::of(path, kept);
     let source = source_of(path, text);
     let document = Document::parse(&source).map_err(fail)?;
     if overrides.is_empty() {
-        return read_document(path, source.inner(), document).map_err(fail);
+        return read_document(path, source.inner(), document, files).map_err(fail);
     }
-    let catalogue = |name: &str| {
-        let file = path.parent().unwrap_or(Path::new("")).join(name);
-        read_text(&file, MOST_TOML_BYTES).ok()
-    };
-    let changed = apply(source.inner(), overrides, catalogue);
+    let changed = apply(source.inner(), overrides, |name| files.toml_text(name));
     let document = document.changed(&changed, overrides).map_err(fail)?;
     if changed.refused.is_empty() {
-        return read_document(path, &changed.text, document).map_err(fail);
+        return read_document(path, &changed.text, document, files).map_err(fail);
     }
     for (set, why) in &changed.refused {
         let what = DesignError::CannotSet { why: why.clone() };
@@ -81,13 +105,20 @@ pub fn read(path: &Path, overrides: &[Override]) -> Result<Design, DesignErrors>
 }
 
 /// - `text`: what the document holds, overrides included
-fn read_document(path: &Path, text: &str, document: Document<'_>) -> Result<Design, Vec<Mistake>> {
-    let mut files = NamedFiles::of(path);
+fn read_document(
+    path: &Path,
+    text: &str,
+    document: Document<'_>,
+    mut files: NamedFiles,
+) -> Result<Design, Vec<Mistake>> {
     let design = read_tables(&document, path, &mut files);
+    let numbers = document.take_numbers();
     let mistakes = document.into_mistakes();
     match design {
         Some(design) if mistakes.is_empty() => {
-            Ok(Design { input_sha256: files.sha256(text), text: text.to_owned(), ..design })
+            let input_sha256 = files.sha256(text);
+            let origin = Origin::new(path, files.into_kept(), numbers);
+            Ok(Design { input_sha256, text: text.to_owned(), origin, ..design })
         }
         _ => Err(mistakes),
     }
@@ -150,6 +181,7 @@ fn read_tables(document: &Document<'_>, path: &Path, files: &mut NamedFiles) -> 
         limits,
         input_sha256: String::new(),
         text: String::new(),
+        origin: Origin::default(),
     })
 }
 

@@ -11,6 +11,7 @@ use toml::de::{DeTable, DeValue};
 
 use crate::key_path::{KeyPath, Step};
 use crate::mistake::{MOST_COLLECTED, Mistake, Source};
+use crate::numbers::{Number, Numbers};
 use crate::overrides::Changed;
 use crate::{DesignError, Override};
 
@@ -34,6 +35,7 @@ pub(crate) struct Document<'t> {
     /// Servos that an override took over from a catalogue, whose own mistakes are told there.
     copied: Vec<KeyPath>,
     mistakes: RefCell<Vec<Mistake>>,
+    numbers: RefCell<Numbers>,
 }
 
 /// A file's text under its name.
@@ -59,6 +61,7 @@ impl<'t> Document<'t> {
             overrides: &[],
             copied: vec![],
             mistakes: RefCell::default(),
+            numbers: RefCell::default(),
         })
     }
 
@@ -82,6 +85,16 @@ impl<'t> Document<'t> {
         &self.tree
     }
 
+    /// Remembers a number that was read, or a default that stands for it.
+    pub(crate) fn record(&self, path: KeyPath, number: Number) {
+        self.numbers.borrow_mut().insert(path, number);
+    }
+
+    /// All numbers so far.
+    pub(crate) fn take_numbers(&self) -> Numbers {
+        self.numbers.take()
+    }
+
     /// Puts down a mistake.
     ///
     /// - `beside`: other entries that have a part in it
@@ -95,7 +108,7 @@ impl<'t> Document<'t> {
         let entries = beside.iter().map(|path| (self.span(path, Mark::Key), path.to_string()));
         mistake.beside = entries.filter(|(span, _)| !span.is_empty()).collect();
         if let Some(set) = set.or_else(|| self.set_that_made(path)) {
-            mistake.set = Some(set.text().to_owned());
+            mistake.set = Some(set.told());
             (mistake.source, mistake.place) = (None, None);
         }
         self.mistakes.borrow_mut().push(mistake);

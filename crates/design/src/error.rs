@@ -155,6 +155,16 @@ pub enum DesignError {
         /// What is in the way.
         why: String,
     },
+    /// A key that is none of a design's numbers.
+    #[error("`{key}` isn't a number of this design: {why}{}", meant(nearest))]
+    NoNumber {
+        /// As given.
+        key: String,
+        /// What is in the way.
+        why: String,
+        /// The key that was probably meant.
+        nearest: Option<String>,
+    },
     /// A table of numbers without a column.
     #[error("the column `{column}` is missing{}", meant(nearest))]
     MissingColumn {
@@ -232,6 +242,11 @@ impl DesignError {
                     .into()
             }
             Self::CannotSet { .. } => "set what holds it as a whole, or change the file".into(),
+            Self::NoNumber { .. } => {
+                "numbers are named as in the file, such as gait.frequency_hz or \
+                 body.length_m[3] (items count from 0)"
+                    .into()
+            }
             Self::MissingColumn { wanted, .. } | Self::ExtraColumn { wanted, .. } => {
                 format!("the first row names the columns, with commas between: {wanted}")
             }

@@ -17,7 +17,7 @@ pub(crate) const MOST_CSV_BYTES: u64 = 64 << 20;
 /// # Errors
 ///
 /// What kept it from being read, the name of the file left to the caller.
-pub(crate) fn read_text(path: &Path, most_bytes: u64) -> Result<String, DesignError> {
+pub(crate) fn read_file(path: &Path, most_bytes: u64) -> Result<String, DesignError> {
     let named = || path.display().to_string();
     let unreadable = |source| DesignError::Unreadable { file: named(), source };
     let file = File::open(path).map_err(unreadable)?;
@@ -38,4 +38,17 @@ pub(crate) fn read_text(path: &Path, most_bytes: u64) -> Result<String, DesignEr
         DesignError::NotText { file: named(), line }
     })?;
     if text.trim().is_empty() { Err(DesignError::Empty { file: named() }) } else { Ok(text) }
+}
+
+/// Checks a text that stands for a file as one that is read from it.
+///
+/// # Errors
+///
+/// [`DesignError::TooLarge`] and [`DesignError::Empty`].
+pub(crate) fn check_text(path: &Path, text: &str, most_bytes: u64) -> Result<(), DesignError> {
+    let file = path.display().to_string();
+    if text.len() as u64 > most_bytes {
+        return Err(DesignError::TooLarge { file, most_mb: most_bytes >> 20 });
+    }
+    if text.trim().is_empty() { Err(DesignError::Empty { file }) } else { Ok(()) }
 }

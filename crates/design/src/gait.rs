@@ -32,7 +32,7 @@ pub(crate) fn read_gait(
     joints: Option<&[Joint]>,
     files: &mut NamedFiles,
 ) -> Option<Gait> {
-    let phase_deg = table.number("phase_deg", PHASE_DEG).unwrap_or(0.0);
+    let phase_deg = table.number_or("phase_deg", PHASE_DEG, 0.0);
     let start = read_start(&table);
     let pattern = if table.holds("table") {
         read_table(&table, joints, files).map(Pattern::Table)
@@ -71,13 +71,13 @@ fn read_wave(table: &Table<'_>) -> Option<Wave> {
     const AMPLITUDE_DEG: Range = Range::within(180.0);
     const BEND_DEG: Range = Range::within(1080.0);
     let angle_rad =
-        |key, range, default_deg: f64| table.number(key, range).unwrap_or(default_deg).to_radians();
+        |key, range, default_deg: f64| table.number_or(key, range, default_deg).to_radians();
     let frequency_hz = table.need_number("frequency_hz", Range::from_to(0.0, 50.0));
     let lateral_amplitude_deg = table.need_number("lateral_amplitude_deg", AMPLITUDE_DEG);
     let lateral_waves = table.need_number("lateral_waves", Range::from_to(0.0, 20.0));
-    let sharpness = table.number("sharpness", Range::from_to(0.0, 1000.0)).unwrap_or(0.0);
+    let sharpness = table.number_or("sharpness", Range::from_to(0.0, 1000.0), 0.0);
     let vertical_amplitude_rad = angle_rad("vertical_amplitude_deg", AMPLITUDE_DEG, 0.0);
-    let vertical_ratio = table.whole("vertical_ratio", 1..=20).unwrap_or(2);
+    let vertical_ratio = table.whole_or("vertical_ratio", 1..=20, 2);
     let vertical_lag_rad = angle_rad("vertical_lag_deg", PHASE_DEG, 90.0);
     let turn_rad = angle_rad("turn_deg", BEND_DEG, 0.0);
     let arch_rad = angle_rad("arch_deg", BEND_DEG, 0.0);
@@ -107,10 +107,10 @@ fn read_taper(table: Table<'_>) -> Taper {
     const FRACTION: Range = Range::from_to(0.0, 1.0);
     let default = Taper::default();
     let taper = Taper {
-        head: table.number("head", FACTOR).unwrap_or(default.head),
-        head_length: table.number("head_length", FRACTION).unwrap_or(default.head_length),
-        tail: table.number("tail", FACTOR).unwrap_or(default.tail),
-        tail_length: table.number("tail_length", FRACTION).unwrap_or(default.tail_length),
+        head: table.number_or("head", FACTOR, default.head),
+        head_length: table.number_or("head_length", FRACTION, default.head_length),
+        tail: table.number_or("tail", FACTOR, default.tail),
+        tail_length: table.number_or("tail_length", FRACTION, default.tail_length),
     };
     table.finish();
     taper
@@ -124,8 +124,14 @@ fn read_start(gait: &Table<'_>) -> Option<Start> {
     }
     let node = table.need("mode", "\"running\" or \"held\"");
     let held = node.and_then(|node| node.word(&[("running", false), ("held", true)]));
-    let delay_s = table.number("delay_s", WAIT_S).unwrap_or(0.0);
-    let spin_up_s = table.number("spin_up_s", WAIT_S).unwrap_or(0.0);
+    let wait_s = |key| {
+        if held == Some(true) {
+            table.number_or(key, WAIT_S, 0.0)
+        } else {
+            table.number(key, WAIT_S).unwrap_or(0.0)
+        }
+    };
+    let (delay_s, spin_up_s) = (wait_s("delay_s"), wait_s("spin_up_s"));
     if held == Some(false) {
         for key in ["delay_s", "spin_up_s"] {
             let why = "a gait that runs at release neither waits nor spins up";

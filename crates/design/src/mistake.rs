@@ -27,7 +27,7 @@ pub struct Mistake {
     pub(crate) place: Option<Place>,
     /// Other places that have a part in it, with what stands there.
     pub(crate) beside: Vec<(Range<usize>, String)>,
-    /// The override that it comes from, as given.
+    /// The override that it comes from, as it was given.
     pub(crate) set: Option<String>,
     pub(crate) key: String,
     pub(crate) what: DesignError,
@@ -108,9 +108,10 @@ impl fmt::Display for Mistake {
         let told = self
             .set
             .as_ref()
-            .is_some_and(|set| set.split_once('=').is_some_and(|(key, _)| key.trim() == self.key));
+            .and_then(|set| set.trim_start_matches("--set ").split_once('='))
+            .is_some_and(|(key, _)| key.trim() == self.key);
         if let Some(set) = &self.set {
-            write!(f, "--set {set}: ")?;
+            write!(f, "{set}: ")?;
         }
         if !(told || self.key.is_empty()) {
             write!(f, "{}: ", self.key)?;

@@ -9,6 +9,7 @@ use crate::DesignError;
 use crate::document::{Document, Mark};
 use crate::key_path::KeyPath;
 use crate::nearest::nearest;
+use crate::numbers::{Allowed, Number};
 use crate::range::Range;
 use crate::table::Table;
 
@@ -90,9 +91,12 @@ impl<'d> Node<'d> {
         };
         // Ranges end at finite numbers, so none holds an infinity or what isn't a number.
         let sound = value.filter(|&value| range.contains(value));
-        if sound.is_none() {
-            let found = shortened(&found);
-            self.note(DesignError::OutOfRange { found, allowed: range.to_string() });
+        match sound {
+            Some(value) => self.record(value, Allowed::Real(range)),
+            None => {
+                let found = shortened(&found);
+                self.note(DesignError::OutOfRange { found, allowed: range.to_string() });
+            }
         }
         sound
     }
@@ -105,12 +109,19 @@ impl<'d> Node<'d> {
         };
         let value = u32::from_str_radix(integer.as_str(), integer.radix()).ok();
         let sound = value.filter(|value| range.contains(value));
-        if sound.is_none() {
-            let allowed = format!("from {} to {}", range.start(), range.end());
-            let found = shortened(&integer.to_string());
-            self.note(DesignError::OutOfRange { found, allowed });
+        match sound {
+            Some(value) => self.record(f64::from(value), Allowed::whole(&range)),
+            None => {
+                let allowed = format!("from {} to {}", range.start(), range.end());
+                let found = shortened(&integer.to_string());
+                self.note(DesignError::OutOfRange { found, allowed });
+            }
         }
         sound
+    }
+
+    fn record(&self, value: f64, allowed: Allowed) {
+        self.document.record(self.path.clone(), Number { value, allowed });
     }
 
     pub(crate) fn text(&self) -> Option<&'d str> {

@@ -13,6 +13,7 @@ const ZERO_TRIPLES: [(&str, &str); 2] = [("air", "wind_m_s"), ("launch", "spin_d
 #[derive(Debug, Clone)]
 pub struct Override {
     text: String,
+    by_flag: bool,
     path: KeyPath,
     value: Value,
 }
@@ -32,17 +33,36 @@ impl Override {
         let path =
             KeyPath::parse(key).ok_or_else(|| wrong(format!("`{}` isn't a key", key.trim())))?;
         let value = parse_value(value.trim()).map_err(wrong)?;
-        Ok(Self { text: text.to_owned(), path, value })
+        Ok(Self { text: text.to_owned(), by_flag: true, path, value })
     }
 
     /// A number in place of another.
+    ///
+    /// # Errors
+    ///
+    /// [`DesignError::Setting`] where the key is none.
     pub fn number(key: &str, value: f64) -> Result<Self, DesignError> {
-        Self::parse(&format!("{key}={value:?}"))
+        let text = format!("{key} = {value:?}");
+        let why = format!("`{}` isn't a key", key.trim());
+        let path = KeyPath::parse(key).ok_or(DesignError::Setting { text, why })?;
+        Ok(Self::number_at(&path, value, false))
+    }
+
+    /// - `whole`: whether it is written without a point, where it can be
+    pub(crate) fn number_at(path: &KeyPath, value: f64, whole: bool) -> Self {
+        let shown = number_text(value, whole);
+        let value = shown.parse().expect("a number is a value");
+        Self { text: format!("{path} = {shown}"), by_flag: false, path: path.clone(), value }
     }
 
     /// As given.
     pub fn text(&self) -> &str {
         &self.text
+    }
+
+    /// As a mistake in it is told.
+    pub(crate) fn told(&self) -> String {
+        if self.by_flag { format!("--set {}", self.text) } else { self.text.clone() }
     }
 
     pub(crate) fn path(&self) -> &KeyPath {
@@ -55,6 +75,20 @@ impl Override {
             [Step::Key(servo), Step::Key(name), _, ..] if servo == "servo" => Some(name),
             _ => None,
         }
+    }
+}
+
+/// A number as TOML has it, in the fewest digits that read back as the same.
+///
+/// - `whole`: whether it is written without a point, where it can be
+pub(crate) fn number_text(value: f64, whole: bool) -> String {
+    if value.is_nan() {
+        // Rust writes it with capitals, and with the sign that it may have.
+        "nan".to_owned()
+    } else if whole && value.fract() == 0.0 && value.abs() < 1e15 {
+        (value as i64).to_string()
+    } else {
+        format!("{value:?}")
     }
 }
 

@@ -26,6 +26,13 @@ impl Range {
         Self::from_to(-most, most)
     }
 
+    /// The nearest number that belongs to it; what isn't a number stays so.
+    pub(crate) fn clamped(&self, value: f64) -> f64 {
+        // Where 0 doesn't belong to it, the smallest number that does would be of no use.
+        let low = if self.low_belongs { self.low } else { self.low + self.high * 1e-9 };
+        value.clamp(low, self.high)
+    }
+
     pub(crate) fn contains(&self, value: f64) -> bool {
         (value > self.low || self.low_belongs && value == self.low) && value <= self.high
     }

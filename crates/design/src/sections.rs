@@ -6,14 +6,20 @@ use undulift_aero::{DEFAULT_PRESSURE_CENTRE, Section};
 
 use crate::DesignError;
 use crate::body::per_segment;
+use crate::key_path::KeyPath;
 use crate::named_files::NamedFiles;
 use crate::nearest::nearest;
 use crate::node::{Node, shortened};
+use crate::numbers::{Allowed, Number};
 use crate::range::Range;
 use crate::section_table::build_section_table;
 use crate::table::Table;
 
-const BUILT_IN: [&str; 3] = ["plate", "round", "domed"];
+const PRESSURE_CENTRE: Range = Range::from_to(0.0, 1.0);
+
+/// The built-in section that has no pressure centre of its own.
+const ROUND: &str = "round";
+const BUILT_IN: [&str; 3] = ["plate", ROUND, "domed"];
 
 /// Sections that a design may name; absent where there are mistakes in one.
 pub(crate) type Sections = BTreeMap<String, Option<Section>>;
@@ -21,6 +27,12 @@ pub(crate) type Sections = BTreeMap<String, Option<Section>>;
 pub(crate) fn read_sections(top: &Table<'_>, files: &mut NamedFiles) -> Sections {
     let built_in = BUILT_IN.map(|name| (name.to_owned(), built_in(name, DEFAULT_PRESSURE_CENTRE)));
     let mut sections = Sections::from(built_in);
+    let default =
+        Number { value: DEFAULT_PRESSURE_CENTRE, allowed: Allowed::Real(PRESSURE_CENTRE) };
+    for name in BUILT_IN.into_iter().filter(|&name| name != ROUND) {
+        let path = KeyPath::of(["section", name, "pressure_centre"]);
+        top.document().record(path, default);
+    }
     for (name, table) in top.named_tables("section") {
         sections.insert(name.to_owned(), read_section(name, table, files));
     }
@@ -31,23 +43,26 @@ fn built_in(name: &str, pressure_centre: f64) -> Option<Section> {
     match name {
         "plate" => Some(Section::plate(pressure_centre)),
         "domed" => Some(Section::domed(pressure_centre)),
-        "round" => Some(Section::round()),
+        ROUND => Some(Section::round()),
         _ => None,
     }
 }
 
 fn read_section(name: &str, table: Table<'_>, files: &mut NamedFiles) -> Option<Section> {
-    let centre = table.number("pressure_centre", Range::from_to(0.0, 1.0));
-    let pressure_centre = centre.unwrap_or(DEFAULT_PRESSURE_CENTRE);
+    let key = "pressure_centre";
+    let pressure_centre = match name {
+        ROUND => table.number(key, PRESSURE_CENTRE).unwrap_or(DEFAULT_PRESSURE_CENTRE),
+        _ => table.number_or(key, PRESSURE_CENTRE, DEFAULT_PRESSURE_CENTRE),
+    };
     let section = if BUILT_IN.contains(&name) {
         if table.get("table").is_some() {
             let why = "it is built in, and so has no table";
             let name = name.to_owned();
             table.note("table", DesignError::TakenName { what: "section", name, why });
         }
-        if name == "round" && table.holds("pressure_centre") {
+        if name == ROUND && table.holds(key) {
             let why = "the pressure centre of a round section is always 0.5".to_owned();
-            table.note("pressure_centre", DesignError::Disagree { why, remedy: "take it out" });
+            table.note(key, DesignError::Disagree { why, remedy: "take it out" });
         }
         built_in(name, pressure_centre)
     } else {

@@ -119,9 +119,10 @@ fn read_servo(name: &str, table: Table<'_>) -> Option<Servo> {
     let no_load_speed_rad_s = read_no_load_speed_rad_s(&table);
     let stall_current_a = table.need_number("stall_current_a", CURRENT_A);
     let no_load_current_a = table.need_number("no_load_current_a", Range::from_to(0.0, 1000.0));
-    let idle_current_a = table.number("idle_current_a", Range::from_to(0.0, 1000.0));
+    let idle_current_a = table.number_or("idle_current_a", Range::from_to(0.0, 1000.0), 0.0);
     let gear_efficiency = table.number("gear_efficiency", Range::above_0_to(1.0));
-    let inertia_kg_m2 = table.number("rotor_inertia_at_output_kg_m2", Range::from_to(0.0, 1000.0));
+    let inertia_kg_m2 =
+        table.number_or("rotor_inertia_at_output_kg_m2", Range::from_to(0.0, 1000.0), 0.0);
     let endurance = read_endurance(&table);
     let pulse = read_pulse(table.table("pulse_us"));
     let position_loop = read_loop(table.table("loop"));
@@ -136,9 +137,9 @@ fn read_servo(name: &str, table: Table<'_>) -> Option<Servo> {
             no_load_speed_rad_s: no_load_speed_rad_s?,
             stall_current_a: stall_current_a?,
             no_load_current_a: no_load_current_a?,
-            idle_current_a: idle_current_a.unwrap_or(0.0),
+            idle_current_a,
             gear_efficiency,
-            rotor_inertia_at_output_kg_m2: inertia_kg_m2.unwrap_or(0.0),
+            rotor_inertia_at_output_kg_m2: inertia_kg_m2,
             endurance,
             pulse,
             position_loop,
@@ -202,9 +203,9 @@ fn read_endurance(table: &Table<'_>) -> Endurance {
 fn read_pulse(table: Table<'_>) -> Pulse {
     const PULSE_US: Range = Range::from_to(1.0, 20_000.0);
     let pulse = Pulse {
-        minus_90_us: table.number("minus_90", PULSE_US).unwrap_or(500.0),
-        centre_us: table.number("centre", PULSE_US).unwrap_or(1500.0),
-        plus_90_us: table.number("plus_90", PULSE_US).unwrap_or(2500.0),
+        minus_90_us: table.number_or("minus_90", PULSE_US, 500.0),
+        centre_us: table.number_or("centre", PULSE_US, 1500.0),
+        plus_90_us: table.number_or("plus_90", PULSE_US, 2500.0),
     };
     let (first, second) = (pulse.centre_us - pulse.minus_90_us, pulse.plus_90_us - pulse.centre_us);
     if table.is_given() && first * second <= 0.0 {
@@ -219,8 +220,8 @@ fn read_pulse(table: Table<'_>) -> Pulse {
 }
 
 fn read_loop(table: Table<'_>) -> PositionLoop {
-    let full_at_deg = table.number("full_at_deg", Range::above_0_to(180.0)).unwrap_or(5.0);
-    let deadband_deg = table.number("deadband_deg", Range::from_to(0.0, 90.0)).unwrap_or(0.2);
+    let full_at_deg = table.number_or("full_at_deg", Range::above_0_to(180.0), 5.0);
+    let deadband_deg = table.number_or("deadband_deg", Range::from_to(0.0, 90.0), 0.2);
     table.finish();
     PositionLoop { full_at_rad: full_at_deg.to_radians(), deadband_rad: deadband_deg.to_radians() }
 }

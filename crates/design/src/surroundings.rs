@@ -31,9 +31,17 @@ pub struct Limits {
 
 pub(crate) fn read_air(table: Table<'_>) -> Surroundings {
     const SCALE: Range = Range::from_to(0.0, 10.0);
-    let temperature_c = table.number("temperature_c", Range::within(80.0)).unwrap_or(20.0);
-    let pressure_pa =
-        table.number("pressure_pa", Range::from_to(0.0, 200_000.0)).unwrap_or(101_325.0);
+    let by_altitude = table.holds("altitude_m");
+    // Beside an altitude these two have no default: they can't be there.
+    let weather = |key, range, default: f64| {
+        if by_altitude {
+            table.number(key, range).unwrap_or(default)
+        } else {
+            table.number_or(key, range, default)
+        }
+    };
+    let temperature_c = weather("temperature_c", Range::within(80.0), 20.0);
+    let pressure_pa = weather("pressure_pa", Range::from_to(0.0, 200_000.0), 101_325.0);
     let altitude_m = table.number("altitude_m", Range::from_to(-500.0, 11_000.0));
     for other in ["temperature_c", "pressure_pa"] {
         let why = "an altitude stands for the temperature and pressure of the standard atmosphere";
@@ -48,9 +56,9 @@ pub(crate) fn read_air(table: Table<'_>) -> Surroundings {
             by_weather
         }
     };
-    let wind_m_s = table.triple("wind_m_s", Range::within(100.0)).unwrap_or_default();
-    let lift = table.number("lift_scale", SCALE).unwrap_or(1.0);
-    let drag = table.number("drag_scale", SCALE).unwrap_or(1.0);
+    let wind_m_s = table.triple_or_zero("wind_m_s", Range::within(100.0));
+    let lift = table.number_or("lift_scale", SCALE, 1.0);
+    let drag = table.number_or("drag_scale", SCALE, 1.0);
     let frictions = [
         ("laminar", SkinFriction::Laminar),
         ("turbulent", SkinFriction::Turbulent),
@@ -66,14 +74,14 @@ pub(crate) fn read_air(table: Table<'_>) -> Surroundings {
 pub(crate) fn read_launch(table: Table<'_>, segments: Option<u32>) -> Option<Launch> {
     const TURN_DEG: Range = Range::within(360.0);
     const SLOPE_DEG: Range = Range::within(90.0);
-    let angle_rad = |key, range| table.number(key, range).unwrap_or(0.0).to_radians();
+    let angle_rad = |key, range| table.number_or(key, range, 0.0).to_radians();
     let height_m = table.need_number("height_m", Range::above_0_to(10_000.0));
     let speed_m_s = table.need_number("speed_m_s", Range::from_to(0.0, 200.0));
     let climb_rad = angle_rad("climb_deg", SLOPE_DEG);
     let roll_rad = angle_rad("roll_deg", TURN_DEG);
     let pitch_rad = angle_rad("pitch_deg", SLOPE_DEG);
     let yaw_rad = angle_rad("yaw_deg", TURN_DEG);
-    let spin_deg_s = table.triple("spin_deg_s", Range::within(36_000.0)).unwrap_or_default();
+    let spin_deg_s = table.triple_or_zero("spin_deg_s", Range::within(36_000.0));
     let grip_segment = crate::body::read_segment(table.get("grip_segment"), segments);
     table.finish();
     Some(Launch {
@@ -89,8 +97,8 @@ pub(crate) fn read_launch(table: Table<'_>, segments: Option<u32>) -> Option<Lau
 }
 
 pub(crate) fn read_limits(table: Table<'_>) -> Limits {
-    let torque_factor = table.number("torque_factor", Range::above_0_to(100.0)).unwrap_or(1.5);
-    let tilt_deg = table.number("tilt_deg", Range::from_to(0.0, 180.0)).unwrap_or(60.0);
+    let torque_factor = table.number_or("torque_factor", Range::above_0_to(100.0), 1.5);
+    let tilt_deg = table.number_or("tilt_deg", Range::from_to(0.0, 180.0), 60.0);
     table.finish();
     Limits { torque_factor, tilt_rad: tilt_deg.to_radians() }
 }

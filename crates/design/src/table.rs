@@ -15,6 +15,7 @@ use crate::key_path::KeyPath;
 use crate::mistake::MOST_COLLECTED;
 use crate::nearest::nearest;
 use crate::node::{Count, Node, whole_wanted};
+use crate::numbers::{Allowed, Number};
 use crate::range::Range;
 
 /// A table of a file, or one that was left out and so holds nothing.
@@ -80,12 +81,31 @@ impl<'d> Table<'d> {
         self.get(key)?.number(range)
     }
 
+    /// A number with the one that stands for it where it is left out.
+    pub(crate) fn number_or(&self, key: &str, range: Range, default: f64) -> f64 {
+        self.default(key, default, Allowed::Real(range));
+        self.number(key, range).unwrap_or(default)
+    }
+
+    /// Remembers what stands for a key that is left out.
+    fn default(&self, key: &str, value: f64, allowed: Allowed) {
+        if !self.holds(key) {
+            self.document.record(self.path.key(key), Number { value, allowed });
+        }
+    }
+
     pub(crate) fn need_number(&self, key: &str, range: Range) -> Option<f64> {
         self.need(key, &format!("a number {range}"))?.number(range)
     }
 
     pub(crate) fn whole(&self, key: &str, range: RangeInclusive<u32>) -> Option<u32> {
         self.get(key)?.whole(range)
+    }
+
+    /// A whole number with the one that stands for it where it is left out.
+    pub(crate) fn whole_or(&self, key: &str, range: RangeInclusive<u32>, default: u32) -> u32 {
+        self.default(key, f64::from(default), Allowed::whole(&range));
+        self.whole(key, range).unwrap_or(default)
     }
 
     pub(crate) fn need_whole(&self, key: &str, range: RangeInclusive<u32>) -> Option<u32> {
@@ -106,6 +126,17 @@ impl<'d> Table<'d> {
         let why = "three are needed: x, y and z".to_owned();
         let count = Count { items: Some(3), why, decided_by: None };
         self.get(key)?.numbers(range, &count)?.try_into().ok()
+    }
+
+    /// x, y and z, all 0 where they are left out.
+    pub(crate) fn triple_or_zero(&self, key: &str, range: Range) -> [f64; 3] {
+        if !self.holds(key) {
+            let zero = Number { value: 0.0, allowed: Allowed::Real(range) };
+            for idx in 0..3 {
+                self.document.record(self.path.key(key).item(idx), zero);
+            }
+        }
+        self.triple(key, range).unwrap_or_default()
     }
 
     /// A table in this one, empty where it is left out.

@@ -1,7 +1,9 @@
 //! What a derivative and a flight cost. `cargo bench -p undulift-flight`.
 
 use divan::Bencher;
-use undulift_flight::{Equations, Settings, State, fly, release, summary};
+use undulift_flight::{
+    Differs, Equations, Settings, State, draw, fly, fly_launches, release, summary,
+};
 use undulift_gait::{Commands, Instant};
 
 mod robot;
@@ -59,5 +61,24 @@ fn flight_and_summary(bencher: Bencher) {
     bencher.bench_local(|| {
         let mut flight = fly(&glider, &Settings::default()).expect("flies");
         summary(&glider, &mut flight)
+    });
+}
+
+/// Many launches that differ, on one thread and on two: flights a second.
+#[divan::bench(args = [1, 2], sample_count = 20)]
+fn batch(bencher: Bencher, threads: usize) {
+    const LAUNCHES: usize = 512;
+    let glider = robot(16);
+    let differs = [Differs::Factor { sd: 0.05 }, Differs::Normal { sd: 0.05 }];
+    let make = |launch: usize| {
+        let changes = draw(&differs, 1, launch as u64);
+        let mut glider = glider.clone();
+        glider.launch.speed_m_s = changes[0].of(glider.launch.speed_m_s);
+        glider.launch.roll_rad = changes[1].of(glider.launch.roll_rad);
+        glider
+    };
+    let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build().expect("threads");
+    bencher.counter(divan::counter::ItemsCount::new(LAUNCHES)).bench_local(|| {
+        pool.install(|| fly_launches(LAUNCHES, &Settings::default(), make, || true))
     });
 }

@@ -9,8 +9,9 @@ use crate::{End, Flight, Glider};
 /// Weights of Boole's rule over the four parts of a step.
 const BOOLE: [f64; PARTS + 1] = [7.0 / 90.0, 32.0 / 90.0, 12.0 / 90.0, 32.0 / 90.0, 7.0 / 90.0];
 
-/// How closely peaks of roll and pitch are located, s.
-const PEAK_S: f64 = 1e-6;
+/// How closely peaks of roll and pitch are located, s: a peak is flat, so its height is then met to
+/// some millionths of a radian.
+const PEAK_S: f64 = 1e-4;
 
 /// What a flight comes to, in SI units and radians.
 #[derive(Debug, Clone, Copy, PartialEq)]
