@@ -38,6 +38,24 @@ impl Chain {
         Ok(Self { segments, joints, attached, inertials })
     }
 
+    /// The same chain with all its masses multiplied.
+    ///
+    /// - `factor`: above 0
+    pub fn heavier(&self, factor: f64) -> Self {
+        let mut chain = self.clone();
+        for segment in &mut chain.segments {
+            segment.structure_kg *= factor;
+        }
+        for mass in &mut chain.attached {
+            mass.mass_kg *= factor;
+        }
+        for inertial in &mut chain.inertials {
+            inertial.mass_kg *= factor;
+            inertial.inertia_kg_m2 *= factor;
+        }
+        chain
+    }
+
     /// Number of segments.
     pub fn n_segments(&self) -> usize {
         self.segments.len()

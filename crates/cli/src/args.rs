@@ -21,6 +21,8 @@ pub struct Args {
 pub enum Command {
     Fly(Fly),
     Check(Check),
+    New(New),
+    Completions(Completions),
 }
 
 /// Fly designs from release to the floor, and say how it went.
@@ -31,7 +33,8 @@ pub enum Command {
 #[command(after_long_help = "Examples:
   undulift fly designs/reed-16.toml
   undulift fly designs/reed-16.toml --set gait.frequency_hz=1.0 --json
-  undulift fly designs/reed-16.toml --trace reed-16.csv --every-ms 2")]
+  undulift fly designs/reed-16.toml --trace reed-16.csv --every-ms 2
+  undulift fly designs/reed-16.toml --launches 200 --seed 7 --csv launches.csv")]
 pub struct Fly {
     /// Design files (TOML).
     #[arg(required = true, value_name = "DESIGN")]
@@ -61,11 +64,62 @@ pub struct Fly {
     #[arg(long)]
     pub through_inversion: bool,
 
+    /// Fly it this many times more, each launch a little different.
+    ///
+    /// What differs stands in the design's `[spread]`; without one, speed, attitude, spin and phase
+    /// at release, lift, drag, pressure centre and mass do. At most 1000000.
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(1..=1_000_000))]
+    pub launches: Option<u32>,
+
+    /// Seed of the launches: the same seed gives the same launches.
+    #[arg(long, value_name = "S", default_value_t = 1, requires = "launches")]
+    pub seed: u64,
+
+    /// Threads to fly the launches on [default: all cores]; the result is the same.
+    #[arg(long, value_name = "T", requires = "launches",
+        value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub threads: Option<u16>,
+
+    /// Write every launch as a row of CSV: what was drawn, and how it went; takes one design.
+    #[arg(long, value_name = "FILE.csv", requires = "launches")]
+    pub csv: Option<PathBuf>,
+
     /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
     ///
     /// Keys are dotted as in the file, list items count from 0: `body.length_m[3]=0.1`.
     #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
     pub sets: Vec<Override>,
+}
+
+/// Write a design file to start from: every key with its meaning, unit and range.
+///
+/// It flies as it is. A file that exists is left alone unless --force is given.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift new mine.toml && undulift fly mine.toml
+  undulift new mine.toml --from designs/sedge-10.toml")]
+pub struct New {
+    /// The file to write.
+    #[arg(value_name = "FILE")]
+    pub file: PathBuf,
+
+    /// Start from this design instead; files that it names are found from the new place, too.
+    #[arg(long, value_name = "DESIGN")]
+    pub from: Option<PathBuf>,
+
+    /// Replace a file that exists.
+    #[arg(long)]
+    pub force: bool,
+}
+
+/// Print what a shell needs to complete commands and flags.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift completions bash > ~/.local/share/bash-completion/completions/undulift
+  undulift completions fish > ~/.config/fish/completions/undulift.fish")]
+pub struct Completions {
+    /// Which shell.
+    pub shell: clap_complete::Shell,
 }
 
 /// Look at designs without flying them: masses, wing, joints, and where the model is stretched.

@@ -9,6 +9,7 @@ use undulift_design::quantities::of_flight;
 use undulift_flight::{Bands, Doubt, End, Flight, Settings, Summary, bands, doubts, fly, summary};
 
 use crate::args::Fly;
+use crate::launches::{self, Launches};
 use crate::{Outcome, Refused, doubts as words, joints, json, people, terminal, trace_file};
 
 /// A design that has flown.
@@ -20,6 +21,7 @@ pub struct Flown {
     pub doubts: Vec<Doubt>,
     pub missed: Vec<Missed>,
     pub joints_missed: Vec<joints::Missed>,
+    pub launches: Option<Launches>,
 }
 
 /// A limit that a flight missed.
@@ -31,8 +33,11 @@ pub enum Missed {
 }
 
 pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
-    if args.trace.is_some() && args.designs.len() > 1 {
-        anyhow::bail!("--trace takes one design, not {}; run them one by one", args.designs.len());
+    for (flag, given) in [("--trace", args.trace.is_some()), ("--csv", args.csv.is_some())] {
+        let n_designs = args.designs.len();
+        if given && n_designs > 1 {
+            anyhow::bail!("{flag} takes one design, not {n_designs}; run them one by one");
+        }
     }
     let settings = Settings {
         tolerance: args.tolerance,
@@ -56,12 +61,21 @@ pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
     if let (Some(path), [flown]) = (&args.trace, &mut done[..]) {
         trace_file::write(path, flown, args.every_ms * 1e-3)?;
     }
+    if let Some(n_launches) = args.launches {
+        for flown in &mut done {
+            let launches = launches::fly_all(args, n_launches, &flown.design, &settings)?;
+            flown.launches = Some(launches);
+        }
+    }
+    if let (Some(path), [Flown { launches: Some(launches), .. }]) = (&args.csv, &done[..]) {
+        launches.write(path)?;
+    }
     if args.json {
         json::print(done.iter().map(object).collect(), args.designs.len())?;
     } else {
         for (k, flown) in done.iter().enumerate() {
             let gap = if k == 0 { "" } else { "\n" };
-            terminal::answer(&format!("{gap}{}", people::answer(flown, args.trace.as_deref())))?;
+            terminal::answer(&format!("{gap}{}", people::answer(flown, args)))?;
             words::tell(&flown.doubts);
         }
     }
@@ -87,7 +101,7 @@ fn fly_one(path: &Path, args: &Fly, settings: &Settings) -> Result<Flown, Refuse
     let peaks = flight.commands().peaks(0.0, flight.time_s);
     let joints_missed = joints::beyond_travel(&design, &peaks).collect();
     let missed = missed_limits(&design, &summary);
-    Ok(Flown { flight, summary, bands, doubts, missed, joints_missed, design })
+    Ok(Flown { flight, summary, bands, doubts, missed, joints_missed, launches: None, design })
 }
 
 fn missed_limits(design: &Design, summary: &Summary) -> Vec<Missed> {
@@ -138,5 +152,8 @@ fn object(flown: &Flown) -> Value {
     let joints_missed = flown.joints_missed.iter().map(joints::Missed::in_words);
     let missed = missed.chain(joints_missed);
     object.insert("warnings".into(), missed.chain(doubts).collect());
+    if let Some(launches) = &flown.launches {
+        launches.put_into(&mut object);
+    }
     Value::Object(object)
 }

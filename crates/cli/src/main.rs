@@ -9,14 +9,17 @@ mod doubts;
 mod fly;
 mod joints;
 mod json;
+mod launches;
+mod new;
 mod people;
 mod terminal;
 mod trace_file;
+mod whole_file;
 
 use std::process::ExitCode;
 
 use args::{Args, Command};
-use clap::Parser;
+use clap::{CommandFactory, Parser};
 use undulift_design::DesignErrors;
 use undulift_flight::FlightError;
 
@@ -26,6 +29,13 @@ enum Outcome {
     WithinLimits,
     LimitMissed,
     CouldNotRun,
+}
+
+fn complete(shell: clap_complete::Shell) -> anyhow::Result<Outcome> {
+    let mut script = Vec::new();
+    clap_complete::generate(shell, &mut Args::command(), "undulift", &mut script);
+    terminal::answer(&String::from_utf8(script)?)?;
+    Ok(Outcome::WithinLimits)
 }
 
 /// Why nothing could be done with a design.
@@ -69,6 +79,8 @@ fn main() -> ExitCode {
     let outcome = match &args.command {
         Command::Fly(fly) => fly::run(fly),
         Command::Check(check) => check::run(check),
+        Command::New(new) => new::run(new),
+        Command::Completions(completions) => complete(completions.shell),
     };
     match outcome {
         Ok(outcome) => outcome.into(),

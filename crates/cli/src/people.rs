@@ -1,11 +1,11 @@
 //! A flight in words for people.
 
 use std::fmt::Write;
-use std::path::Path;
 
 use undulift_design::Design;
 use undulift_flight::End;
 
+use crate::args::Fly;
 use crate::doubts::thousands;
 use crate::fly::Flown;
 
@@ -13,7 +13,7 @@ use crate::fly::Flown;
 const GLIDE: f64 = 0.5;
 
 /// The whole answer, some ten lines.
-pub fn answer(flown: &Flown, trace: Option<&Path>) -> String {
+pub fn answer(flown: &Flown, args: &Fly) -> String {
     let mut text = heading(flown);
     let mut line = |label: &str, value: String| self::line(&mut text, label, &value);
     line(ending_label(flown.summary.end), ending(flown));
@@ -24,8 +24,11 @@ pub fn answer(flown: &Flown, trace: Option<&Path>) -> String {
     line("On the strips", strips(flown));
     line("Mass", mass(&flown.design));
     line("Wing loading", wing_loading(flown));
-    if let Some(path) = trace {
-        line("Wrote", path.display().to_string());
+    if let Some(launches) = &flown.launches {
+        text.push_str(&launches.answer(flown.design.limits.tilt_rad.to_degrees()));
+    }
+    for path in [&args.trace, &args.csv].into_iter().flatten() {
+        self::line(&mut text, "Wrote", &path.display().to_string());
     }
     text
 }

@@ -1,13 +1,12 @@
 //! A flight as a table of numbers.
 
-use std::io::Write;
 use std::path::Path;
 
-use anyhow::Context;
 use undulift_chain::Axis;
 use undulift_flight::{TraceRow, trace};
 
 use crate::fly::Flown;
+use crate::whole_file;
 
 /// Columns of every trace, before those of the joints.
 const COLUMNS: [&str; 13] = [
@@ -28,7 +27,7 @@ const COLUMNS: [&str; 13] = [
 
 /// Writes a flight, whole or not at all.
 pub fn write(path: &Path, flown: &mut Flown, every_s: f64) -> anyhow::Result<()> {
-    whole_file(path, |file| {
+    whole_file::write(path, |file| {
         let mut table = csv::Writer::from_writer(file);
         let axes = undulift_chain::joint_axes(flown.design.glider.chain.joints());
         let joints = axes.iter().map(|of| {
@@ -57,23 +56,4 @@ fn numbers(row: &TraceRow) -> impl Iterator<Item = f64> + '_ {
         .chain(attitude.map(f64::to_degrees))
         .chain(state.momentum_kg_m2_s.iter().copied().collect::<Vec<_>>())
         .chain(row.angles_rad.iter().map(|angle_rad| angle_rad.to_degrees()))
-}
-
-/// Fills a file beside its place and moves it there when it is complete.
-pub fn whole_file(
-    path: &Path,
-    fill: impl FnOnce(&mut dyn Write) -> anyhow::Result<()>,
-) -> anyhow::Result<()> {
-    let cannot = || format!("can't write {}", path.display());
-    let folder = path.parent().filter(|parent| !parent.as_os_str().is_empty());
-    let mut beside = tempfile::Builder::new()
-        .prefix(".undulift-")
-        .tempfile_in(folder.unwrap_or(Path::new(".")))
-        .with_context(cannot)?;
-    let mut buffered = std::io::BufWriter::new(beside.as_file_mut());
-    fill(&mut buffered).with_context(cannot)?;
-    buffered.flush().with_context(cannot)?;
-    drop(buffered);
-    beside.persist(path).with_context(cannot)?;
-    Ok(())
 }

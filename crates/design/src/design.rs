@@ -21,6 +21,7 @@ use crate::origin::Origin;
 use crate::overrides::apply;
 use crate::sections::{read_sections, sections_of_body};
 use crate::servo::Servo;
+use crate::spread::{Spread, read_spread};
 use crate::surroundings::{Limits, read_air, read_launch, read_limits, read_update_hz};
 use crate::table::Table;
 use crate::{DesignError, DesignErrors, Override};
@@ -44,6 +45,8 @@ pub struct Design {
     pub update_hz: Option<f64>,
     /// What a good flight keeps within.
     pub limits: Limits,
+    /// What differs from launch to launch.
+    pub spread: Spread,
     /// SHA-256, in hexadecimal, of the text and then, for every file it names in turn, of its
     /// length (eight bytes, the lowest first) and bytes.
     pub input_sha256: String,
@@ -74,7 +77,7 @@ pub fn read_text(path: &Path, text: &str, overrides: &[Override]) -> Result<Desi
     read_kept(path, text.to_owned(), overrides, BTreeMap::new())
 }
 
-fn unusable(path: &Path, error: DesignError) -> DesignErrors {
+pub(crate) fn unusable(path: &Path, error: DesignError) -> DesignErrors {
     DesignErrors::new(path.display().to_string(), vec![Mistake::of_file(error)])
 }
 
@@ -113,12 +116,13 @@ fn read_document(
 ) -> Result<Design, Vec<Mistake>> {
     let design = read_tables(&document, path, &mut files);
     let numbers = document.take_numbers();
+    let spread = read_spread(&Table::top(&document), &numbers);
     let mistakes = document.into_mistakes();
     match design {
         Some(design) if mistakes.is_empty() => {
             let input_sha256 = files.sha256(text);
             let origin = Origin::new(path, files.into_kept(), numbers);
-            Ok(Design { input_sha256, text: text.to_owned(), origin, ..design })
+            Ok(Design { spread, input_sha256, text: text.to_owned(), origin, ..design })
         }
         _ => Err(mistakes),
     }
@@ -179,6 +183,7 @@ fn read_tables(document: &Document<'_>, path: &Path, files: &mut NamedFiles) -> 
         payload,
         update_hz,
         limits,
+        spread: Spread::Default,
         input_sha256: String::new(),
         text: String::new(),
         origin: Origin::default(),

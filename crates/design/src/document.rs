@@ -95,6 +95,15 @@ impl<'t> Document<'t> {
         self.numbers.take()
     }
 
+    /// Whether there is a mistake in what stands under a key at the top.
+    pub(crate) fn is_spoilt(&self, top_key: &str) -> bool {
+        let within = |mistake: &Mistake| {
+            let rest = mistake.key.strip_prefix(top_key);
+            rest.is_some_and(|rest| rest.is_empty() || rest.starts_with(['.', '[']))
+        };
+        self.mistakes.borrow().iter().any(within)
+    }
+
     /// Puts down a mistake.
     ///
     /// - `beside`: other entries that have a part in it

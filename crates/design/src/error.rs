@@ -44,6 +44,12 @@ pub enum DesignError {
         /// Its path.
         file: String,
     },
+    /// A path that can't be written into a file.
+    #[error("the path `{file}` isn't text in UTF-8, and so can't stand in a design")]
+    NotInText {
+        /// Its path, as far as it can be shown.
+        file: String,
+    },
     /// Not TOML.
     #[error("this can't be read as TOML: {why}")]
     Syntax {
@@ -214,6 +220,7 @@ impl DesignError {
             Self::Folder { .. } => "name a file in it".into(),
             Self::TooLarge { .. } => "check that this is the file you mean, or shorten it".into(),
             Self::NotText { .. } => "save it as plain text in UTF-8".into(),
+            Self::NotInText { .. } => "rename its folders, or choose another place".into(),
             Self::Empty { .. } => "check that this is the file you mean".into(),
             Self::Syntax { .. } => {
                 "lines read `key = value`: words in quotes, a point in numbers, each key once"

@@ -42,7 +42,7 @@ impl Knob {
         numbers.map(|(path, number)| Self::new(path.clone(), *number)).collect()
     }
 
-    fn new(path: KeyPath, number: Number) -> Self {
+    pub(crate) fn new(path: KeyPath, number: Number) -> Self {
         let (key, way) = (path.to_string(), Way::of(&path));
         Self { key, path, allowed: number.allowed, way }
     }
@@ -83,6 +83,11 @@ impl Knob {
     /// As for [`Self::set`]: what isn't a number, or what other numbers of the design don't allow.
     pub fn set_clamped(&self, design: &mut Design, value: f64) -> Result<(), DesignErrors> {
         self.set(design, self.allowed.clamped(value))
+    }
+
+    /// Which values may stand under the key, in words: "from 0 to 10".
+    pub fn allowed(&self) -> String {
+        self.allowed.to_string()
     }
 
     /// Whether a value may stand under the key, whatever stands under others.

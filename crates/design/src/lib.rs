@@ -6,7 +6,7 @@
 //! written into the text before it is read.
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
-//! and radians. Tables that other commands read (`spread`, `search`, `wiring`) are left alone.
+//! and radians. Tables that other commands read (`search`, `wiring`) are left alone.
 
 mod body;
 mod carried;
@@ -23,6 +23,7 @@ mod joints;
 mod key_path;
 mod knob;
 mod mistake;
+mod moved;
 mod named_files;
 mod nearest;
 mod no_number;
@@ -35,6 +36,8 @@ mod range;
 mod section_table;
 mod sections;
 mod servo;
+mod spread;
+mod starter;
 mod surroundings;
 mod table;
 
@@ -44,6 +47,9 @@ pub use error::DesignError;
 pub use joints::ServoNames;
 pub use knob::{Knob, set_all};
 pub use mistake::{DesignErrors, Mistake};
+pub use moved::copy_for;
 pub use overrides::Override;
 pub use servo::{Endurance, PositionLoop, Pulse, Servo};
+pub use spread::{Spread, Vary};
+pub use starter::starter;
 pub use surroundings::Limits;

@@ -1,7 +1,10 @@
 //! Why a key is no number of a design, and which may be meant.
 
+use toml::de::{DeTable, DeValue};
+
 use crate::key_path::{KeyPath, Step};
 use crate::nearest::nearest;
+use crate::numbers::Numbers;
 use crate::{Design, DesignError, Mistake, Override};
 
 /// Tells a key that is no number of a design.
@@ -12,14 +15,16 @@ pub(crate) fn no_number(design: &Design, key: &str) -> DesignError {
     };
     match why_not(design, &path) {
         Some(why) => told(why, None),
-        None => told("there is no such key".into(), meant(design, key, &path)),
+        None => told("there is no such key".into(), meant(design.origin.numbers(), key, &path)),
     }
 }
 
 /// What is in the way of a number under a known key.
 fn why_not(design: &Design, path: &KeyPath) -> Option<String> {
-    if let Some(within) = numbers_within(design, path).or_else(|| kind_in_text(design, path)) {
-        return Some(within);
+    let tree = DeTable::parse(&design.text).ok();
+    let kind = tree.and_then(|tree| kind_of(design.origin.numbers(), tree.get_ref(), path));
+    if kind.is_some() {
+        return kind;
     }
     let one = Override::number_at(path, 1.0, true);
     let Err(errors) = design.read_again(vec![one]) else {
@@ -43,10 +48,15 @@ fn why_not(design: &Design, path: &KeyPath) -> Option<String> {
 const LEFT_OUT: &str =
     "the design leaves it out, and no number stands for it then; write it into the file first";
 
+/// What stands under a key, where that isn't a number.
+pub(crate) fn kind_of(numbers: &Numbers, tree: &DeTable<'_>, path: &KeyPath) -> Option<String> {
+    numbers_within(numbers, path).or_else(|| kind_in_tree(tree, path))
+}
+
 /// Told of a table or list that holds numbers.
-fn numbers_within(design: &Design, path: &KeyPath) -> Option<String> {
+fn numbers_within(numbers: &Numbers, path: &KeyPath) -> Option<String> {
     const MOST: usize = 4;
-    let within = design.origin.numbers().keys().filter(|own| own.is_within(path) && *own != path);
+    let within = numbers.keys().filter(|own| own.is_within(path) && *own != path);
     let within: Vec<&KeyPath> = within.collect();
     let named = within.iter().take(MOST).map(|own| format!("`{own}`")).collect::<Vec<_>>();
     let more = if within.len() > MOST { ", …" } else { "" };
@@ -57,9 +67,7 @@ fn numbers_within(design: &Design, path: &KeyPath) -> Option<String> {
     Some(format!("it is {kind}: {}{more}", named.join(", ")))
 }
 
-/// What stands under a key in the text, where that isn't a number.
-fn kind_in_text(design: &Design, path: &KeyPath) -> Option<String> {
-    let tree: toml::Table = design.text.parse().ok()?;
+fn kind_in_tree(tree: &DeTable<'_>, path: &KeyPath) -> Option<String> {
     let (first, rest) = path.0.split_first()?;
     let mut value = match first {
         Step::Key(key) => tree.get(key.as_str())?,
@@ -67,22 +75,22 @@ fn kind_in_text(design: &Design, path: &KeyPath) -> Option<String> {
     };
     for step in rest {
         value = match step {
-            Step::Key(key) => value.get(key.as_str())?,
-            Step::Item(idx) => value.get(*idx)?,
+            Step::Key(key) => value.get_ref().get(key.as_str())?,
+            Step::Item(idx) => value.get_ref().get(*idx)?,
         };
     }
-    match value {
-        toml::Value::String(_) => Some("it is a text".into()),
-        toml::Value::Array(_) => Some("it is a list".into()),
-        toml::Value::Table(_) => Some("it is a table".into()),
+    match value.get_ref() {
+        DeValue::String(_) => Some("it is a text".into()),
+        DeValue::Array(_) => Some("it is a list".into()),
+        DeValue::Table(_) => Some("it is a table".into()),
         _ => None,
     }
 }
 
-/// The key that may be meant, among all numbers of the design.
-fn meant(design: &Design, key: &str, path: &KeyPath) -> Option<String> {
+/// The key that may be meant.
+pub(crate) fn meant(numbers: &Numbers, key: &str, path: &KeyPath) -> Option<String> {
     let keys: Vec<(&KeyPath, String)> =
-        design.origin.numbers().keys().map(|path| (path, path.to_string())).collect();
+        numbers.keys().map(|path| (path, path.to_string())).collect();
     let as_whole = nearest(key, keys.iter().map(|(_, own)| own.as_str()));
     let [last] = path.0.as_slice() else { return as_whole };
     // Its table may have been left off.

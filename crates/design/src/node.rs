@@ -44,6 +44,10 @@ impl<'d> Node<'d> {
         Self { document, value, path }
     }
 
+    pub(crate) fn path(&self) -> &KeyPath {
+        &self.path
+    }
+
     /// Where it begins in the text that was read, bytes.
     pub(crate) fn start(&self) -> usize {
         self.value.span().start

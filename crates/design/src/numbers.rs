@@ -1,6 +1,7 @@
 //! The numbers that a design holds, by key, in the units of its file.
 
 use std::collections::BTreeMap;
+use std::fmt;
 use std::ops::RangeInclusive;
 
 use crate::key_path::KeyPath;
@@ -25,6 +26,15 @@ pub(crate) enum Allowed {
         low: u32,
         high: u32,
     },
+}
+
+impl fmt::Display for Allowed {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Self::Real(range) => range.fmt(f),
+            Self::Whole { low, high } => write!(f, "from {low} to {high}"),
+        }
+    }
 }
 
 impl Allowed {

@@ -30,6 +30,11 @@ impl Origin {
         Self { reading: Arc::new(Reading { path: path.to_owned(), files, numbers }), set: vec![] }
     }
 
+    /// Where the design stands.
+    pub(crate) fn path(&self) -> &Path {
+        &self.reading.path
+    }
+
     /// All numbers as they were read.
     pub(crate) fn numbers(&self) -> &Numbers {
         &self.reading.numbers

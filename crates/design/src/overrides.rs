@@ -280,7 +280,7 @@ fn set_item(holder: &mut Item, idx: usize, rest: &[Step], value: &Value) -> Resu
 }
 
 /// Puts a value in place of another, the comments around it kept.
-fn put(place: &mut Item, value: &Value) {
+pub(crate) fn put(place: &mut Item, value: &Value) {
     let mut value = value.clone();
     match place.as_value() {
         Some(old) => *value.decor_mut() = old.decor().clone(),

@@ -7,7 +7,8 @@
 use std::cell::RefCell;
 use std::ops::RangeInclusive;
 
-use toml::de::DeTable;
+use toml::Spanned;
+use toml::de::{DeString, DeTable, DeValue};
 
 use crate::DesignError;
 use crate::document::{Document, Mark};
@@ -159,13 +160,18 @@ impl<'d> Table<'d> {
 
     /// Tables under names of the user's own, empty where they are left out.
     pub(crate) fn named_tables(&self, key: &str) -> Vec<(&'d str, Table<'d>)> {
-        let table = self.table(key);
-        let entries = table.entries.into_iter().flat_map(|entries| entries.iter());
-        let nodes = entries.map(|(name, value)| {
-            let path = table.path.key(name.get_ref());
+        let named = self.table(key).entries().into_iter();
+        named.filter_map(|(name, node)| Some((name, node.table()?))).collect()
+    }
+
+    /// All that it holds, taken without being asked for by name.
+    pub(crate) fn entries(&self) -> Vec<(&'d str, Node<'d>)> {
+        let entries = self.entries.into_iter().flat_map(|entries| entries.iter());
+        let node = |(name, value): (&'d Spanned<DeString<'d>>, &'d Spanned<DeValue<'d>>)| {
+            let path = self.path.key(name.get_ref());
             (&**name.get_ref(), Node::new(self.document, value, path))
-        });
-        nodes.filter_map(|(name, node)| Some((name, node.table()?))).collect()
+        };
+        entries.map(node).collect()
     }
 
     /// Knows a key without reading it.

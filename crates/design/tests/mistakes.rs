@@ -22,7 +22,7 @@ fn frozen_mistakes_in_keys() {
         ("its unit left off", mistakes(&["speed_m_s = 3.0\nclimb = 3.0"], "")),
         ("far from any", mistakes(&[], "colour = \"red\"\n")),
         ("an unknown table", mistakes(&[], "[lunch]\nat = 12\n")),
-        ("left for others", mistakes(&[], "[spread]\nx = 1\n[search]\ny = 2\n[wiring]\nz = 3\n")),
+        ("left for others", mistakes(&[], "[search]\ny = 2\n[wiring]\nz = 3\n")),
         (
             "left out",
             mistakes(&["height_m = 5.0", "speed_m_s = 3.0"], "").replace("sound", "")

@@ -1,0 +1,342 @@
+//! `undulift fly --launches`: the same design, let go many times.
+
+use std::path::Path;
+
+use anyhow::Context;
+use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
+use serde_json::{Map, Value, json};
+use undulift_design::quantities::{Quantity, of_flight};
+use undulift_design::{Design, Knob, Spread as Asked, Vary};
+use undulift_flight::{
+    Bands, Differs, End, FlightError, Glider, Settings, Spread, Summary, draw, fly_launches,
+};
+
+use crate::args::Fly;
+use crate::{people, whole_file};
+
+/// Many launches of a design, flown.
+pub struct Launches {
+    pub seed: u64,
+    pub landed_share: f64,
+    /// Share landed without rolling or pitching beyond the design's limit.
+    pub good_share: f64,
+    /// Launches that could not be let go or followed.
+    pub refused: usize,
+    /// Percentiles by the key of what is printed.
+    pub spread: Vec<(&'static str, Spread)>,
+    names: Vec<String>,
+    flown: Vec<Flown>,
+}
+
+/// One launch.
+struct Flown {
+    drawn: Vec<f64>,
+    result: Result<Summary, FlightError>,
+}
+
+/// One thing that differs from launch to launch.
+struct Item {
+    name: String,
+    what: What,
+    differs: Differs,
+}
+
+enum What {
+    /// Numbers of the design that change together.
+    Knobs(Vec<Knob>),
+    /// All masses.
+    Mass,
+}
+
+/// Flies a design as often as was asked.
+pub fn fly_all(
+    args: &Fly,
+    n_launches: u32,
+    design: &Design,
+    settings: &Settings,
+) -> anyhow::Result<Launches> {
+    let items = items(design);
+    let differs: Vec<Differs> = items.iter().map(|item| item.differs).collect();
+    let glider_of = |launch: usize| make(design, &items, &differs, args.seed, launch).0;
+    let bar = progress(u64::from(n_launches), &design.name);
+    let pool = rayon::ThreadPoolBuilder::new()
+        .num_threads(args.threads.map_or(0, usize::from))
+        .build()
+        .context("can't start threads")?;
+    let results = pool.install(|| {
+        fly_launches(n_launches as usize, settings, glider_of, || {
+            bar.inc(1);
+            true
+        })
+    });
+    bar.finish_and_clear();
+    let flown = results
+        .into_iter()
+        .flatten()
+        .enumerate()
+        .map(|(launch, result)| Flown {
+            drawn: make(design, &items, &differs, args.seed, launch).1,
+            result,
+        })
+        .collect();
+    Ok(Launches::new(design, args.seed, &items, flown))
+}
+
+/// What differs: as the design says, or as launches by hand usually do.
+fn items(design: &Design) -> Vec<Item> {
+    match &design.spread {
+        Asked::None => Vec::new(),
+        Asked::Default => usual(design),
+        Asked::Own(own) => own
+            .iter()
+            .map(|(knob, vary)| Item {
+                name: knob.key().to_owned(),
+                what: What::Knobs(vec![knob.clone()]),
+                differs: match *vary {
+                    Vary::Sd(sd) => Differs::Normal { sd },
+                    Vary::Range { low, high } => Differs::Uniform { low, high },
+                    Vary::FactorSd(sd) => Differs::Factor { sd },
+                },
+            })
+            .collect(),
+    }
+}
+
+/// Speed, attitude, spin and phase at release, lift, drag, pressure centre and mass.
+fn usual(design: &Design) -> Vec<Item> {
+    const DEGREES: Differs = Differs::Normal { sd: 3.0 };
+    const SPIN: Differs = Differs::Normal { sd: 10.0 };
+    const TENTH: Differs = Differs::Factor { sd: 0.1 };
+    let keys = [
+        ("launch.speed_m_s", Differs::Factor { sd: 0.05 }),
+        ("launch.climb_deg", DEGREES),
+        ("launch.roll_deg", DEGREES),
+        ("launch.pitch_deg", DEGREES),
+        ("launch.yaw_deg", DEGREES),
+        ("launch.spin_deg_s[0]", SPIN),
+        ("launch.spin_deg_s[1]", SPIN),
+        ("launch.spin_deg_s[2]", SPIN),
+        ("gait.phase_deg", Differs::Uniform { low: -10.0, high: 10.0 }),
+        ("air.lift_scale", TENTH),
+        ("air.drag_scale", TENTH),
+    ];
+    let mut items: Vec<Item> = keys
+        .into_iter()
+        .filter_map(|(key, differs)| {
+            let knob = Knob::find(design, key).ok()?;
+            Some(Item { name: key.to_owned(), what: What::Knobs(vec![knob]), differs })
+        })
+        .collect();
+    let centres = design
+        .glider
+        .sections
+        .iter()
+        .filter(|section| section.assumed_pressure_centre().is_some())
+        .filter_map(|section| {
+            Knob::find(design, &format!("section.{}.pressure_centre", section.name)).ok()
+        });
+    items.push(Item {
+        name: "pressure_centre".into(),
+        what: What::Knobs(centres.collect()),
+        differs: Differs::Uniform { low: -0.05, high: 0.05 },
+    });
+    items.push(Item {
+        name: "mass".into(),
+        what: What::Mass,
+        differs: Differs::Factor { sd: 0.01 },
+    });
+    items
+}
+
+/// The glider of a launch, with what was drawn for it: a knob's value, a mass's factor.
+fn make(
+    design: &Design,
+    items: &[Item],
+    differs: &[Differs],
+    seed: u64,
+    launch: usize,
+) -> (Glider, Vec<f64>) {
+    let mut changed = design.clone();
+    let mut drawn = Vec::new();
+    for (item, change) in items.iter().zip(draw(differs, seed, launch as u64)) {
+        match &item.what {
+            What::Knobs(knobs) => {
+                for knob in knobs {
+                    // What other numbers of the design don't allow stays as the design has it.
+                    let _ = knob.set_clamped(&mut changed, change.of(knob.value(design)));
+                }
+                drawn.push(knobs.first().map_or(0.0, |knob| knob.value(&changed)));
+            }
+            What::Mass => {
+                let factor = change.of(1.0).max(0.01);
+                changed.glider.chain = changed.glider.chain.heavier(factor);
+                drawn.push(factor);
+            }
+        }
+    }
+    (changed.glider, drawn)
+}
+
+fn progress(launches: u64, name: &str) -> ProgressBar {
+    let style = ProgressStyle::with_template("{msg} {wide_bar} {pos}/{len} flights, {eta} left");
+    let bar = ProgressBar::with_draw_target(Some(launches), ProgressDrawTarget::stderr());
+    bar.set_style(style.unwrap_or_else(|_| ProgressStyle::default_bar()));
+    bar.set_message(name.to_owned());
+    bar
+}
+
+impl Launches {
+    fn new(design: &Design, seed: u64, items: &[Item], flown: Vec<Flown>) -> Self {
+        let summaries: Vec<&Summary> =
+            flown.iter().filter_map(|flown| flown.result.as_ref().ok()).collect();
+        let share = |fits: &dyn Fn(&Summary) -> bool| {
+            let fitting = summaries.iter().filter(|summary| fits(summary)).count();
+            fitting as f64 / flown.len().max(1) as f64
+        };
+        let landed = |summary: &Summary| summary.end == End::Landed;
+        let tilt = |summary: &Summary| summary.peak_roll_rad.max(summary.peak_pitch_rad);
+        let limit_rad = design.limits.tilt_rad;
+        Self {
+            seed,
+            landed_share: share(&landed),
+            good_share: share(&|summary| landed(summary) && tilt(summary) <= limit_rad),
+            refused: flown.len() - summaries.len(),
+            spread: spread(&summaries),
+            names: items.iter().map(|item| item.name.clone()).collect(),
+            flown,
+        }
+    }
+
+    /// Percentiles of one printed quantity.
+    pub fn of(&self, key: &str) -> Option<&Spread> {
+        self.spread.iter().find(|(name, _)| *name == key).map(|(_, spread)| spread)
+    }
+
+    /// The two keys that JSON gains.
+    pub fn put_into(&self, object: &mut Map<String, Value>) {
+        let spread = self.spread.iter().map(|(key, spread)| {
+            ((*key).to_owned(), json!({ "p05": spread.p05, "p50": spread.p50, "p95": spread.p95 }))
+        });
+        object.insert("launches".into(), json!(self.flown.len()));
+        object.insert("seed".into(), json!(self.seed));
+        object.insert("spread".into(), Value::Object(spread.collect()));
+        object.insert("landed_share".into(), json!(self.landed_share));
+    }
+
+    /// Lines for people.
+    pub fn answer(&self, tilt_limit_deg: f64) -> String {
+        let mut text = format!("  {} launches, seed {}\n", self.flown.len(), self.seed);
+        let mut line = |label: &str, value: String| people::line(&mut text, label, &value);
+        let percent = |share: f64| format!("{:.1} %", 100.0 * share);
+        line(
+            "Landed upright",
+            format!(
+                "{}, {} within {tilt_limit_deg:.0}° of tilt",
+                percent(self.landed_share),
+                percent(self.good_share)
+            ),
+        );
+        if self.refused > 0 {
+            line("Not let go", format!("{} launches began on the floor or inverted", self.refused));
+        }
+        let rows = [
+            ("Glide ratio", "glide_ratio", "", 2),
+            ("  last cycle", "last_cycle_glide_ratio", "", 2),
+            ("Distance", "distance_m", " m", 2),
+            ("To the left", "side_drift_m", " m", 2),
+            ("Time", "time_s", " s", 2),
+            ("Along the body", "forward_airspeed_m_s", " m/s", 1),
+            ("Sink at the end", "sink_m_s", " m/s", 1),
+            ("Largest roll", "peak_roll_deg", "°", 1),
+            ("Largest pitch", "peak_pitch_deg", "°", 1),
+        ];
+        line("", format!("{:>9}{:>9}{:>9}", "5 %", "median", "95 %"));
+        for (label, key, unit, digits) in rows {
+            if let Some(Spread { p05, p50, p95 }) = self.of(key) {
+                line(label, format!("{p05:>9.digits$}{p50:>9.digits$}{p95:>9.digits$}{unit}"));
+            }
+        }
+        text
+    }
+
+    /// Writes a row for each launch: what was drawn, and how it went.
+    pub fn write(&self, path: &Path) -> anyhow::Result<()> {
+        whole_file::write(path, |file| {
+            let mut table = csv::Writer::from_writer(file);
+            let keys = Self::columns();
+            let drawn = self.names.iter().map(String::as_str);
+            table.write_record(["launch"].into_iter().chain(drawn).chain(keys.iter().copied()))?;
+            for (launch, flown) in self.flown.iter().enumerate() {
+                let drawn = flown.drawn.iter().map(|value| format!("{value}"));
+                let row = [(launch + 1).to_string()].into_iter().chain(drawn);
+                table.write_record(row.chain(cells(&flown.result, keys.len())))?;
+            }
+            table.flush()?;
+            Ok(())
+        })
+    }
+
+    /// Quantities of a flight that are single values, from how it ended on.
+    fn columns() -> Vec<&'static str> {
+        let keys = quantities(&EXAMPLE).into_iter().map(|(key, _)| key);
+        keys.collect()
+    }
+}
+
+/// Any flight, to ask for the names of its quantities.
+const EXAMPLE: Summary = Summary {
+    end: End::TimeUp,
+    time_s: 0.0,
+    drop_m: 0.0,
+    distance_m: 0.0,
+    glide_ratio: None,
+    last_cycle_glide_ratio: None,
+    last_cycle: None,
+    glide_angle_rad: 0.0,
+    speed_m_s: 0.0,
+    sink_m_s: 0.0,
+    side_drift_m: 0.0,
+    forward_airspeed_m_s: 0.0,
+    peak_roll_rad: 0.0,
+    peak_pitch_rad: 0.0,
+    landing_energy_j: 0.0,
+    mass_kg: 0.0,
+    planform_m2: 0.0,
+    wing_loading_pa: 0.0,
+    reduced_frequency: None,
+};
+
+/// What is printed of a flight, without the bands, which many launches leave out.
+fn quantities(summary: &Summary) -> Vec<(&'static str, Quantity)> {
+    let without = Bands { alpha_rad: None, reynolds: None, stretched: Vec::new() };
+    let all = of_flight(summary, &without).into_iter();
+    all.filter(|(key, _)| !["alpha_deg", "reynolds"].contains(key)).collect()
+}
+
+fn cells(result: &Result<Summary, FlightError>, n_columns: usize) -> Vec<String> {
+    let Ok(summary) = result else {
+        let mut cells = vec![String::new(); n_columns];
+        cells[0] = "refused".into();
+        return cells;
+    };
+    let cell = |(_, quantity)| match quantity {
+        Quantity::Number(value) => format!("{value}"),
+        Quantity::Word(word) => word.to_owned(),
+        Quantity::None | Quantity::Band(_) => String::new(),
+    };
+    quantities(summary).into_iter().map(cell).collect()
+}
+
+/// Percentiles of every quantity that is a number in some flight.
+fn spread(summaries: &[&Summary]) -> Vec<(&'static str, Spread)> {
+    let rows: Vec<_> = summaries.iter().map(|summary| quantities(summary)).collect();
+    let keys = quantities(&EXAMPLE).into_iter().enumerate();
+    keys.filter_map(|(column, (key, _))| {
+        let values = rows.iter().filter_map(|row| match row[column].1 {
+            Quantity::Number(value) => Some(value),
+            _ => None,
+        });
+        Some((key, Spread::of(values.collect())?))
+    })
+    .collect()
+}
