@@ -3,7 +3,7 @@
 use std::io::{self, Write};
 use std::path::Path;
 
-use anyhow::Context;
+use anyhow::{Context, anyhow};
 
 /// Fills a file beside its place and moves it there when it is complete.
 pub fn write(
@@ -11,21 +11,25 @@ pub fn write(
     fill: impl FnOnce(&mut dyn Write) -> anyhow::Result<()>,
 ) -> anyhow::Result<()> {
     let cannot = || format!("can't write {}", path.display());
-    // The system's own words, without the name of the file beside it.
-    let plain = |error: io::Error| match error.raw_os_error() {
-        Some(code) => io::Error::from_raw_os_error(code),
-        None => error,
-    };
     let folder = path.parent().filter(|parent| !parent.as_os_str().is_empty());
     let mut beside = tempfile::Builder::new()
         .prefix(".undulift-")
         .tempfile_in(folder.unwrap_or(Path::new(".")))
-        .map_err(plain)
-        .with_context(cannot)?;
+        .map_err(|error| anyhow!("{}: {}", cannot(), why(&error)))?;
     let mut buffered = std::io::BufWriter::new(beside.as_file_mut());
     fill(&mut buffered).with_context(cannot)?;
     buffered.flush().with_context(cannot)?;
     drop(buffered);
-    beside.persist(path).with_context(cannot)?;
+    beside.persist(path).map_err(|refused| anyhow!("{}: {}", cannot(), why(&refused.error)))?;
     Ok(())
+}
+
+/// Why a file can't be made, without the name of the one beside it.
+fn why(error: &io::Error) -> String {
+    match error.kind() {
+        io::ErrorKind::NotFound => "there is no such folder".into(),
+        io::ErrorKind::PermissionDenied => "permission is denied".into(),
+        io::ErrorKind::IsADirectory => "it is a folder".into(),
+        kind => kind.to_string(),
+    }
 }
