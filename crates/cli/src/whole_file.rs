@@ -12,7 +12,11 @@ pub fn write(
 ) -> anyhow::Result<()> {
     let cannot = || format!("can't write {}", path.display());
     let folder = path.parent().filter(|parent| !parent.as_os_str().is_empty());
-    let mut beside = tempfile::Builder::new()
+    let mut builder = tempfile::Builder::new();
+    // Readable as any new file is; by default only the owner could read it.
+    #[cfg(unix)]
+    builder.permissions(std::os::unix::fs::PermissionsExt::from_mode(0o666));
+    let mut beside = builder
         .prefix(".undulift-")
         .tempfile_in(folder.unwrap_or(Path::new(".")))
         .map_err(|error| anyhow!("{}: {}", cannot(), why(&error)))?;
