@@ -2,6 +2,7 @@
 //!
 //! The tests themselves stand in `tests/`, the data in `data/` with a README that says who made it.
 
+pub mod chains;
 pub mod gliders;
 
 use std::path::PathBuf;

@@ -1,89 +1,10 @@
 //! Rigid-chain mechanics against a general-purpose rigid-body library.
 
-use nalgebra::Vector3;
-use serde::Deserialize;
-use undulift_chain::{Carried, Chain, Joint, PointMass, Segment, Shape, joint_axes};
+use undulift_chain::Shape;
 use undulift_dynamics::{FourFrames, Mechanics};
 use undulift_lanes::{LANES, Triple};
-use undulift_tests::{read_json, relative_difference};
-
-#[derive(Deserialize)]
-struct File {
-    chains: Vec<Case>,
-}
-
-#[derive(Deserialize)]
-struct Case {
-    segments: Vec<Sizes>,
-    joints: Vec<String>,
-    attached: Vec<Mass>,
-    yaw_rad: Vec<f64>,
-    pitch_rad: Vec<f64>,
-    yaw_rate_rad_s: Vec<f64>,
-    pitch_rate_rad_s: Vec<f64>,
-    rotations: Vec<Vec<f64>>,
-    centres_m: Vec<Vec<f64>>,
-    angular_velocities_rad_s: Vec<Vec<f64>>,
-    centre_velocities_m_s: Vec<Vec<f64>>,
-    centre_of_mass_m: Vec<f64>,
-    centre_of_mass_velocity_m_s: Vec<f64>,
-    centroidal_inertia_kg_m2: Vec<f64>,
-    shape_momentum_kg_m2_s: Vec<f64>,
-    mass_kg: f64,
-}
-
-#[derive(Deserialize)]
-struct Sizes {
-    length_m: f64,
-    width_m: f64,
-    thickness_m: f64,
-    structure_kg: f64,
-}
-
-#[derive(Deserialize)]
-struct Mass {
-    segment_idx: usize,
-    at_m: [f64; 3],
-    mass_kg: f64,
-}
-
-impl Case {
-    fn chain(&self) -> Chain {
-        let segments = self.segments.iter().map(|s| Segment {
-            length_m: s.length_m,
-            width_m: s.width_m,
-            thickness_m: s.thickness_m,
-            structure_kg: s.structure_kg,
-        });
-        let joints = self.joints.iter().map(|axes| Joint {
-            yaw: axes == "yaw" || axes == "universal",
-            pitch: axes == "pitch" || axes == "universal",
-            ..Joint::default()
-        });
-        let attached = self.attached.iter().map(|m| PointMass {
-            carried: Carried::Payload,
-            segment_idx: m.segment_idx,
-            at_m: Vector3::from(m.at_m),
-            mass_kg: m.mass_kg,
-        });
-        Chain::new(segments.collect(), joints.collect(), attached.collect()).unwrap()
-    }
-
-    /// Yaw axes from the head, then pitch axes from the head.
-    fn by_axis(&self, chain: &Chain, yaw: &[f64], pitch: &[f64]) -> Vec<f64> {
-        let of = |axis: undulift_chain::AxisOf| match axis.axis {
-            undulift_chain::Axis::Yaw => yaw[axis.joint_idx],
-            undulift_chain::Axis::Pitch => pitch[axis.joint_idx],
-        };
-        joint_axes(chain.joints()).into_iter().map(of).collect()
-    }
-}
-
-fn cases() -> Vec<Case> {
-    let cases = read_json::<File>("chains.json").chains;
-    assert!(cases.len() >= 20);
-    cases
-}
+use undulift_tests::chains::cases;
+use undulift_tests::relative_difference;
 
 /// One quantity of every segment, flattened.
 fn of_segments(

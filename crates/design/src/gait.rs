@@ -1,6 +1,6 @@
 //! The gait: a wave's parameters, or a table of joint angles.
 
-use undulift_chain::Joint;
+use undulift_chain::{Joint, joint_axes};
 use undulift_gait::{Gait, Interpolation, Pattern, Start, Taper, Wave};
 
 use crate::DesignError;
@@ -58,7 +58,14 @@ fn read_table(
     let kinds = [("cubic", Interpolation::Cubic), ("linear", Interpolation::Linear)];
     let interpolation = table.word("interpolation", &kinds).unwrap_or_default();
     let source = files.read_csv(&table.get("table")?)?;
-    match build_gait_table(&source, joints?, interpolation) {
+    let joints = joints?;
+    if joint_axes(joints).is_empty() {
+        let why = "no joint turns, so a table has no angles to give".into();
+        let remedy = "give the joints axes in [joints], or take the table out";
+        table.note("table", DesignError::Disagree { why, remedy });
+        return None;
+    }
+    match build_gait_table(&source, joints, interpolation) {
         Ok(gait_table) => Some(gait_table),
         Err(mistakes) => {
             table.document().note_all(mistakes);

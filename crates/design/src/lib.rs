@@ -29,6 +29,7 @@ mod nearest;
 mod no_number;
 mod node;
 mod numbers;
+mod order;
 mod origin;
 mod overrides;
 pub mod quantities;
@@ -40,6 +41,7 @@ mod spread;
 mod starter;
 mod surroundings;
 mod table;
+mod written;
 
 pub use carried::{Battery, Payload, Regulator};
 pub use design::{Design, read, read_text};

@@ -8,6 +8,8 @@
 
 mod centroidal;
 mod frames;
+mod newton_euler;
 
 pub use centroidal::{Centroidal, Symmetric};
 pub use frames::{FourFrames, Frames, Mechanics};
+pub use newton_euler::{Held, JointLoads, JointMotion, Outside, Wrench, joint_loads};

@@ -2,6 +2,8 @@
 
 #![allow(dead_code, reason = "each test file uses a part")]
 
+pub mod random;
+
 use std::path::{Path, PathBuf};
 
 use undulift_design::{Design, DesignErrors, Override, read};
@@ -103,4 +105,16 @@ pub fn mistakes_of(text: &str) -> String {
 /// Mistakes of the sound design with lines replaced and text at its end.
 pub fn mistakes(lines: &[&str], end: &str) -> String {
     mistakes_of(&spoilt(lines, end))
+}
+
+/// How many cases a property is tried with: `UNDULIFT_FUZZ_CASES`, or a default that is soon done.
+pub fn cases(default: u32) -> proptest::test_runner::Config {
+    let asked = std::env::var("UNDULIFT_FUZZ_CASES").ok().and_then(|cases| cases.parse().ok());
+    let cases = asked.unwrap_or(default);
+    proptest::test_runner::Config {
+        cases,
+        // Seeds that failed are kept in the corpus as files, not as seeds.
+        failure_persistence: None,
+        ..proptest::test_runner::Config::default()
+    }
 }

@@ -1,0 +1,166 @@
+//! Forces in the joints against a general-purpose rigid-body library and by hand.
+
+use approx::assert_relative_eq;
+use nalgebra::{Quaternion, UnitQuaternion, Vector3};
+use serde::Deserialize;
+use undulift_chain::{Chain, Joint, PointMass, Segment};
+use undulift_dynamics::{Held, JointMotion, Outside, joint_loads};
+use undulift_tests::chains::cases;
+use undulift_tests::{read_json, relative_difference};
+
+#[derive(Deserialize)]
+struct File {
+    gravity_world_m_s2: [f64; 3],
+    chains: Vec<Loads>,
+}
+
+#[derive(Deserialize)]
+struct Loads {
+    root_to_world_wxyz: [f64; 4],
+    root_angular_velocity_world_rad_s: [f64; 3],
+    yaw_acceleration_rad_s2: Vec<f64>,
+    pitch_acceleration_rad_s2: Vec<f64>,
+    force_at_centre_world_n: Vec<[f64; 3]>,
+    moment_world_nm: Vec<[f64; 3]>,
+    root_acceleration_world_m_s2: [f64; 3],
+    root_angular_acceleration_world_rad_s2: [f64; 3],
+    yaw_torque_nm: Vec<Option<f64>>,
+    pitch_torque_nm: Vec<Option<f64>>,
+}
+
+/// Random free-flying chains with random joint motion and random forces on every segment: torques
+/// and accelerations of the head by the general-purpose library `pin` 4.1.0
+/// (`data/make_chains.py`).
+#[test]
+fn twin_random_chains_under_load_agree_with_a_rigid_body_library() {
+    let file: File = read_json("chain_loads.json");
+    let gravity = Vector3::from(file.gravity_world_m_s2);
+    for (which, (case, loads)) in cases().iter().zip(&file.chains).enumerate() {
+        let chain = case.chain();
+        let [w, x, y, z] = loads.root_to_world_wxyz;
+        let to_world = UnitQuaternion::from_quaternion(Quaternion::new(w, x, y, z));
+        let to_root = |v: [f64; 3]| to_world.inverse() * Vector3::from(v);
+        let by_axis = |yaw: &[f64], pitch: &[f64]| case.by_axis(&chain, yaw, pitch);
+        let angles_rad = by_axis(&case.yaw_rad, &case.pitch_rad);
+        let rates_rad_s = by_axis(&case.yaw_rate_rad_s, &case.pitch_rate_rad_s);
+        let accelerations_rad_s2 =
+            by_axis(&loads.yaw_acceleration_rad_s2, &loads.pitch_acceleration_rad_s2);
+        let outside: Vec<Outside> = (0..chain.n_segments())
+            .map(|k| {
+                let force_n = to_root(loads.force_at_centre_world_n[k]);
+                let rotation = nalgebra::Matrix3::from_row_slice(&case.rotations[k]);
+                let arm_m = rotation * chain.inertials()[k].centre_m;
+                let moment_nm = to_root(loads.moment_world_nm[k]) + arm_m.cross(&force_n);
+                Outside { force_n, moment_nm }
+            })
+            .collect();
+        let motion = JointMotion {
+            angles_rad: &angles_rad,
+            rates_rad_s: &rates_rad_s,
+            accelerations_rad_s2: &accelerations_rad_s2,
+        };
+        let held = Held::Free { head_rad_s: to_root(loads.root_angular_velocity_world_rad_s) };
+        let found = joint_loads(&chain, motion, held, to_world.inverse() * gravity, &outside);
+        let zeroed = |torques: &[Option<f64>]| -> Vec<f64> {
+            torques.iter().map(|torque| torque.unwrap_or(0.0)).collect()
+        };
+        let expected = by_axis(&zeroed(&loads.yaw_torque_nm), &zeroed(&loads.pitch_torque_nm));
+        let world = |v: Vector3<f64>| (to_world * v).as_slice().to_vec();
+        let pairs = [
+            ("torques", found.torques_nm.clone(), expected),
+            (
+                "acceleration",
+                world(found.head_acceleration_m_s2),
+                loads.root_acceleration_world_m_s2.to_vec(),
+            ),
+            (
+                "angular acceleration",
+                world(found.head_angular_acceleration_rad_s2),
+                loads.root_angular_acceleration_world_rad_s2.to_vec(),
+            ),
+        ];
+        for (what, found, expected) in pairs {
+            let apart = relative_difference(&found, &expected);
+            assert!(apart < 1e-9, "chain {which}, {what}: {apart:e} apart");
+        }
+        let largest =
+            |wrench: &undulift_dynamics::Wrench| wrench.force_n.norm().max(wrench.moment_nm.norm());
+        let in_joints = found.joints.iter().map(largest).fold(0.0, f64::max);
+        assert!(largest(&found.left) < 1e-9 * in_joints, "the nose bears nothing");
+    }
+}
+
+/// Two-link arm, links of 1 and 0.8 kg with centres at .25 and .2 m and inertias of .02 and .01 kg·m²
+/// about them, the first .5 m long: at rest and level 7.9461 and 1.5696 N·m; at q = (π/6, π/4),
+/// q̇ = (1, −2), q̈ = (3, 1.5), 7.389 217 and 0.821 517 (closed form, and `pin` 4.1.0; g 9.81).
+///
+/// Our first segment is a clamped stub; the links are thin boxes whose point masses make the centres
+/// and inertias. A link points to −x here, and positive pitch lifts its nose end, so gravity is taken
+/// along +z: seen from behind, the arm reaches out and lifts against it.
+#[test]
+fn published_two_link_arm() {
+    let stub = Segment { length_m: 0.1, width_m: 0.01, thickness_m: 0.01, structure_kg: 0.1 };
+    let thin =
+        |length_m: f64| Segment { length_m, width_m: 1e-4, thickness_m: 1e-4, structure_kg: 1e-9 };
+    // Two equal points at ± r about the centre have inertia m r².
+    let points = |segment_idx: usize, mass_kg: f64, centre_m: f64, inertia: f64| {
+        let radius_m = f64::sqrt(inertia / mass_kg);
+        [-radius_m, radius_m].map(|off_m| PointMass {
+            carried: undulift_chain::Carried::Payload,
+            segment_idx,
+            at_m: Vector3::new(-centre_m + off_m, 0.0, 0.0),
+            mass_kg: 0.5 * mass_kg,
+        })
+    };
+    let masses = points(1, 1.0, 0.25, 0.02).into_iter().chain(points(2, 0.8, 0.2, 0.01)).collect();
+    let joint = Joint { pitch: true, ..Joint::default() };
+    let chain = Chain::new(vec![stub, thin(0.5), thin(0.4)], vec![joint; 2], masses).unwrap();
+    let torques = |angles_rad: [f64; 2], rates_rad_s: [f64; 2], accelerations_rad_s2: [f64; 2]| {
+        let motion = JointMotion {
+            angles_rad: &angles_rad,
+            rates_rad_s: &rates_rad_s,
+            accelerations_rad_s2: &accelerations_rad_s2,
+        };
+        let held = Held::Clamped { segment_idx: 0 };
+        let gravity = Vector3::new(0.0, 0.0, 9.81);
+        joint_loads(&chain, motion, held, gravity, &[Outside::default(); 3]).torques_nm
+    };
+    let at_rest = torques([0.0; 2], [0.0; 2], [0.0; 2]);
+    assert_relative_eq!(at_rest[0], 7.9461, epsilon = 1e-6);
+    assert_relative_eq!(at_rest[1], 1.5696, epsilon = 1e-6);
+    let pi = std::f64::consts::PI;
+    let moving = torques([pi / 6.0, pi / 4.0], [1.0, -2.0], [3.0, 1.5]);
+    assert_relative_eq!(moving[0], 7.389_217, epsilon = 2e-6);
+    assert_relative_eq!(moving[1], 0.821_517, epsilon = 2e-6);
+}
+
+/// Held out level from either end or from the middle, each joint bears the weight beyond it times
+/// its lever, by hand: n segments of mass m and length L leave k of them beyond a joint, k²mgL/2.
+#[test]
+fn analytic_held_out_level() {
+    let segment = Segment { length_m: 0.1, width_m: 0.05, thickness_m: 0.02, structure_kg: 0.06 };
+    let joint = Joint { yaw: true, pitch: true, ..Joint::default() };
+    let chain = Chain::new(vec![segment; 6], vec![joint; 5], Vec::new()).unwrap();
+    let zero = [0.0; 10];
+    let motion = JointMotion { angles_rad: &zero, rates_rad_s: &zero, accelerations_rad_s2: &zero };
+    let g = undulift_aero::STANDARD_GRAVITY_M_S2;
+    for clamp in 0..6 {
+        let held = Held::Clamped { segment_idx: clamp };
+        let gravity = Vector3::new(0.0, 0.0, -g);
+        let loads = joint_loads(&chain, motion, held, gravity, &[Outside::default(); 6]);
+        for joint in 0..5 {
+            let beyond = if joint >= clamp { 5 - joint } else { joint + 1 } as f64;
+            let expected = beyond * beyond * 0.06 * g * 0.1 / 2.0;
+            assert_relative_eq!(loads.torques_nm[5 + joint].abs(), expected, epsilon = 1e-12);
+            assert_relative_eq!(loads.torques_nm[joint], 0.0, epsilon = 1e-12);
+            // The hinge carries the weight and, in pitch, nothing else.
+            let hinge = loads.hinges[joint];
+            assert_relative_eq!(hinge.force_n.z.abs(), beyond * 0.06 * g, epsilon = 1e-12);
+            assert_relative_eq!(hinge.moment_nm.norm(), 0.0, epsilon = 1e-12);
+            // What falls on either side bends the chain down at its ends, which lets the nose of
+            // the segment behind come up: the servo is asked to turn it down.
+            assert!(loads.torques_nm[5 + joint] < 0.0, "clamp {clamp}, joint {joint}");
+        }
+        assert_relative_eq!(loads.left.force_n.z, 6.0 * 0.06 * g, epsilon = 1e-12);
+    }
+}
