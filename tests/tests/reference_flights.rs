@@ -4,7 +4,7 @@ use approx::assert_relative_eq;
 use serde_json::Value;
 use undulift_design::quantities::{Quantity, of_flight};
 use undulift_design::{Design, read};
-use undulift_flight::{Flight, Settings, bands, fly, summary};
+use undulift_flight::{Flight, Settings, bands, fly, histories, loads_at, summary};
 use undulift_tests::{data_file, read_json};
 
 /// Results agree to this, relative to themselves or to 1 where they are smaller.
@@ -114,6 +114,36 @@ fn trace_agrees(design: &Design, flight: &mut Flight, expected: &Value) {
     let n_yaw = joints.iter().filter(|joint| joint.yaw).count();
     close("yaw joints", &degrees[..n_yaw], &expected["yaw_deg"], 1e-7);
     close("pitch joints", &degrees[n_yaw..], &expected["pitch_deg"], 1e-7);
+}
+
+/// Joint torques at three instants of each flight, within 3e-3 of the largest, by the same second
+/// implementation; the wrench left at the nose vanishes all along.
+#[test]
+fn twin_joint_torques_agree_with_a_second_implementation() {
+    let file: Value = read_json("flights.json");
+    for name in ["open-1-plate", "open-2-domed"] {
+        let (design, mut flight) = flown(name, 1e-9);
+        let rows = file[name]["joint_torques"].as_array().unwrap();
+        // Null stands where a joint lacks the axis.
+        let of_axis = |values: &Value| -> Vec<f64> {
+            values.as_array().unwrap().iter().filter_map(Value::as_f64).collect()
+        };
+        let of_row = |row: &Value| {
+            [of_axis(&row["yaw_torque_nm"]), of_axis(&row["pitch_torque_nm"])].concat()
+        };
+        let largest = rows.iter().flat_map(of_row).fold(0.0, |most: f64, t| most.max(t.abs()));
+        for row in rows {
+            let time_s = row["time_s"].as_f64().unwrap();
+            let found = loads_at(&design.glider, &mut flight, time_s).unwrap().torques_nm;
+            let expected = of_row(row);
+            assert_eq!(found.len(), expected.len());
+            for (found, expected) in found.iter().zip(&expected) {
+                assert!((found - expected).abs() < 3e-3 * largest, "{name}, {time_s} s");
+            }
+        }
+        let all = histories(&design.glider, &mut flight, 0.01).unwrap();
+        assert!(all.left_at_nose < 1e-9, "{name}: {:e}", all.left_at_nose);
+    }
 }
 
 /// The default tolerance keeps results within a thousandth of a far finer one.

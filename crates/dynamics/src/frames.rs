@@ -81,6 +81,11 @@ impl Mechanics {
         }
     }
 
+    /// Segments of the chain.
+    pub fn n_segments(&self) -> usize {
+        self.joints.len() + 1
+    }
+
     /// Room for the frames of one instant.
     pub fn room(&self) -> Frames {
         Frames {

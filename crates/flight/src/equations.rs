@@ -3,7 +3,7 @@
 use nalgebra::{Matrix3, Vector3};
 use undulift_aero::STANDARD_GRAVITY_M_S2;
 use undulift_chain::Segment;
-use undulift_dynamics::{Centroidal, Frames, Mechanics};
+use undulift_dynamics::{Centroidal, Frames, Mechanics, Outside};
 use undulift_gait::{Commands, Instant, Motion};
 use undulift_lanes::{LANES, Triple, f64x4, lanes};
 
@@ -92,6 +92,17 @@ impl Equations {
         &self.room.motion
     }
 
+    /// Joint commands of an instant with their accelerations.
+    pub(crate) fn full_motion(&mut self, at: Instant) -> &Motion {
+        self.commands.accelerations(at, &mut self.room.motion);
+        &self.room.motion
+    }
+
+    /// Joint commands as they were last asked for.
+    pub(crate) fn last_motion(&self) -> &Motion {
+        &self.room.motion
+    }
+
     /// First stage: joint commands, frames and centroidal sums of an instant.
     #[inline]
     pub fn shape(&mut self, at: Instant) -> Centroidal {
@@ -137,6 +148,12 @@ impl Equations {
         let moment = about_origin.moment_nm - moving.centroidal.centre_m.cross(force);
         let to_world = |v: Triple<f64>| (moving.head_to_world * Vector3::from(v)).into();
         Wrench { force_n: to_world(force), moment_nm: to_world(moment) }
+    }
+
+    /// Air loads on every segment at an instant, moment about its front end; root axes.
+    pub(crate) fn air_on_segments(&mut self, moving: &Moving, state: &State) -> Vec<Outside> {
+        let through = self.through(moving, state);
+        self.loads.on_segments(&self.room.frames, &through, self.mechanics.n_segments())
     }
 
     /// What each strip meets at an instant.

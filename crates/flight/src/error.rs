@@ -25,6 +25,11 @@ pub enum FlightError {
         /// Angle between the body's dorsal axis and the vertical, degrees.
         tilt_deg: f64,
     },
+    /// Joint loads need accelerations, which straight lines between rows don't have.
+    #[error(
+        "joint loads need a smooth gait: with interpolation = \"linear\" accelerations are impulses; use \"cubic\""
+    )]
+    Impulses,
     /// A setting that can't be used.
     #[error("{quantity} is {value}, but must be {allowed}")]
     Setting {

@@ -5,7 +5,7 @@ use std::sync::Arc;
 use gauss_quad::GaussLegendre;
 use undulift_aero::{FourStrips, PreparedSection, Section, SkinFrictionLaw};
 use undulift_chain::Segment;
-use undulift_dynamics::{Centroidal, FourFrames, Frames};
+use undulift_dynamics::{Centroidal, FourFrames, Frames, Outside};
 use undulift_lanes::{LANES, Triple, f64x4, lanes};
 
 use crate::Glider;
@@ -131,6 +131,24 @@ impl AirLoads {
             moment = moment + moment_here + at.front_m.cross(force_here);
         }
         Wrench { force_n: force.over_lanes(), moment_nm: moment.over_lanes() }
+    }
+
+    /// Air loads on every segment, moment about its front end; root axes, shape (n).
+    pub(crate) fn on_segments(
+        &self,
+        frames: &Frames,
+        through: &Through,
+        n_segments: usize,
+    ) -> Vec<Outside> {
+        let fours = self.fours.iter().zip(&frames.fours);
+        let in_lanes = fours.flat_map(|(four, at)| {
+            let (force, moment) = four.wrench(&self.sections, &self.friction, at, through);
+            (0..LANES).map(move |lane| Outside {
+                force_n: force.lane(lane).into(),
+                moment_nm: moment.lane(lane).into(),
+            })
+        });
+        in_lanes.take(n_segments).collect()
     }
 
     /// What every strip meets, from the head.

@@ -1,0 +1,134 @@
+//! What the joints bear along a flight.
+
+use nalgebra::Vector3;
+use undulift_aero::STANDARD_GRAVITY_M_S2;
+use undulift_chain::Chain;
+use undulift_dynamics::{Held, JointLoads, JointMotion, Wrench, joint_loads};
+use undulift_gait::{Gait, Instant, Interpolation, Pattern};
+
+use crate::{Equations, Flight, FlightError, Glider, State};
+
+/// Loads and motion of all joints at equal steps of time and at the end.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Histories {
+    /// After release, s.
+    pub times_s: Vec<f64>,
+    /// Joint torque of each axis, rotor inertia left out, N·m: shape (times, axes).
+    pub torques_nm: Vec<Vec<f64>>,
+    /// rad/s: shape (times, axes).
+    pub rates_rad_s: Vec<Vec<f64>>,
+    /// rad/s²: shape (times, axes).
+    pub accelerations_rad_s2: Vec<Vec<f64>>,
+    /// Largest force and moment that each hinge carries, torque of its servos taken off.
+    pub hinges: Vec<HingePeak>,
+    /// Largest wrench left at the nose, N or N·m, over the largest in any joint: a measure of how
+    /// exactly the loads balance.
+    pub left_at_nose: f64,
+}
+
+/// Extremes of what one hinge carries.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct HingePeak {
+    /// N.
+    pub force_n: f64,
+    /// N·m.
+    pub moment_nm: f64,
+}
+
+/// Joint loads along a flight.
+///
+/// - `every_s`: between rows; above 0
+///
+/// # Errors
+///
+/// [`FlightError::Impulses`] for a gait table with straight lines between its rows.
+pub fn histories(
+    glider: &Glider,
+    flight: &mut Flight,
+    every_s: f64,
+) -> Result<Histories, FlightError> {
+    refuse_impulses(&glider.gait)?;
+    let end_s = flight.time_s;
+    let whole = (end_s / every_s - 1e-9).floor() as u64;
+    let times_s: Vec<f64> = (0..=whole).map(|row| row as f64 * every_s).chain([end_s]).collect();
+    let mut found = Histories {
+        times_s: Vec::new(),
+        torques_nm: Vec::new(),
+        rates_rad_s: Vec::new(),
+        accelerations_rad_s2: Vec::new(),
+        hinges: vec![HingePeak::default(); glider.chain.joints().len()],
+        left_at_nose: 0.0,
+    };
+    for time_s in times_s {
+        let state = flight.trajectory.state(time_s);
+        let at = flight.trajectory.instant(time_s);
+        let loads = flight.equations.joint_loads(&glider.chain, at, &state);
+        found.push(time_s, &loads, &flight.equations);
+    }
+    Ok(found)
+}
+
+/// Loads in the joints of a flying glider at one instant.
+///
+/// # Errors
+///
+/// [`FlightError::Impulses`] for a gait table with straight lines between its rows.
+pub fn loads_at(
+    glider: &Glider,
+    flight: &mut Flight,
+    time_s: f64,
+) -> Result<JointLoads, FlightError> {
+    refuse_impulses(&glider.gait)?;
+    let state = flight.trajectory.state(time_s);
+    let at = flight.trajectory.instant(time_s);
+    Ok(flight.equations.joint_loads(&glider.chain, at, &state))
+}
+
+/// Straight lines between rows jump in rate, so their accelerations are impulses.
+pub(crate) fn refuse_impulses(gait: &Gait) -> Result<(), FlightError> {
+    match &gait.pattern {
+        Pattern::Table(table) if table.interpolation() == Interpolation::Linear => {
+            Err(FlightError::Impulses)
+        }
+        _ => Ok(()),
+    }
+}
+
+impl Histories {
+    fn push(&mut self, time_s: f64, loads: &JointLoads, equations: &Equations) {
+        let motion = equations.last_motion();
+        let n_axes = loads.torques_nm.len();
+        self.times_s.push(time_s);
+        self.torques_nm.push(loads.torques_nm.clone());
+        self.rates_rad_s.push(motion.rates_rad_s[..n_axes].to_vec());
+        self.accelerations_rad_s2.push(motion.accelerations_rad_s2[..n_axes].to_vec());
+        for (peak, hinge) in self.hinges.iter_mut().zip(&loads.hinges) {
+            peak.force_n = peak.force_n.max(hinge.force_n.norm());
+            peak.moment_nm = peak.moment_nm.max(hinge.moment_nm.norm());
+        }
+        let size = |wrench: &Wrench| wrench.force_n.norm().max(wrench.moment_nm.norm());
+        let largest = loads.joints.iter().map(size).fold(f64::MIN_POSITIVE, f64::max);
+        self.left_at_nose = self.left_at_nose.max(size(&loads.left) / largest);
+    }
+}
+
+impl Equations {
+    /// Loads in the joints at an instant; leaves the motion of that instant behind.
+    fn joint_loads(&mut self, chain: &Chain, at: Instant, state: &State) -> JointLoads {
+        let moving = self.moving(at, state);
+        let outside = self.air_on_segments(&moving, state);
+        let gravity_m_s2 = state.head_to_world.inverse_transform_vector(&Vector3::new(
+            0.0,
+            0.0,
+            -STANDARD_GRAVITY_M_S2,
+        ));
+        let motion = self.full_motion(at);
+        let motion = JointMotion {
+            angles_rad: &motion.angles_rad,
+            rates_rad_s: &motion.rates_rad_s,
+            accelerations_rad_s2: &motion.accelerations_rad_s2,
+        };
+        let held = Held::Free { head_rad_s: moving.angular_velocity_rad_s.into() };
+        joint_loads(chain, motion, held, gravity_m_s2, &outside)
+    }
+}
