@@ -6,7 +6,7 @@ use std::path::Path;
 use serde_json::{Value, json};
 use undulift_chain::Axis;
 use undulift_design::Design;
-use undulift_flight::{Doubt, Outlook, doubts_ahead, outlook};
+use undulift_flight::{Doubt, Outlook, Overlap, doubts_ahead, outlook};
 use undulift_gait::{Commands, Peak};
 
 use crate::args::Check;
@@ -71,13 +71,7 @@ fn look(path: &Path, args: &Check) -> Result<Looked, crate::Refused> {
 fn tell_overlaps(outlook: &Outlook) {
     const MOST: usize = 5;
     for overlap in outlook.overlaps.iter().take(MOST) {
-        terminal::tell_warning(&format!(
-            "segments {} and {} take the same space for {:.0} % of the cycle, first at t = {:.3} s",
-            overlap.ahead_idx + 1,
-            overlap.behind_idx + 1,
-            100.0 * overlap.share,
-            overlap.first_at_s
-        ));
+        terminal::tell_warning(&in_words(overlap));
     }
     if outlook.overlaps.len() > MOST {
         let more = outlook.overlaps.len() - MOST;
@@ -86,6 +80,16 @@ fn tell_overlaps(outlook: &Outlook) {
     if !outlook.overlaps.is_empty() {
         terminal::tell_hint("lower the amplitude, use more waves, or make the body narrower there");
     }
+}
+
+fn in_words(overlap: &Overlap) -> String {
+    format!(
+        "segments {} and {} take the same space for {:.0} % of the cycle, first at t = {:.3} s",
+        overlap.ahead_idx + 1,
+        overlap.behind_idx + 1,
+        100.0 * overlap.share,
+        overlap.first_at_s
+    )
 }
 
 fn answer(looked: &Looked) -> String {
@@ -103,7 +107,12 @@ fn answer(looked: &Looked) -> String {
     line("Centre of mass", centre(looked));
     line("Wing", wing(looked));
     if let (Some(speed_m_s), Some(reduced)) = (outlook.glide_speed_m_s, outlook.reduced_frequency) {
-        line("Glide speed", format!("{speed_m_s:.1} m/s at the best lift to drag, estimated"));
+        line(
+            "Glide speed",
+            format!(
+                "{speed_m_s:.1} m/s at the best lift to drag (rough: flights may take half or twice)"
+            ),
+        );
         line("Reduced frequency", format!("{reduced:.3} at that speed (doubtful above 0.05)"));
     }
     if let Some(chords) = outlook.gap_chords {
@@ -155,7 +164,7 @@ fn joint_table(looked: &Looked) -> String {
         let parts: Vec<String> = of_joint.map(|peak| asked(&looked.design, peak)).collect();
         let parts = if parts.is_empty() { "fixed".into() } else { parts.join("   ") };
         // Writing to a string can't fail.
-        let _ = writeln!(text, "    joint {:>3}   {parts}", joint_idx + 1);
+        let _ = writeln!(text, "    joint {:>3}   {}", joint_idx + 1, parts.trim_end());
     }
     text
 }
@@ -213,7 +222,8 @@ fn object(looked: &Looked) -> Value {
     put("overlaps", overlaps.collect());
     let missed = looked.missed.iter().map(joints::Missed::in_words);
     let doubts = looked.doubts.iter().map(|doubt| words::in_words(doubt).0);
-    put("warnings", missed.chain(doubts).collect());
+    let overlaps = outlook.overlaps.iter().map(in_words);
+    put("warnings", missed.chain(doubts).chain(overlaps).collect());
     Value::Object(object)
 }
 

@@ -18,7 +18,7 @@ pub fn in_words(doubt: &Doubt) -> (String, String) {
     let (doubt, hint) = match doubt {
         Doubt::Unsteady { reduced_frequency } => (
             format!(
-                "reduced frequency {reduced_frequency:.3} is above 0.05: real loads lag behind the \
+                "reduced frequency {reduced_frequency:.4} is above 0.05: real loads lag behind the \
                  wave more than this model's, which answer at once"
             ),
             "a slower wave, a faster launch or a narrower body lowers it; until then read small \

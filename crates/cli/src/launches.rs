@@ -12,12 +12,14 @@ use undulift_flight::{
 };
 
 use crate::args::Fly;
-use crate::{people, whole_file};
+use crate::{people, trace_file, whole_file};
 
 /// Many launches of a design, flown.
 pub struct Launches {
     pub seed: u64,
     pub landed_share: f64,
+    /// Share landed that never turned over.
+    pub upright_share: f64,
     /// Share landed without rolling or pitching beyond the design's limit.
     pub good_share: f64,
     /// Launches that could not be let go or followed.
@@ -36,9 +38,18 @@ struct Flown {
 
 /// One thing that differs from launch to launch.
 struct Item {
-    name: String,
     what: What,
     differs: Differs,
+}
+
+impl Item {
+    /// Names of what is drawn.
+    fn columns(&self) -> Vec<String> {
+        match &self.what {
+            What::Knobs(knobs) => knobs.iter().map(|knob| knob.key().to_owned()).collect(),
+            What::Mass => vec!["mass_factor".into()],
+        }
+    }
 }
 
 enum What {
@@ -90,7 +101,6 @@ fn items(design: &Design) -> Vec<Item> {
         Asked::Own(own) => own
             .iter()
             .map(|(knob, vary)| Item {
-                name: knob.key().to_owned(),
                 what: What::Knobs(vec![knob.clone()]),
                 differs: match *vary {
                     Vary::Sd(sd) => Differs::Normal { sd },
@@ -124,7 +134,7 @@ fn usual(design: &Design) -> Vec<Item> {
         .into_iter()
         .filter_map(|(key, differs)| {
             let knob = Knob::find(design, key).ok()?;
-            Some(Item { name: key.to_owned(), what: What::Knobs(vec![knob]), differs })
+            Some(Item { what: What::Knobs(vec![knob]), differs })
         })
         .collect();
     let centres = design
@@ -136,15 +146,10 @@ fn usual(design: &Design) -> Vec<Item> {
             Knob::find(design, &format!("section.{}.pressure_centre", section.name)).ok()
         });
     items.push(Item {
-        name: "pressure_centre".into(),
         what: What::Knobs(centres.collect()),
         differs: Differs::Uniform { low: -0.05, high: 0.05 },
     });
-    items.push(Item {
-        name: "mass".into(),
-        what: What::Mass,
-        differs: Differs::Factor { sd: 0.01 },
-    });
+    items.push(Item { what: What::Mass, differs: Differs::Factor { sd: 0.01 } });
     items
 }
 
@@ -165,7 +170,7 @@ fn make(
                     // What other numbers of the design don't allow stays as the design has it.
                     let _ = knob.set_clamped(&mut changed, change.of(knob.value(design)));
                 }
-                drawn.push(knobs.first().map_or(0.0, |knob| knob.value(&changed)));
+                drawn.extend(knobs.iter().map(|knob| knob.value(&changed)));
             }
             What::Mass => {
                 let factor = change.of(1.0).max(0.01);
@@ -194,15 +199,17 @@ impl Launches {
             fitting as f64 / flown.len().max(1) as f64
         };
         let landed = |summary: &Summary| summary.end == End::Landed;
+        let upright = |summary: &Summary| landed(summary) && !summary.inverted;
         let tilt = |summary: &Summary| summary.peak_roll_rad.max(summary.peak_pitch_rad);
         let limit_rad = design.limits.tilt_rad;
         Self {
             seed,
             landed_share: share(&landed),
-            good_share: share(&|summary| landed(summary) && tilt(summary) <= limit_rad),
+            upright_share: share(&upright),
+            good_share: share(&|summary| upright(summary) && tilt(summary) <= limit_rad),
             refused: flown.len() - summaries.len(),
             spread: spread(&summaries),
-            names: items.iter().map(|item| item.name.clone()).collect(),
+            names: items.iter().flat_map(Item::columns).collect(),
             flown,
         }
     }
@@ -221,23 +228,32 @@ impl Launches {
         object.insert("seed".into(), json!(self.seed));
         object.insert("spread".into(), Value::Object(spread.collect()));
         object.insert("landed_share".into(), json!(self.landed_share));
+        object.insert("upright_share".into(), json!(self.upright_share));
+        object.insert("good_share".into(), json!(self.good_share));
+        object.insert("refused".into(), json!(self.refused));
     }
 
     /// Lines for people.
     pub fn answer(&self, tilt_limit_deg: f64) -> String {
-        let mut text = format!("  {} launches, seed {}\n", self.flown.len(), self.seed);
+        let mut text = format!("  {}, seed {}\n", counted(self.flown.len()), self.seed);
         let mut line = |label: &str, value: String| people::line(&mut text, label, &value);
         let percent = |share: f64| format!("{:.1} %", 100.0 * share);
         line(
             "Landed upright",
             format!(
                 "{}, {} within {tilt_limit_deg:.0}° of tilt",
-                percent(self.landed_share),
+                percent(self.upright_share),
                 percent(self.good_share)
             ),
         );
         if self.refused > 0 {
-            line("Not let go", format!("{} launches began on the floor or inverted", self.refused));
+            line(
+                "Not let go",
+                format!(
+                    "{}: on the floor or inverted at release, or too fast to follow",
+                    counted(self.refused)
+                ),
+            );
         }
         let rows = [
             ("Glide ratio", "glide_ratio", "", 2),
@@ -267,7 +283,7 @@ impl Launches {
             let drawn = self.names.iter().map(String::as_str);
             table.write_record(["launch"].into_iter().chain(drawn).chain(keys.iter().copied()))?;
             for (launch, flown) in self.flown.iter().enumerate() {
-                let drawn = flown.drawn.iter().map(|value| format!("{value}"));
+                let drawn = flown.drawn.iter().map(|&value| trace_file::number(value));
                 let row = [(launch + 1).to_string()].into_iter().chain(drawn);
                 table.write_record(row.chain(cells(&flown.result, keys.len())))?;
             }
@@ -283,9 +299,14 @@ impl Launches {
     }
 }
 
+fn counted(launches: usize) -> String {
+    if launches == 1 { "1 launch".into() } else { format!("{launches} launches") }
+}
+
 /// Any flight, to ask for the names of its quantities.
 const EXAMPLE: Summary = Summary {
     end: End::TimeUp,
+    inverted: false,
     time_s: 0.0,
     drop_m: 0.0,
     distance_m: 0.0,
@@ -320,7 +341,7 @@ fn cells(result: &Result<Summary, FlightError>, n_columns: usize) -> Vec<String>
         return cells;
     };
     let cell = |(_, quantity)| match quantity {
-        Quantity::Number(value) => format!("{value}"),
+        Quantity::Number(value) => trace_file::number(value),
         Quantity::Word(word) => word.to_owned(),
         Quantity::None | Quantity::Band(_) => String::new(),
     };

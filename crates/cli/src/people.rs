@@ -71,9 +71,10 @@ fn ending(flown: &Flown) -> String {
     match (summary.end, flown.flight.inverted_at_s) {
         (End::Landed, Some(at_s)) => format!("{where_to}; turned over at {at_s:.2} s"),
         (End::Landed, None) if is_glide(flown) => format!("upright in a glide, {where_to}"),
-        (End::Landed, None) => format!("upright, but not in a glide: {where_to}"),
+        (End::Landed, None) => format!("upright, {}: {where_to}", why_no_glide(flown)),
         (End::Inverted | End::TimeUp, _) => {
-            format!("{where_to}, having come down {:.2} m", summary.drop_m)
+            let way = if summary.drop_m < 0.0 { "risen" } else { "come down" };
+            format!("{where_to}, having {way} {:.2} m", summary.drop_m.abs())
         }
     }
 }
@@ -81,6 +82,15 @@ fn ending(flown: &Flown) -> String {
 fn is_glide(flown: &Flown) -> bool {
     flown.summary.forward_airspeed_m_s > 0.0
         && flown.summary.last_cycle_glide_ratio.is_some_and(|ratio| ratio >= GLIDE)
+}
+
+fn why_no_glide(flown: &Flown) -> &'static str {
+    let summary = &flown.summary;
+    match summary.last_cycle_glide_ratio {
+        None => "with no cycle to judge a glide by",
+        Some(_) if summary.forward_airspeed_m_s <= 0.0 => "but tail first, so not in a glide",
+        Some(_) => "but too steep for a glide",
+    }
 }
 
 fn sideways(drift_m: f64) -> String {

@@ -39,11 +39,16 @@ pub fn write(path: &Path, flown: &mut Flown, every_s: f64) -> anyhow::Result<()>
         });
         table.write_record(COLUMNS.map(str::to_owned).into_iter().chain(joints))?;
         for row in trace(&mut flown.flight, every_s) {
-            table.write_record(numbers(&row).map(|number| format!("{number}")))?;
+            table.write_record(numbers(&row).map(number))?;
         }
         table.flush()?;
         Ok(())
     })
+}
+
+/// Shortest digits that read back as the same number; small ones with an exponent.
+pub fn number(value: f64) -> String {
+    if value != 0.0 && value.abs() < 1e-4 { format!("{value:e}") } else { format!("{value}") }
 }
 
 fn numbers(row: &TraceRow) -> impl Iterator<Item = f64> + '_ {

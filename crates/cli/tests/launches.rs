@@ -51,7 +51,13 @@ fn twin_bands_are_those_of_the_rows() {
     let mut rows = csv::Reader::from_path(&csv).unwrap();
     let columns = rows.headers().unwrap().clone();
     assert_eq!(&columns[0], "launch");
-    for column in ["launch.spin_deg_s[2]", "pressure_centre", "mass", "end", "peak_pitch_deg"] {
+    for column in [
+        "launch.spin_deg_s[2]",
+        "section.domed.pressure_centre",
+        "mass_factor",
+        "end",
+        "peak_pitch_deg",
+    ] {
         assert!(columns.iter().any(|name| name == column), "{columns:?}");
     }
     let at = columns.iter().position(|name| name == "distance_m").unwrap();

@@ -18,6 +18,8 @@ const PEAK_S: f64 = 1e-4;
 pub struct Summary {
     /// How it ended.
     pub end: End,
+    /// Whether the body ever turned over.
+    pub inverted: bool,
     /// Release to end, s.
     pub time_s: f64,
     /// Release height less the centre's height at the end, m.
@@ -83,6 +85,7 @@ pub fn summary(glider: &Glider, flight: &mut Flight) -> Summary {
     let cycle_start = cycle_from_s.map(|from_s| flight.trajectory.state(from_s));
     Summary {
         end: flight.end,
+        inverted: flight.inverted_at_s.is_some(),
         time_s: flight.time_s,
         drop_m,
         distance_m,
