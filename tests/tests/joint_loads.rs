@@ -4,8 +4,8 @@ use approx::assert_relative_eq;
 use nalgebra::{Quaternion, UnitQuaternion, Vector3};
 use serde::Deserialize;
 use undulift_chain::{Chain, Joint, PointMass, Segment};
-use undulift_dynamics::{Held, JointMotion, Outside, joint_loads};
-use undulift_tests::chains::cases;
+use undulift_dynamics::{Articulated, Drive, Held, JointMotion, Outside, joint_loads};
+use undulift_tests::chains::{Case, cases};
 use undulift_tests::{read_json, relative_difference};
 
 #[derive(Deserialize)]
@@ -28,24 +28,26 @@ struct Loads {
     pitch_torque_nm: Vec<Option<f64>>,
 }
 
-/// Random free-flying chains with random joint motion and random forces on every segment: torques
-/// and accelerations of the head by the general-purpose library `pin` 4.1.0
-/// (`data/make_chains.py`).
-#[test]
-fn twin_random_chains_under_load_agree_with_a_rigid_body_library() {
-    let file: File = read_json("chain_loads.json");
-    let gravity = Vector3::from(file.gravity_world_m_s2);
-    for (which, (case, loads)) in cases().iter().zip(&file.chains).enumerate() {
+/// A chain in its pose under its loads, in root axes, lists by axis.
+struct Posed {
+    chain: Chain,
+    to_world: UnitQuaternion<f64>,
+    head_rad_s: Vector3<f64>,
+    angles_rad: Vec<f64>,
+    rates_rad_s: Vec<f64>,
+    accelerations_rad_s2: Vec<f64>,
+    torques_nm: Vec<f64>,
+    outside: Vec<Outside>,
+}
+
+impl Posed {
+    fn of(case: &Case, loads: &Loads) -> Self {
         let chain = case.chain();
         let [w, x, y, z] = loads.root_to_world_wxyz;
         let to_world = UnitQuaternion::from_quaternion(Quaternion::new(w, x, y, z));
         let to_root = |v: [f64; 3]| to_world.inverse() * Vector3::from(v);
         let by_axis = |yaw: &[f64], pitch: &[f64]| case.by_axis(&chain, yaw, pitch);
-        let angles_rad = by_axis(&case.yaw_rad, &case.pitch_rad);
-        let rates_rad_s = by_axis(&case.yaw_rate_rad_s, &case.pitch_rate_rad_s);
-        let accelerations_rad_s2 =
-            by_axis(&loads.yaw_acceleration_rad_s2, &loads.pitch_acceleration_rad_s2);
-        let outside: Vec<Outside> = (0..chain.n_segments())
+        let outside = (0..chain.n_segments())
             .map(|k| {
                 let force_n = to_root(loads.force_at_centre_world_n[k]);
                 let rotation = nalgebra::Matrix3::from_row_slice(&case.rotations[k]);
@@ -54,20 +56,45 @@ fn twin_random_chains_under_load_agree_with_a_rigid_body_library() {
                 Outside { force_n, moment_nm }
             })
             .collect();
-        let motion = JointMotion {
-            angles_rad: &angles_rad,
-            rates_rad_s: &rates_rad_s,
-            accelerations_rad_s2: &accelerations_rad_s2,
-        };
-        let held = Held::Free { head_rad_s: to_root(loads.root_angular_velocity_world_rad_s) };
-        let found = joint_loads(&chain, motion, held, to_world.inverse() * gravity, &outside);
         let zeroed = |torques: &[Option<f64>]| -> Vec<f64> {
             torques.iter().map(|torque| torque.unwrap_or(0.0)).collect()
         };
-        let expected = by_axis(&zeroed(&loads.yaw_torque_nm), &zeroed(&loads.pitch_torque_nm));
-        let world = |v: Vector3<f64>| (to_world * v).as_slice().to_vec();
+        Self {
+            to_world,
+            head_rad_s: to_root(loads.root_angular_velocity_world_rad_s),
+            angles_rad: by_axis(&case.yaw_rad, &case.pitch_rad),
+            rates_rad_s: by_axis(&case.yaw_rate_rad_s, &case.pitch_rate_rad_s),
+            accelerations_rad_s2: by_axis(
+                &loads.yaw_acceleration_rad_s2,
+                &loads.pitch_acceleration_rad_s2,
+            ),
+            torques_nm: by_axis(&zeroed(&loads.yaw_torque_nm), &zeroed(&loads.pitch_torque_nm)),
+            outside,
+            chain,
+        }
+    }
+}
+
+/// Random free-flying chains with random joint motion and random forces on every segment: torques
+/// and accelerations of the head by the general-purpose library `pin` 4.1.0
+/// (`data/make_chains.py`).
+#[test]
+fn twin_random_chains_under_load_agree_with_a_rigid_body_library() {
+    let file: File = read_json("chain_loads.json");
+    let gravity = Vector3::from(file.gravity_world_m_s2);
+    for (which, (case, loads)) in cases().iter().zip(&file.chains).enumerate() {
+        let posed = Posed::of(case, loads);
+        let motion = JointMotion {
+            angles_rad: &posed.angles_rad,
+            rates_rad_s: &posed.rates_rad_s,
+            accelerations_rad_s2: &posed.accelerations_rad_s2,
+        };
+        let held = Held::Free { head_rad_s: posed.head_rad_s };
+        let gravity = posed.to_world.inverse() * gravity;
+        let found = joint_loads(&posed.chain, motion, held, gravity, &posed.outside);
+        let world = |v: Vector3<f64>| (posed.to_world * v).as_slice().to_vec();
         let pairs = [
-            ("torques", found.torques_nm.clone(), expected),
+            ("torques", found.torques_nm.clone(), posed.torques_nm.clone()),
             (
                 "acceleration",
                 world(found.head_acceleration_m_s2),
@@ -87,6 +114,53 @@ fn twin_random_chains_under_load_agree_with_a_rigid_body_library() {
             |wrench: &undulift_dynamics::Wrench| wrench.force_n.norm().max(wrench.moment_nm.norm());
         let in_joints = found.joints.iter().map(largest).fold(0.0, f64::max);
         assert!(largest(&found.left) < 1e-9 * in_joints, "the nose bears nothing");
+    }
+}
+
+/// The same chains forwards: with torques known on every other axis and motion on the rest, rotor
+/// inertia taken along, the articulated passes give back the accelerations that the library was
+/// given, and its head accelerations.
+#[test]
+fn twin_forward_dynamics_inverts_the_rigid_body_library() {
+    let file: File = read_json("chain_loads.json");
+    let gravity = Vector3::from(file.gravity_world_m_s2);
+    for (which, (case, loads)) in cases().iter().zip(&file.chains).enumerate() {
+        let posed = Posed::of(case, loads);
+        let rotor_kg_m2 = 2e-4;
+        for known in 0..3 {
+            let drives: Vec<Drive> = (0..posed.torques_nm.len())
+                .map(|axis| {
+                    let acceleration = posed.accelerations_rad_s2[axis];
+                    // All torques, every other one, or none.
+                    match (known, axis % 2) {
+                        (0, _) | (1, 0) => Drive::Torque {
+                            torque_nm: posed.torques_nm[axis] + rotor_kg_m2 * acceleration,
+                            rotor_kg_m2,
+                        },
+                        _ => Drive::Motion(acceleration),
+                    }
+                })
+                .collect();
+            let mut articulated = Articulated::new(&posed.chain);
+            let head = articulated.solve(
+                &posed.angles_rad,
+                &posed.rates_rad_s,
+                &drives,
+                posed.head_rad_s,
+                posed.to_world.inverse() * gravity,
+                &posed.outside,
+            );
+            let world = |v: Vector3<f64>| (posed.to_world * v).as_slice().to_vec();
+            let pairs = [
+                (articulated.accelerations_rad_s2().to_vec(), posed.accelerations_rad_s2.clone()),
+                (world(head.linear_m_s2), loads.root_acceleration_world_m_s2.to_vec()),
+                (world(head.angular_rad_s2), loads.root_angular_acceleration_world_rad_s2.to_vec()),
+            ];
+            for (found, expected) in pairs {
+                let apart = relative_difference(&found, &expected);
+                assert!(apart < 1e-8, "chain {which}, case {known}: {apart:e} apart");
+            }
+        }
     }
 }
 

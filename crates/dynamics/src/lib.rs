@@ -6,10 +6,12 @@
 //!
 //! All vectors are in the root frame (segment 0's) unless a name says otherwise. SI units, radians.
 
+mod articulated;
 mod centroidal;
 mod frames;
 mod newton_euler;
 
+pub use articulated::{Articulated, Drive, HeadAcceleration};
 pub use centroidal::{Centroidal, Symmetric};
 pub use frames::{FourFrames, Frames, Mechanics};
 pub use newton_euler::{Held, JointLoads, JointMotion, Outside, Wrench, joint_loads};
