@@ -3,9 +3,11 @@
 use approx::assert_relative_eq;
 use nalgebra::{Quaternion, UnitQuaternion, Vector3};
 use serde::Deserialize;
-use undulift_chain::{Chain, Joint, PointMass, Segment};
+use undulift_chain::{Chain, Joint, PointMass, Segment, Shape};
 use undulift_dynamics::{Articulated, Drive, Held, JointMotion, Outside, joint_loads};
+use undulift_flight::{Pose, Settings, bench_loads, fly, histories};
 use undulift_tests::chains::{Case, cases};
+use undulift_tests::gliders::{in_vacuum, undulating};
 use undulift_tests::{read_json, relative_difference};
 
 #[derive(Deserialize)]
@@ -236,5 +238,74 @@ fn analytic_held_out_level() {
             assert!(loads.torques_nm[5 + joint] < 0.0, "clamp {clamp}, joint {joint}");
         }
         assert_relative_eq!(loads.left.force_n.z, 6.0 * 0.06 * g, epsilon = 1e-12);
+    }
+}
+
+/// In the release shape, held by one segment at rest, the clamp bears the weight and its moment
+/// about the clamp; twice the weight makes twice the torque. By hand: force M g G, and the torques'
+/// work for a small turn of one joint equals the weight's, checked as a difference of potential
+/// energy between two shapes.
+#[test]
+fn twin_held_in_the_release_shape() {
+    let glider = undulating();
+    let [once, twice] =
+        [1.0, 2.0].map(|factor| bench_loads(&glider, Pose::Release, 4, factor).unwrap());
+    let weight_n = glider.chain.mass_kg() * undulift_aero::STANDARD_GRAVITY_M_S2;
+    assert_relative_eq!(once.left.force_n.norm(), weight_n, epsilon = 1e-12);
+    for (one, two) in once.torques_nm.iter().zip(&twice.torques_nm) {
+        assert_relative_eq!(2.0 * one, *two, epsilon = 1e-12);
+    }
+    let refused = bench_loads(&glider, Pose::HeldOut, 12, 1.0).unwrap_err().to_string();
+    assert!(refused.contains("no segment 13"), "{refused}");
+    // Held by the head, level: turning joint j by a little lifts or lowers the centre of mass by
+    // what the torque there pays for.
+    let n_joints = 11;
+    let height_m = |turned: usize, angle_rad: f64| {
+        let yaw_rad = vec![0.0; n_joints];
+        let mut pitch_rad = vec![0.0; n_joints];
+        pitch_rad[turned] = angle_rad;
+        Shape::of(&glider.chain, &yaw_rad, &pitch_rad).centre_of_mass_m(&glider.chain).z
+    };
+    let held = bench_loads(&glider, Pose::HeldOut, 0, 1.0).unwrap();
+    for joint in 0..n_joints {
+        let rise_m = height_m(joint, 1e-5) - height_m(joint, -1e-5);
+        assert_relative_eq!(
+            held.torques_nm[n_joints + joint],
+            weight_n * rise_m / 2e-5,
+            epsilon = 1e-8
+        );
+    }
+}
+
+/// What the chain's energy changes by is the work of its joints and of the air, each far from
+/// nothing: torques and rates against kinetic and potential energy, two routes that share only the
+/// flight. Simpson's rule over 0.5 ms steps and the flight at 1e-10 leave a millionth.
+#[test]
+fn twin_energy_changes_by_the_work_of_joints_and_air() {
+    for (glider, has_air) in [(undulating(), true), (in_vacuum(undulating()), false)] {
+        let settings = Settings { tolerance: 1e-10, max_time_s: 0.8, ..Settings::default() };
+        let mut flight = fly(&glider, &settings).unwrap();
+        assert_eq!(flight.time_s, 0.8);
+        let found = histories(&glider, &mut flight, 5e-4).unwrap();
+        let joint_power_w = |row: usize| -> f64 {
+            found.torques_nm[row].iter().zip(&found.rates_rad_s[row]).map(|(t, r)| t * r).sum()
+        };
+        let rows = found.times_s.len() - 1;
+        assert_eq!(rows % 2, 0);
+        let simpson = |power_w: &dyn Fn(usize) -> f64| -> f64 {
+            let weight = |row: usize| match row {
+                0 => 1.0,
+                row if row == rows => 1.0,
+                row => 2.0 + 2.0 * (row % 2) as f64,
+            };
+            (0..=rows).map(|row| weight(row) * power_w(row)).sum::<f64>() * 5e-4 / 3.0
+        };
+        let joints_j = simpson(&joint_power_w);
+        let air_j = simpson(&|row| found.air_power_w[row]);
+        let change_j = found.energy_j[rows] - found.energy_j[0];
+        let throughput_j = simpson(&|row| joint_power_w(row).abs());
+        assert!(throughput_j > 0.02, "{throughput_j}");
+        assert!(has_air == (air_j.abs() > 0.5), "{air_j}");
+        assert_relative_eq!(change_j, joints_j + air_j, epsilon = 1e-6 * throughput_j);
     }
 }

@@ -156,6 +156,27 @@ impl Equations {
         self.loads.on_segments(&self.room.frames, &through, self.mechanics.n_segments())
     }
 
+    /// Power of the air on the whole chain at an instant, W.
+    pub(crate) fn air_power_w(&mut self, at: Instant, state: &State) -> f64 {
+        let moving = self.moving(at, state);
+        let outside = self.air_on_segments(&moving, state);
+        // Over the ground: the chain's own motion, without the wind.
+        let velocity: Triple<f64> = moving.head_to_world.tr_mul(&state.velocity_m_s).into();
+        let head_rad_s = moving.angular_velocity_rad_s;
+        let origin = velocity
+            - head_rad_s.cross(moving.centroidal.centre_m)
+            - moving.centroidal.velocity_m_s;
+        let parts = outside.iter().enumerate().map(|(idx, outside)| {
+            let (four, lane) = (&self.room.frames.fours[idx / LANES], idx % LANES);
+            let front = origin
+                + head_rad_s.cross(four.front_m.lane(lane))
+                + four.front_velocity_m_s.lane(lane);
+            let spin = head_rad_s + four.angular_velocity_rad_s.lane(lane);
+            front.dot(outside.force_n.into()) + spin.dot(outside.moment_nm.into())
+        });
+        parts.sum()
+    }
+
     /// What each strip meets at an instant.
     pub(crate) fn strips(&mut self, at: Instant, state: &State, mut each: impl FnMut(StripAir)) {
         let moving = self.moving(at, state);

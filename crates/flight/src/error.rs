@@ -25,6 +25,14 @@ pub enum FlightError {
         /// Angle between the body's dorsal axis and the vertical, degrees.
         tilt_deg: f64,
     },
+    /// A segment that the chain doesn't have.
+    #[error("there is no segment {segment}: the chain has 1 to {segments}")]
+    NoSuchSegment {
+        /// Counted from 1.
+        segment: usize,
+        /// Segments in the chain.
+        segments: usize,
+    },
     /// Joint loads need accelerations, which straight lines between rows don't have.
     #[error(
         "joint loads need a smooth gait: with interpolation = \"linear\" accelerations are impulses; use \"cubic\""

@@ -19,6 +19,10 @@ pub struct Histories {
     pub rates_rad_s: Vec<Vec<f64>>,
     /// rad/s²: shape (times, axes).
     pub accelerations_rad_s2: Vec<Vec<f64>>,
+    /// Power of the air on the chain, W: shape (times).
+    pub air_power_w: Vec<f64>,
+    /// Kinetic energy and weight's, against a centre of mass on the floor, J: shape (times).
+    pub energy_j: Vec<f64>,
     /// Largest force and moment that each hinge carries, torque of its servos taken off.
     pub hinges: Vec<HingePeak>,
     /// Largest wrench left at the nose, N or N·m, over the largest in any joint: a measure of how
@@ -56,6 +60,8 @@ pub fn histories(
         torques_nm: Vec::new(),
         rates_rad_s: Vec::new(),
         accelerations_rad_s2: Vec::new(),
+        air_power_w: Vec::new(),
+        energy_j: Vec::new(),
         hinges: vec![HingePeak::default(); glider.chain.joints().len()],
         left_at_nose: 0.0,
     };
@@ -64,6 +70,10 @@ pub fn histories(
         let at = flight.trajectory.instant(time_s);
         let loads = flight.equations.joint_loads(&glider.chain, at, &state);
         found.push(time_s, &loads, &flight.equations);
+        let weight_n = glider.chain.mass_kg() * STANDARD_GRAVITY_M_S2;
+        let kinetic_j = flight.equations.kinetic_energy_j(at, &state);
+        found.energy_j.push(kinetic_j + weight_n * state.place_m.z);
+        found.air_power_w.push(flight.equations.air_power_w(at, &state));
     }
     Ok(found)
 }

@@ -10,6 +10,7 @@
 
 mod attitude;
 mod bands;
+mod bench_loads;
 mod doubts;
 mod equations;
 mod error;
@@ -30,6 +31,7 @@ mod weighted;
 
 pub use attitude::Attitude;
 pub use bands::{Bands, Stretched, bands};
+pub use bench_loads::{Pose, bench_loads};
 pub use doubts::{Doubt, doubts, doubts_ahead};
 pub use equations::Equations;
 pub use error::FlightError;

@@ -23,8 +23,13 @@ pub enum Heat {
     NoServo,
     /// Nothing is known of what it bears.
     Unknown,
-    /// RMS torque over the torque that it holds for ever.
-    RmsShare(f64),
+    /// RMS torque against the torque that it holds for ever stands in.
+    RmsShare {
+        /// Over the history, N·m.
+        rms_nm: f64,
+        /// For ever, N·m.
+        limit_nm: f64,
+    },
     /// From its thermal data.
     Winding {
         /// Hottest that it became, K.

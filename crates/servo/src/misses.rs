@@ -79,7 +79,9 @@ impl fmt::Display for Miss {
             MissKind::ContinuousTorque => {
                 write!(f, "RMS torque {found:.3} N·m, above the continuous {limit:.3} N·m")?;
             }
-            MissKind::BatteryCurrent => write!(f, "battery gives {found:.1} A, above {limit:.1} A")?,
+            MissKind::BatteryCurrent => {
+                write!(f, "battery gives {found:.1} A, above {limit:.1} A")?
+            }
             MissKind::RegulatorCurrent => {
                 write!(f, "regulator gives {found:.1} A, above {limit:.1} A")?;
             }

@@ -22,8 +22,7 @@ impl Servo {
     ///
     /// - `error_rad`: command less angle
     pub fn loop_torque_nm(&self, error_rad: f64, rate_rad_s: f64, supply: Supply) -> f64 {
-        let cold_volts =
-            supply.voltage_v - self.no_load_current_a * self.winding_resistance_ohm();
+        let cold_volts = supply.voltage_v - self.no_load_current_a * self.winding_resistance_ohm();
         let drive = self.position_loop.drive(error_rad) * cold_volts / self.no_load_back_emf_v();
         let torque_nm = self.stall_torque_nm * (drive - rate_rad_s / self.no_load_speed_rad_s);
         let quadrant = Quadrant::of(torque_nm, rate_rad_s);
