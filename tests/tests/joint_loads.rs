@@ -6,6 +6,7 @@ use serde::Deserialize;
 use undulift_chain::{Chain, Joint, PointMass, Segment, Shape};
 use undulift_dynamics::{Articulated, Drive, Held, JointMotion, Outside, joint_loads};
 use undulift_flight::{Pose, Settings, bench_loads, fly, histories};
+use undulift_gait::Pattern;
 use undulift_tests::chains::{Case, cases};
 use undulift_tests::gliders::{in_vacuum, undulating};
 use undulift_tests::{read_json, relative_difference};
@@ -282,7 +283,11 @@ fn twin_held_in_the_release_shape() {
 /// flight. Simpson's rule over 0.5 ms steps and the flight at 1e-10 leave a millionth.
 #[test]
 fn twin_energy_changes_by_the_work_of_joints_and_air() {
-    for (glider, has_air) in [(undulating(), true), (in_vacuum(undulating()), false)] {
+    // Fast, so that the joints work as hard as the air does.
+    let mut fast = undulating();
+    let Pattern::Wave(wave) = &mut fast.gait.pattern else { unreachable!("it undulates") };
+    wave.frequency_hz = 4.0;
+    for (glider, has_air) in [(fast.clone(), true), (in_vacuum(fast), false)] {
         let settings = Settings { tolerance: 1e-10, max_time_s: 0.8, ..Settings::default() };
         let mut flight = fly(&glider, &settings).unwrap();
         assert_eq!(flight.time_s, 0.8);
@@ -304,7 +309,7 @@ fn twin_energy_changes_by_the_work_of_joints_and_air() {
         let air_j = simpson(&|row| found.air_power_w[row]);
         let change_j = found.energy_j[rows] - found.energy_j[0];
         let throughput_j = simpson(&|row| joint_power_w(row).abs());
-        assert!(throughput_j > 0.02, "{throughput_j}");
+        assert!(throughput_j > 0.3, "{throughput_j}");
         assert!(has_air == (air_j.abs() > 0.5), "{air_j}");
         assert_relative_eq!(change_j, joints_j + air_j, epsilon = 1e-6 * throughput_j);
     }
