@@ -21,6 +21,7 @@ pub struct Args {
 pub enum Command {
     Fly(Fly),
     Check(Check),
+    Budget(Budget),
     New(New),
     Completions(Completions),
 }
@@ -91,6 +92,76 @@ pub struct Fly {
     pub sets: Vec<Override>,
 }
 
+/// Ask whether the servos can do it: torque, speed, power, heat and battery, joint by joint.
+///
+/// By default over the flight; on the bench, held out level and straight or in the shape of its
+/// release, at rest. Exit status 1 means that a limit is missed: the torque factor of `[limits]`,
+/// a servo's speed, heat or travel, the battery's or its regulator's current.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift budget designs/reed-16.toml
+  undulift budget designs/reed-16.toml --case held-out --clamp 8 --load-factor 3
+  undulift budget designs/reed-16.toml --drops 10 --rest-s 60 --histories torques.csv")]
+pub struct Budget {
+    /// A design file (TOML).
+    #[arg(value_name = "DESIGN")]
+    pub design: PathBuf,
+
+    /// What the joints bear: a flight, or the body at rest on the bench.
+    #[arg(long, value_enum, default_value_t = Case::Flight)]
+    pub case: Case,
+
+    /// The segment that holds the body on the bench, from 1 at the head; in the shape of its
+    /// release it is the grip's unless given.
+    #[arg(long, value_name = "SEGMENT", value_parser = clap::value_parser!(u32).range(1..=128))]
+    pub clamp: Option<u32>,
+
+    /// Weights for each newton of weight on the bench, more than 1 for being caught.
+    #[arg(long, value_name = "G", default_value_t = 1.0, value_parser = load_factor)]
+    pub load_factor: f64,
+
+    /// Drops one after another, for the heat.
+    #[arg(long, value_name = "N", default_value_t = 1,
+        value_parser = clap::value_parser!(u32).range(1..=100_000))]
+    pub drops: u32,
+
+    /// Rest between drops, s.
+    #[arg(long, value_name = "S", default_value_t = 0.0, value_parser = rest_s)]
+    pub rest_s: f64,
+
+    /// Write joint torques (rotor inertia left out) and speeds of the flight as CSV.
+    #[arg(long, value_name = "FILE.csv")]
+    pub histories: Option<PathBuf>,
+
+    /// Time between rows of the histories, ms.
+    #[arg(long, value_name = "MS", default_value_t = 5.0, requires = "histories",
+        value_parser = every_ms)]
+    pub every_ms: f64,
+
+    /// Relative and absolute tolerance of the integration, from 1e-13 to 1e-2.
+    #[arg(long, value_name = "TOL", default_value = "1e-6")]
+    pub tolerance: f64,
+
+    /// Print JSON.
+    #[arg(long)]
+    pub json: bool,
+
+    /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
+    #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
+    pub sets: Vec<Override>,
+}
+
+/// What the joints bear.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+pub enum Case {
+    /// The design's flight.
+    Flight,
+    /// Level and straight, held by --clamp.
+    HeldOut,
+    /// The shape and attitude of its release, held by the grip or --clamp.
+    Release,
+}
+
 /// Write a design file to start from: every key with its meaning, unit and range.
 ///
 /// It flies as it is. A file that exists is left alone unless --force is given.
@@ -144,14 +215,26 @@ pub struct Check {
     pub sets: Vec<Override>,
 }
 
+fn load_factor(text: &str) -> Result<f64, String> {
+    within(text, [-1000.0, 1000.0])
+}
+
+fn rest_s(text: &str) -> Result<f64, String> {
+    within(text, [0.0, 1e6])
+}
+
+fn within(text: &str, [low, high]: [f64; 2]) -> Result<f64, String> {
+    let value: f64 = text.parse().map_err(|_| "it must be a number".to_owned())?;
+    if (low..=high).contains(&value) {
+        Ok(value)
+    } else {
+        Err(format!("it must be from {low} to {high}"))
+    }
+}
+
 /// More rows than this would fill a disk rather than tell something.
 const LEAST_EVERY_MS: f64 = 1e-3;
 
 fn every_ms(text: &str) -> Result<f64, String> {
-    let every_ms: f64 = text.parse().map_err(|_| "it must be a number".to_owned())?;
-    if (LEAST_EVERY_MS..=1e6).contains(&every_ms) {
-        Ok(every_ms)
-    } else {
-        Err(format!("it must be from {LEAST_EVERY_MS} to 1000000"))
-    }
+    within(text, [LEAST_EVERY_MS, 1e6])
 }

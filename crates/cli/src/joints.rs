@@ -1,5 +1,6 @@
 //! What a gait asks of the joints, against what they can do.
 
+use undulift_chain::AxisOf;
 use undulift_design::{Design, Servo};
 use undulift_gait::Peak;
 
@@ -72,6 +73,13 @@ pub fn tell(name: &str, missed: &[Missed]) {
 }
 
 impl Missed {
+    /// Which axis.
+    pub fn of(&self) -> AxisOf {
+        match self {
+            Self::Travel { peak, .. } | Self::Speed { peak, .. } => peak.of,
+        }
+    }
+
     fn is_like(&self, other: &Self) -> bool {
         match (self, other) {
             (Self::Travel { peak, .. }, Self::Travel { peak: other, .. })

@@ -4,6 +4,7 @@
 //! limits; 1 done, but a limit is missed; 2 could not run.
 
 mod args;
+mod budget;
 mod check;
 mod doubts;
 mod fly;
@@ -79,6 +80,7 @@ fn main() -> ExitCode {
     let outcome = match &args.command {
         Command::Fly(fly) => fly::run(fly),
         Command::Check(check) => check::run(check),
+        Command::Budget(args) => budget::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),
     };

@@ -2,6 +2,7 @@
 
 use nalgebra::Vector3;
 use undulift_chain::{Carried, PointMass, Segment};
+use undulift_servo::{CellVoltage, Regulator};
 
 use crate::body::read_segment;
 use crate::range::Range;
@@ -23,36 +24,13 @@ pub struct Payload {
     pub mass: PointMass,
 }
 
-/// A battery's figures, SI.
+/// A battery in the body.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Battery {
     /// What and where, as in the chain.
     pub mass: PointMass,
-    /// In series.
-    pub cells: u32,
-    /// Charge when full, C.
-    pub capacity_coulomb: f64,
-    /// Of one cell, Ω.
-    pub cell_resistance_ohm: f64,
-    /// Most that it may give, A.
-    pub current_limit_a: Option<f64>,
-    /// At release, 0 empty to 1 full.
-    pub charge: f64,
-    /// Between battery and servos.
-    pub regulator: Option<Regulator>,
-    /// What everything but the servos draws, W.
-    pub electronics_w: f64,
-}
-
-/// Holds the servos' voltage.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Regulator {
-    /// What it holds, V.
-    pub volts: f64,
-    /// Most that it may give, A.
-    pub current_limit_a: f64,
-    /// Power out over power in.
-    pub efficiency: f64,
+    /// Its figures.
+    pub supply: undulift_servo::Battery,
 }
 
 /// - `segments`: in the body, where that is known
@@ -71,16 +49,17 @@ pub(crate) fn read_battery(
     let electronics_w = table.number_or("electronics_w", Range::from_to(0.0, 10_000.0), 0.0);
     let mass = read_mass(&table, Carried::Battery, segments, boxes);
     table.finish();
-    Some(Battery {
-        mass: mass?,
+    let supply = undulift_servo::Battery {
         cells: cells?,
         capacity_coulomb: capacity_mah? * COULOMB_PER_MAH,
         cell_resistance_ohm: cell_mohm? * 1e-3,
+        cell_voltage: CellVoltage::default(),
         current_limit_a,
         charge,
         regulator,
         electronics_w,
-    })
+    };
+    Some(Battery { mass: mass?, supply })
 }
 
 fn read_regulator(table: Table<'_>) -> Option<Regulator> {

@@ -2,12 +2,14 @@
 
 use std::collections::BTreeMap;
 
+use undulift_servo::Servo;
+
 use crate::DesignError;
 use crate::document::{Document, Mark};
 use crate::key_path::KeyPath;
 use crate::named_files::NamedFiles;
 use crate::node::Node;
-use crate::servo::{Servo, read_servos};
+use crate::servo::read_servos;
 use crate::table::Table;
 
 /// Servos that a design may name.
@@ -65,6 +67,14 @@ fn read_catalogue(
     if top.get("servos").is_some() {
         let path = KeyPath::of(["servos"]);
         document.note(&path, Mark::Key, &[], DesignError::NestedCatalogue);
+    } else if top.holds("body") {
+        let why = "this is a design, but a file of servos is needed".to_owned();
+        let what = DesignError::Disagree { why, remedy: "name a file of [servo.NAME] tables" };
+        document.note(&KeyPath::of(["body"]), Mark::Key, &[], what);
+    }
+    if !document.is_sound() {
+        design.note_all(document.into_mistakes());
+        return None;
     }
     let servos = read_servos(&top);
     top.finish();

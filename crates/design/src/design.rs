@@ -6,6 +6,7 @@ use std::path::{Path, PathBuf};
 use nalgebra::Vector3;
 use undulift_chain::{Axis, Carried, Chain, ChainError, Joint, PointMass, Segment};
 use undulift_flight::Glider;
+use undulift_servo::Servo;
 
 use crate::body::read_body;
 use crate::carried::{Battery, Payload, read_battery, read_payload};
@@ -20,7 +21,6 @@ use crate::named_files::NamedFiles;
 use crate::origin::Origin;
 use crate::overrides::apply;
 use crate::sections::{read_sections, sections_of_body};
-use crate::servo::Servo;
 use crate::spread::{Spread, read_spread};
 use crate::surroundings::{Limits, read_air, read_launch, read_limits, read_update_hz};
 use crate::table::Table;

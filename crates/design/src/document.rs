@@ -95,6 +95,11 @@ impl<'t> Document<'t> {
         self.numbers.take()
     }
 
+    /// Whether no mistake was found so far.
+    pub(crate) fn is_sound(&self) -> bool {
+        self.mistakes.borrow().is_empty()
+    }
+
     /// Whether there is a mistake in what stands under a key at the top.
     pub(crate) fn is_spoilt(&self, top_key: &str) -> bool {
         let within = |mistake: &Mistake| {

@@ -91,6 +91,8 @@ pub enum DesignError {
     ListLength {
         /// Items in the list.
         found: usize,
+        /// How many there must be, where that is known.
+        wanted: Option<usize>,
         /// What decides how many there must be.
         why: String,
     },
@@ -219,7 +221,9 @@ impl DesignError {
             }
             Self::Folder { .. } => "name a file in it".into(),
             Self::TooLarge { .. } => "check that this is the file you mean, or shorten it".into(),
-            Self::NotText { .. } => "save it as plain text in UTF-8".into(),
+            Self::NotText { .. } => {
+                "check that this is the file you mean, and save it as plain text in UTF-8".into()
+            }
             Self::NotInText { .. } => "rename its folders, or choose another place".into(),
             Self::Empty { .. } => "check that this is the file you mean".into(),
             Self::Syntax { .. } => {
@@ -233,11 +237,16 @@ impl DesignError {
                 format!("keys here are {}", listed(known.iter().map(|key| format!("`{key}`"))))
             }
             Self::Missing { .. } => "add it".into(),
-            Self::WrongKind { wanted, .. } => format!("write {wanted}"),
-            Self::OutOfRange { .. } => {
-                "check the number, its sign, and the unit if the key ends with one".into()
+            Self::WrongKind { found, wanted } => {
+                let number_in_quotes = found.starts_with("the text") && wanted.contains("number");
+                let as_number =
+                    if number_in_quotes { ", without quotes and without its unit" } else { "" };
+                format!("write {wanted}{as_number}")
             }
-            Self::ListLength { .. } => "give as many items as that".into(),
+            Self::OutOfRange { .. } => "check the number and its sign".into(),
+            Self::ListLength { wanted: Some(1), .. } => "give 1 item".into(),
+            Self::ListLength { wanted: Some(wanted), .. } => format!("give {wanted} items"),
+            Self::ListLength { wanted: None, .. } => "check that this is what you mean".into(),
             Self::UnknownWord { known, .. } => format!("write {known}"),
             Self::Undefined { remedy, .. } => remedy.clone(),
             Self::TakenName { .. } => "choose another name".into(),

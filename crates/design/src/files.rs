@@ -32,11 +32,16 @@ pub(crate) fn read_file(path: &Path, most_bytes: u64) -> Result<String, DesignEr
     if bytes.len() as u64 > most_bytes {
         return Err(DesignError::TooLarge { file: named(), most_mb: most_bytes >> 20 });
     }
-    let text = String::from_utf8(bytes).map_err(|error| {
-        let sound = error.utf8_error().valid_up_to();
-        let line = 1 + error.as_bytes()[..sound].iter().filter(|&&byte| byte == b'\n').count();
+    let other_at = |bytes: &[u8]| {
+        let line = 1 + bytes.iter().filter(|&&byte| byte == b'\n').count();
         DesignError::NotText { file: named(), line }
-    })?;
+    };
+    let text = String::from_utf8(bytes)
+        .map_err(|error| other_at(&error.as_bytes()[..error.utf8_error().valid_up_to()]))?;
+    // Bytes of 0 are UTF-8, but nobody's text.
+    if let Some(at) = text.find('\0') {
+        return Err(other_at(&text.as_bytes()[..at]));
+    }
     if text.trim().is_empty() { Err(DesignError::Empty { file: named() }) } else { Ok(text) }
 }
 

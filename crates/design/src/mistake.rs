@@ -7,6 +7,8 @@ use std::sync::Arc;
 use miette::{Diagnostic, LabeledSpan, NamedSource, SourceCode};
 
 use crate::DesignError;
+use crate::table::A_TABLE;
+use crate::unit::unit_of;
 
 /// A file's name and text, shared by all mistakes in it.
 pub(crate) type Source = Arc<NamedSource<String>>;
@@ -93,6 +95,22 @@ impl Mistake {
         line.replace(char::is_control, " ")
     }
 
+    /// What to do about it.
+    pub fn remedy(&self) -> Option<String> {
+        let last = self.key.rsplit('.').next().unwrap_or_default();
+        match &self.what {
+            DesignError::Missing { wanted } if wanted == A_TABLE => {
+                Some(format!("add a [{}] table", self.key))
+            }
+            DesignError::Missing { .. } => Some(format!("add `{last} = …`")),
+            DesignError::OutOfRange { .. } => {
+                let unit = unit_of(&self.key).map(|unit| format!("; it is in {unit}"));
+                Some(format!("{}{}", self.what.help()?, unit.unwrap_or_default()))
+            }
+            what => what.help(),
+        }
+    }
+
     fn is_drawn(&self) -> Option<(&Source, &Place)> {
         let (source, place) = self.source.as_ref().zip(self.place.as_ref())?;
         let text = source.inner().as_bytes();
@@ -125,7 +143,7 @@ impl std::error::Error for Mistake {}
 
 impl Diagnostic for Mistake {
     fn help<'a>(&'a self) -> Option<Box<dyn fmt::Display + 'a>> {
-        self.what.help().map(|help| Box::new(help) as Box<dyn fmt::Display>)
+        self.remedy().map(|help| Box::new(help) as Box<dyn fmt::Display>)
     }
 
     fn source_code(&self) -> Option<&dyn SourceCode> {

@@ -11,7 +11,7 @@ use crate::key_path::KeyPath;
 use crate::nearest::nearest;
 use crate::numbers::{Allowed, Number};
 use crate::range::Range;
-use crate::table::Table;
+use crate::table::{A_TABLE, Table};
 
 /// Most items of a list that are read; none that is meant has more.
 const MOST_ITEMS: usize = 10_000;
@@ -161,7 +161,7 @@ impl<'d> Node<'d> {
                 Some(Table::new(self.document, Some(entries), self.path.clone()))
             }
             _ => {
-                self.wrong_kind("a table");
+                self.wrong_kind(A_TABLE);
                 None
             }
         }
@@ -175,7 +175,7 @@ impl<'d> Node<'d> {
         };
         if items.len() > MOST_ITEMS {
             let why = format!("at most {MOST_ITEMS} are read");
-            self.note(DesignError::ListLength { found: items.len(), why });
+            self.note(DesignError::ListLength { found: items.len(), wanted: None, why });
         }
         let node = |(idx, item): (usize, &'d Spanned<DeValue<'d>>)| Node {
             document: self.document,
@@ -189,7 +189,8 @@ impl<'d> Node<'d> {
     pub(crate) fn items(&self, wanted: &str, count: &Count) -> Option<Vec<Node<'d>>> {
         let items = self.list(wanted)?;
         if count.items.is_some_and(|wanted| wanted != items.len()) {
-            let what = DesignError::ListLength { found: items.len(), why: count.why.clone() };
+            let (found, why) = (items.len(), count.why.clone());
+            let what = DesignError::ListLength { found, wanted: count.items, why };
             match &count.decided_by {
                 Some(path) => self.note_beside(path.clone(), what),
                 None => self.note(what),
@@ -200,7 +201,12 @@ impl<'d> Node<'d> {
 
     /// A list of numbers; absent where its length is wrong or isn't known.
     pub(crate) fn numbers(&self, range: Range, count: &Count) -> Option<Vec<f64>> {
-        let items = self.items(&format!("a list of numbers {range}"), count)?;
+        let wanted = match count.items {
+            Some(1) => format!("a list of 1 number {range}"),
+            Some(items) => format!("a list of {items} numbers {range}"),
+            None => format!("a list of numbers {range}"),
+        };
+        let items = self.items(&wanted, count)?;
         let values: Vec<Option<f64>> = items.iter().map(|item| item.number(range)).collect();
         if count.items == Some(values.len()) { values.into_iter().collect() } else { None }
     }

@@ -55,6 +55,11 @@ impl Origin {
         }
     }
 
+    /// Keys of what was set without text.
+    pub(crate) fn set_keys(&self) -> impl Iterator<Item = &KeyPath> {
+        self.set.iter().map(|(path, _)| path)
+    }
+
     /// What was set without text, as overrides of the text.
     pub(crate) fn overrides(&self) -> Vec<Override> {
         self.set.iter().map(|(path, value)| self.override_of(path, *value)).collect()

@@ -84,8 +84,7 @@ fn check(columns: &Columns<'_>, reynolds: f64, rows: &[usize]) -> Vec<Mistake> {
             let value = columns.get(name).map_or(0.0, |values| values[row]);
             if value.abs() > END_SLACK {
                 let why = format!("at Re {reynolds} and {wanted_deg}° this is {value}, not 0");
-                let remedy =
-                    "sections are alike left and right, so broadside on neither side lifts";
+                let remedy = "write 0: sections are alike left and right, so broadside on neither side lifts";
                 refuse(row, name, why, remedy);
             }
         }

@@ -5,6 +5,8 @@
 
 use std::collections::BTreeMap;
 
+use undulift_servo::{Endurance, PositionLoop, Pulse, Servo};
+
 use crate::range::Range;
 use crate::table::Table;
 use crate::{DesignError, document::Mark};
@@ -14,88 +16,6 @@ pub(crate) const NO_SERVO: &str = "none";
 
 /// Newton metres in a kilogram-force centimetre (exact, from standard gravity).
 const NM_PER_KGF_CM: f64 = 0.098_066_5;
-
-/// A servo's catalogue figures, SI.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Servo {
-    /// As the design calls it.
-    pub name: String,
-    /// kg.
-    pub mass_kg: f64,
-    /// Voltage that torque, speed and currents are given at, V.
-    pub at_voltage_v: f64,
-    /// N·m.
-    pub stall_torque_nm: f64,
-    /// rad/s.
-    pub no_load_speed_rad_s: f64,
-    /// A.
-    pub stall_current_a: f64,
-    /// Turning unloaded, A.
-    pub no_load_current_a: f64,
-    /// Electronics alone, A.
-    pub idle_current_a: f64,
-    /// Of the gear when driven from the motor; absent: what the figures imply.
-    pub gear_efficiency: Option<f64>,
-    /// Rotor inertia seen at the output shaft, kg·m².
-    pub rotor_inertia_at_output_kg_m2: f64,
-    /// What it stands for long.
-    pub endurance: Endurance,
-    /// Pulses that command it.
-    pub pulse: Pulse,
-    /// Its position loop.
-    pub position_loop: PositionLoop,
-    /// In any currency.
-    pub price: Option<f64>,
-}
-
-/// What a servo stands for long.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub enum Endurance {
-    /// Nothing is known.
-    Unknown,
-    /// A torque that it holds for ever, N·m.
-    ContinuousTorque(f64),
-    /// One thermal mass.
-    Thermal {
-        /// Winding to air, K/W.
-        resistance_k_w: f64,
-        /// J/K.
-        capacity_j_k: f64,
-        /// Hottest that the winding may be, K.
-        winding_limit_k: f64,
-    },
-}
-
-/// Pulse lengths, µs.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Pulse {
-    /// At −90°.
-    pub minus_90_us: f64,
-    /// Straight.
-    pub centre_us: f64,
-    /// At 90°.
-    pub plus_90_us: f64,
-}
-
-/// A proportional loop on the angle's error.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct PositionLoop {
-    /// Error that calls for full drive, rad.
-    pub full_at_rad: f64,
-    /// Error that calls for none, rad.
-    pub deadband_rad: f64,
-}
-
-impl Servo {
-    /// Mechanical over electrical power that the figures imply: ω₀τ_s/[(V_n − I₀R)(I_s − I₀)] with
-    /// R = V_n/I_s. At most 1.
-    pub fn implied_efficiency(&self) -> f64 {
-        let resistance_ohm = self.at_voltage_v / self.stall_current_a;
-        let back_emf_v = self.at_voltage_v - self.no_load_current_a * resistance_ohm;
-        self.no_load_speed_rad_s * self.stall_torque_nm
-            / (back_emf_v * (self.stall_current_a - self.no_load_current_a))
-    }
-}
 
 /// Reads all servos of a file; absent where there are mistakes in one.
 pub(crate) fn read_servos(top: &Table<'_>) -> BTreeMap<String, Option<Servo>> {

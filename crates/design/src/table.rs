@@ -19,6 +19,9 @@ use crate::node::{Count, Node, whole_wanted};
 use crate::numbers::{Allowed, Number};
 use crate::range::Range;
 
+/// What a key must be that holds others.
+pub(crate) const A_TABLE: &str = "a table";
+
 /// A table of a file, or one that was left out and so holds nothing.
 #[derive(Debug)]
 pub(crate) struct Table<'d> {
@@ -148,7 +151,7 @@ impl<'d> Table<'d> {
 
     /// A table in this one that must not be left out.
     pub(crate) fn need_table(&self, key: &str) -> Table<'d> {
-        let given = self.need(key, "a table").and_then(|node| node.table());
+        let given = self.need(key, A_TABLE).and_then(|node| node.table());
         given.unwrap_or_else(|| Table::new(self.document, None, self.path.key(key)))
     }
 

@@ -9,7 +9,7 @@ use toml_edit::{Array, ArrayOfTables, DocumentMut, InlineTable, Item, RawString,
 use undulift_gait::Pattern;
 
 use crate::Design;
-use crate::key_path::KeyPath;
+use crate::key_path::{KeyPath, Step};
 use crate::numbers::Number;
 use crate::order::{default_word, inline_keys_of, keys_of};
 use crate::overrides::number_text;
@@ -69,12 +69,16 @@ impl Writer<'_> {
         tables
     }
 
-    /// Sections of the body, and what the text says of others.
+    /// Sections of the body, and others that the text or a knob says something of.
     fn sections(&self) -> Vec<String> {
         let given = self.text.get("section").and_then(Item::as_table_like);
         let given = given.into_iter().flat_map(|given| given.iter().map(|(name, _)| name));
         let used = self.design.glider.sections.iter().map(|section| section.name.as_str());
-        let mut names: Vec<String> = given.chain(used).map(str::to_owned).collect();
+        let set = self.design.origin.set_keys().filter_map(|path| match path.0.as_slice() {
+            [Step::Key(table), Step::Key(name), ..] if table == "section" => Some(name.as_str()),
+            _ => None,
+        });
+        let mut names: Vec<String> = given.chain(used).chain(set).map(str::to_owned).collect();
         names.sort_unstable();
         names.dedup();
         names

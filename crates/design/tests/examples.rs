@@ -69,7 +69,7 @@ fn twin_a_full_design_loads() {
     assert_relative_eq!(servo.no_load_speed_rad_s, 600f64.to_radians());
     assert_eq!(servo.endurance, Endurance::ContinuousTorque(0.15));
     assert!(matches!(read.servos["mid-34"].endurance, Endurance::Thermal { .. }));
-    assert_relative_eq!(read.battery.as_ref().unwrap().capacity_coulomb, 1620.0);
+    assert_relative_eq!(read.battery.as_ref().unwrap().supply.capacity_coulomb, 1620.0);
     assert_eq!(read.update_hz, Some(50.0));
     // A servo sits at the rear end of the segment ahead of its joint.
     let attached = read.glider.chain.attached();

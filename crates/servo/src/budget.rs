@@ -5,9 +5,10 @@
 //! give many. Joint travel is judged elsewhere.
 
 use crate::assumptions::assumptions;
+use crate::axis_run::{AxisRun, Share};
+use crate::battery_run::BatteryRun;
 use crate::figures::Figures;
 use crate::history::rms;
-use crate::running::{AxisRun, BatteryRun, Share};
 use crate::{
     Assumption, Battery, Endurance, Heat, Histories, Miss, MissKind, Place, Remedies, Servo,
     ServoError, When,

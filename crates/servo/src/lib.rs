@@ -10,7 +10,9 @@
 //! product isn't negative, else it is driven. SI units, radians and kelvin.
 
 mod assumptions;
+mod axis_run;
 mod battery;
+mod battery_run;
 mod budget;
 mod draw;
 mod error;
@@ -21,8 +23,8 @@ mod history;
 mod line;
 mod misses;
 mod position_loop;
-mod running;
 mod servo;
+mod worst;
 
 pub use assumptions::Assumption;
 pub use battery::{Battery, CellVoltage, Regulator};

@@ -7,6 +7,7 @@ pub mod random;
 use std::path::{Path, PathBuf};
 
 use undulift_design::{Design, DesignErrors, Override, read};
+use undulift_flight::Glider;
 
 pub const SOUND: &str = r#"
 [body]
@@ -117,4 +118,34 @@ pub fn cases(default: u32) -> proptest::test_runner::Config {
         failure_persistence: None,
         ..proptest::test_runner::Config::default()
     }
+}
+
+/// A glider to the last bit, but for the rows of its sections.
+///
+/// Floats print the shortest digits that read back as the same bits, so equal print is equal bits.
+pub fn bits(glider: &Glider) -> String {
+    let Glider { chain, section_of, strips_per_segment, gait, air, launch, .. } = glider;
+    let of_air = (air, glider.wind_world_m_s, glider.scales, glider.skin_friction);
+    // Tables made on first use print once they are made, so sections can't be printed whole.
+    let section =
+        |section: &undulift_aero::Section| (section.name.clone(), section.pressure_centre);
+    let sections: Vec<_> = glider.sections.iter().map(section).collect();
+    format!(
+        "{chain:?} {sections:?} {section_of:?} {strips_per_segment} {gait:?} {of_air:?} {launch:?}"
+    )
+}
+
+/// All designs that come with the tool, by their files.
+pub fn demos() -> Vec<(PathBuf, Design)> {
+    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../designs");
+    let files = std::fs::read_dir(folder).unwrap().map(|entry| entry.unwrap().path());
+    // A catalogue of servos may lie beside them.
+    let is_design = |path: &PathBuf| {
+        path.extension().is_some_and(|end| end == "toml")
+            && std::fs::read_to_string(path).is_ok_and(|text| text.contains("\n[body]"))
+    };
+    let read: Vec<_> =
+        files.filter(is_design).map(|path| (path.clone(), read(&path, &[]).unwrap())).collect();
+    assert!(read.len() >= 5);
+    read
 }

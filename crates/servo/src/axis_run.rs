@@ -1,10 +1,8 @@
-//! Axes and battery on their way through a history, keeping the worst of it.
+//! An axis on its way through a history.
 
 use crate::heat::mean_square;
-use crate::{
-    AxisHistory, Battery, BatteryBudget, Collapse, Discharge, Endurance, Fed, Load, Miss, MissKind,
-    Remedies, Servo, Supply, When, Winding,
-};
+use crate::worst::{Worst, keep, miss, times_over};
+use crate::{AxisHistory, Endurance, Load, Miss, MissKind, Remedies, Servo, Supply, When, Winding};
 
 /// What feeds the servos at an instant.
 #[derive(Debug, Clone, Copy)]
@@ -15,22 +13,6 @@ pub(crate) enum Share {
     Voltage(f64),
     /// The battery has collapsed.
     Nothing,
-}
-
-/// A figure at its worst so far.
-#[derive(Debug, Clone, Copy)]
-struct Worst {
-    figure: f64,
-    limit: f64,
-    /// How bad, the more the worse.
-    rank: f64,
-    when: When,
-}
-
-fn keep(worst: &mut Option<Worst>, new: Worst) {
-    if worst.is_none_or(|old| new.rank > old.rank) {
-        *worst = Some(new);
-    }
 }
 
 /// An axis on its way.
@@ -131,27 +113,33 @@ impl<'a> AxisRun<'a> {
         torque_factor: f64,
     ) {
         let (Some(servo), Some(winding)) = (self.servo, self.winding) else { return };
-        let torque_nm = self.torques_nm[idx];
         let voltage_v = match share {
             Share::OwnVoltage => servo.at_voltage_v,
             Share::Voltage(voltage_v) => voltage_v,
             Share::Nothing => 0.0,
         };
-        let before_w = self.power_w;
+        let before_w = if idx == 0 { 0.0 } else { self.power_w };
         self.power_w = self.motor_w + servo.idle_current_a * voltage_v;
         self.peak_power_w = self.peak_power_w.max(self.power_w);
-        if idx > 0 {
-            self.energy_j += 0.5 * (before_w + self.power_w) * seconds;
+        self.energy_j += 0.5 * (before_w + self.power_w) * seconds;
+        if !matches!(share, Share::Nothing) {
+            self.fed_v = self.fed_v.max(voltage_v);
+            let supply = Supply { voltage_v, winding_ohm: winding.resistance_ohm() };
+            self.judge_line(servo, idx, when, supply, torque_factor);
+        } else if self.torques_nm[idx] != 0.0 {
+            self.judge_margin(0.0, [f64::INFINITY; 2], when, torque_factor);
         }
-        if matches!(share, Share::Nothing) {
-            if torque_nm != 0.0 {
-                self.judge_margin(0.0, [f64::INFINITY; 2], when, torque_factor);
-            }
-            return;
-        }
-        self.fed_v = self.fed_v.max(voltage_v);
-        let supply = Supply { voltage_v, winding_ohm: winding.resistance_ohm() };
-        let rate_rad_s = self.history.rate_rad_s[idx];
+    }
+
+    fn judge_line(
+        &mut self,
+        servo: &Servo,
+        idx: usize,
+        when: When,
+        supply: Supply,
+        torque_factor: f64,
+    ) {
+        let (torque_nm, rate_rad_s) = (self.torques_nm[idx], self.history.rate_rad_s[idx]);
         if let Some(margin) = servo.margin(torque_nm, rate_rad_s, supply) {
             let factors = [
                 servo.stronger(margin, torque_factor),
@@ -210,126 +198,6 @@ impl<'a> AxisRun<'a> {
     }
 }
 
-fn times_over(figure: f64, limit: f64) -> f64 {
-    if limit > 0.0 { figure / limit } else { f64::INFINITY }
-}
-
 fn factor(factor: f64) -> Option<f64> {
     (factor.is_finite() && factor > 0.0).then_some(factor)
-}
-
-fn miss(kind: MissKind, worst: Worst) -> Miss {
-    Miss {
-        kind,
-        place: None,
-        when: Some(worst.when),
-        found: worst.figure,
-        limit: worst.limit,
-        times_over: times_over(worst.figure, worst.limit),
-        remedies: Remedies::default(),
-    }
-}
-
-/// A battery on its way.
-pub(crate) struct BatteryRun<'a> {
-    battery: &'a Battery,
-    discharge: Discharge<'a>,
-    /// Of the drop it is in: seconds since the instant before, and the load.
-    loads: Vec<(f64, Load)>,
-    least_voltage_v: f64,
-    least_servo_voltage_v: f64,
-    energy_j: f64,
-    current: Option<Worst>,
-    regulator: Option<Worst>,
-    empty: Option<Worst>,
-    collapse: Option<(Collapse, When)>,
-}
-
-impl<'a> BatteryRun<'a> {
-    pub(crate) fn new(battery: &'a Battery) -> Self {
-        Self {
-            battery,
-            discharge: Discharge::new(battery, battery.charge),
-            loads: Vec::new(),
-            least_voltage_v: f64::INFINITY,
-            least_servo_voltage_v: f64::INFINITY,
-            energy_j: 0.0,
-            current: None,
-            regulator: None,
-            empty: None,
-            collapse: None,
-        }
-    }
-
-    pub(crate) fn start(&mut self) {
-        self.discharge = Discharge::new(self.battery, self.battery.charge);
-        self.loads.clear();
-    }
-
-    /// Voltage at the servos; absent where it collapses.
-    pub(crate) fn go_on(&mut self, load: Load, seconds: f64, when: When) -> Option<f64> {
-        self.loads.push((seconds, load));
-        let fed = match self.discharge.go_on(load, seconds) {
-            Ok(fed) => fed,
-            Err(collapse) => {
-                self.collapse.get_or_insert((collapse, when));
-                return None;
-            }
-        };
-        self.keep_worst(fed, when);
-        Some(fed.servo_voltage_v)
-    }
-
-    fn keep_worst(&mut self, fed: Fed, when: When) {
-        self.least_voltage_v = self.least_voltage_v.min(fed.voltage_v);
-        self.least_servo_voltage_v = self.least_servo_voltage_v.min(fed.servo_voltage_v);
-        let at = |figure: f64, limit: f64| Worst { figure, limit, rank: figure, when };
-        let limit_a = self.battery.current_limit_a.unwrap_or(f64::INFINITY);
-        keep(&mut self.current, at(fed.current_a, limit_a));
-        if let Some(regulator) = self.battery.regulator {
-            keep(&mut self.regulator, at(fed.servo_current_a, regulator.current_limit_a));
-        }
-        if self.discharge.charge() < 0.0 {
-            let held_coulomb = self.battery.charge * self.battery.capacity_coulomb;
-            keep(&mut self.empty, at(self.discharge.coulomb(), held_coulomb));
-        }
-    }
-
-    pub(crate) fn end(&mut self) {
-        self.energy_j += self.discharge.energy_j();
-    }
-
-    pub(crate) fn collapsed(&self) -> bool {
-        self.collapse.is_some()
-    }
-
-    pub(crate) fn budget(&self, drops: u32) -> BatteryBudget {
-        let known = |figure: f64| (!self.collapsed()).then_some(figure);
-        let peak = |worst: Option<Worst>| worst.map(|worst| worst.figure).and_then(known);
-        BatteryBudget {
-            peak_current_a: peak(self.current),
-            least_voltage_v: known(self.least_voltage_v),
-            least_servo_voltage_v: known(self.least_servo_voltage_v),
-            energy_j_per_drop: known(self.energy_j / f64::from(drops)),
-            drops_per_charge: self.battery.repeats_per_charge(&self.loads).and_then(known),
-            regulator_peak_current_a: peak(self.regulator),
-        }
-    }
-
-    pub(crate) fn misses(&self) -> Vec<Miss> {
-        let over = |kind: MissKind, worst: Option<Worst>| {
-            worst.filter(|worst| worst.figure > worst.limit).map(|worst| miss(kind, worst))
-        };
-        let collapse = self.collapse.map(|(Collapse { asked_w, most_w }, when)| {
-            let worst = Worst { figure: asked_w, limit: most_w, rank: 0.0, when };
-            miss(MissKind::BatteryCollapse, worst)
-        });
-        let all = [
-            collapse,
-            over(MissKind::BatteryCurrent, self.current),
-            over(MissKind::RegulatorCurrent, self.regulator),
-            over(MissKind::BatteryEmpty, self.empty),
-        ];
-        all.into_iter().flatten().collect()
-    }
 }
