@@ -57,6 +57,30 @@ fn twin_demo_designs_converge() {
     }
 }
 
+/// The invented servos of the catalogue are plausible: implied efficiency 0.3 to 0.8 and at most 150 W
+/// a kilogram at half stall and half speed (common practice of the trade, no source). They load from a
+/// design that names the catalogue.
+#[test]
+fn published_limits_hold_for_the_catalogue() {
+    let sets = ["servos=servos.toml", "joints.yaw_servo=brisk-44", "joints.pitch_servo=mini-17"];
+    let design = design("reed-16", &sets);
+    let of_catalogue: Vec<_> = design
+        .servos
+        .values()
+        .filter(|servo| !["mid-34", "mini-12"].contains(&&*servo.name))
+        .collect();
+    assert!(of_catalogue.len() >= 8);
+    for servo in of_catalogue {
+        let efficiency = servo.implied_efficiency();
+        assert!((0.3..=0.8).contains(&efficiency), "{}: {efficiency}", servo.name);
+        let watts_per_kg = servo.peak_power_w() / servo.mass_kg;
+        assert!(watts_per_kg <= 150.0, "{}: {watts_per_kg}", servo.name);
+        assert!(servo.check().is_ok());
+        assert!((0.009..=0.061).contains(&servo.mass_kg), "{}", servo.name);
+    }
+    assert!(design.glider.chain.mass_split().servos_kg > 15.0 * 0.044);
+}
+
 /// The pair is alike but for the wave; with it the body stays upright and glides, without it it
 /// loses roll or pitch, also where the pressure centre or the launch is a little different. That the
 /// wave does this is common practice; the pair was looked for.

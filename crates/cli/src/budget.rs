@@ -173,7 +173,8 @@ fn tell_misses(design: &Design, asked: &Asked, slower: Option<f64>) {
     }
     if asked.budget.misses.len() > MOST {
         let more = asked.budget.misses.len() - MOST;
-        terminal::tell_limit(&format!("{}: {more} more limits are missed", design.name));
+        let told = if more == 1 { "limit is missed" } else { "limits are missed" };
+        terminal::tell_limit(&format!("{}: {more} more {told}", design.name));
     }
     if let Some(hint) = asked.budget.worst().and_then(stronger_or_faster) {
         terminal::tell_hint(&hint);
