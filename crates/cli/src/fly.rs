@@ -6,31 +6,12 @@ use rayon::prelude::*;
 use serde_json::Value;
 use undulift_design::Design;
 use undulift_design::quantities::of_flight;
-use undulift_flight::{Bands, Doubt, End, Flight, Settings, Summary, bands, doubts, fly, summary};
+use undulift_flight::{End, Settings, Summary, bands, doubts, fly, summary};
 
 use crate::args::Fly;
-use crate::launches::{self, Launches};
+use crate::flown::{Flown, Missed};
+use crate::launches;
 use crate::{Outcome, Refused, doubts as words, joints, json, people, terminal, trace_file};
-
-/// A design that has flown.
-pub struct Flown {
-    pub design: Design,
-    pub flight: Flight,
-    pub summary: Summary,
-    pub bands: Bands,
-    pub doubts: Vec<Doubt>,
-    pub missed: Vec<Missed>,
-    pub joints_missed: Vec<joints::Missed>,
-    pub launches: Option<Launches>,
-}
-
-/// A limit that a flight missed.
-#[derive(Debug, Clone)]
-pub enum Missed {
-    NotLanded { end: End, time_s: f64 },
-    Roll { peak_deg: f64, limit_deg: f64 },
-    Pitch { peak_deg: f64, limit_deg: f64 },
-}
 
 pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
     for (flag, given) in [("--trace", args.trace.is_some()), ("--csv", args.csv.is_some())] {
@@ -118,27 +99,6 @@ fn missed_limits(design: &Design, summary: &Summary) -> Vec<Missed> {
         missed.push(Missed::Pitch { peak_deg: summary.peak_pitch_rad.to_degrees(), limit_deg });
     }
     missed
-}
-
-impl Missed {
-    pub fn in_words(&self) -> String {
-        match self {
-            Self::NotLanded { end: End::Inverted, time_s } => {
-                format!("it turned over {time_s:.2} s after release")
-            }
-            Self::NotLanded { time_s, .. } => {
-                format!("it was still in the air after {time_s:.1} s")
-            }
-            Self::Roll { peak_deg, limit_deg } => {
-                format!(
-                    "it rolled by {peak_deg:.1}°, more than the {limit_deg:.1}° of [limits] tilt_deg"
-                )
-            }
-            Self::Pitch { peak_deg, limit_deg } => format!(
-                "it pitched by {peak_deg:.1}°, more than the {limit_deg:.1}° of [limits] tilt_deg"
-            ),
-        }
-    }
 }
 
 /// One flight with all that is printed of it.

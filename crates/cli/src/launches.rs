@@ -27,11 +27,11 @@ pub struct Launches {
     /// Percentiles by the key of what is printed.
     pub spread: Vec<(&'static str, Spread)>,
     names: Vec<String>,
-    flown: Vec<Flown>,
+    flown: Vec<Launched>,
 }
 
 /// One launch.
-struct Flown {
+struct Launched {
     drawn: Vec<f64>,
     result: Result<Summary, FlightError>,
 }
@@ -85,7 +85,7 @@ pub fn fly_all(
         .into_iter()
         .flatten()
         .enumerate()
-        .map(|(launch, result)| Flown {
+        .map(|(launch, result)| Launched {
             drawn: make(design, &items, &differs, args.seed, launch).1,
             result,
         })
@@ -191,7 +191,7 @@ fn progress(launches: u64, name: &str) -> ProgressBar {
 }
 
 impl Launches {
-    fn new(design: &Design, seed: u64, items: &[Item], flown: Vec<Flown>) -> Self {
+    fn new(design: &Design, seed: u64, items: &[Item], flown: Vec<Launched>) -> Self {
         let summaries: Vec<&Summary> =
             flown.iter().filter_map(|flown| flown.result.as_ref().ok()).collect();
         let share = |fits: &dyn Fn(&Summary) -> bool| {
@@ -279,7 +279,12 @@ impl Launches {
     pub fn write(&self, path: &Path) -> anyhow::Result<()> {
         whole_file::write(path, |file| {
             let mut table = csv::Writer::from_writer(file);
-            let keys = Self::columns();
+            // A launch that could not fly has no more to tell than that.
+            let any = self.flown.iter().find_map(|flown| flown.result.as_ref().ok());
+            let keys: Vec<&str> = match any {
+                Some(summary) => quantities(summary).into_iter().map(|(key, _)| key).collect(),
+                None => vec!["end"],
+            };
             let drawn = self.names.iter().map(String::as_str);
             table.write_record(["launch"].into_iter().chain(drawn).chain(keys.iter().copied()))?;
             for (launch, flown) in self.flown.iter().enumerate() {
@@ -291,41 +296,11 @@ impl Launches {
             Ok(())
         })
     }
-
-    /// Quantities of a flight that are single values, from how it ended on.
-    fn columns() -> Vec<&'static str> {
-        let keys = quantities(&EXAMPLE).into_iter().map(|(key, _)| key);
-        keys.collect()
-    }
 }
 
 fn counted(launches: usize) -> String {
     if launches == 1 { "1 launch".into() } else { format!("{launches} launches") }
 }
-
-/// Any flight, to ask for the names of its quantities.
-const EXAMPLE: Summary = Summary {
-    end: End::TimeUp,
-    inverted: false,
-    time_s: 0.0,
-    drop_m: 0.0,
-    distance_m: 0.0,
-    glide_ratio: None,
-    last_cycle_glide_ratio: None,
-    last_cycle: None,
-    glide_angle_rad: 0.0,
-    speed_m_s: 0.0,
-    sink_m_s: 0.0,
-    side_drift_m: 0.0,
-    forward_airspeed_m_s: 0.0,
-    peak_roll_rad: 0.0,
-    peak_pitch_rad: 0.0,
-    landing_energy_j: 0.0,
-    mass_kg: 0.0,
-    planform_m2: 0.0,
-    wing_loading_pa: 0.0,
-    reduced_frequency: None,
-};
 
 /// What is printed of a flight, without the bands, which many launches leave out.
 fn quantities(summary: &Summary) -> Vec<(&'static str, Quantity)> {
@@ -351,8 +326,8 @@ fn cells(result: &Result<Summary, FlightError>, n_columns: usize) -> Vec<String>
 /// Percentiles of every quantity that is a number in some flight.
 fn spread(summaries: &[&Summary]) -> Vec<(&'static str, Spread)> {
     let rows: Vec<_> = summaries.iter().map(|summary| quantities(summary)).collect();
-    let keys = quantities(&EXAMPLE).into_iter().enumerate();
-    keys.filter_map(|(column, (key, _))| {
+    let keys = rows.first().into_iter().flatten().map(|(key, _)| *key).enumerate();
+    keys.filter_map(|(column, key)| {
         let values = rows.iter().filter_map(|row| match row[column].1 {
             Quantity::Number(value) => Some(value),
             _ => None,

@@ -7,6 +7,7 @@ mod args;
 mod budget;
 mod check;
 mod doubts;
+mod flown;
 mod fly;
 mod joints;
 mod json;

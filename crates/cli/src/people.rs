@@ -7,7 +7,7 @@ use undulift_flight::End;
 
 use crate::args::Fly;
 use crate::doubts::thousands;
-use crate::fly::Flown;
+use crate::flown::Flown;
 
 /// A last cycle flatter than this, flown forward, is called a glide.
 const GLIDE: f64 = 0.5;

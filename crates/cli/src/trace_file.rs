@@ -5,7 +5,7 @@ use std::path::Path;
 use undulift_chain::Axis;
 use undulift_flight::{TraceRow, trace};
 
-use crate::fly::Flown;
+use crate::flown::Flown;
 use crate::whole_file;
 
 /// Columns of every trace, before those of the joints.
