@@ -14,6 +14,7 @@ mod json;
 mod launches;
 mod new;
 mod people;
+mod size;
 mod terminal;
 mod trace_file;
 mod whole_file;
@@ -82,6 +83,7 @@ fn main() -> ExitCode {
         Command::Fly(fly) => fly::run(fly),
         Command::Check(check) => check::run(check),
         Command::Budget(args) => budget::run(args),
+        Command::Size(args) => size::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),
     };

@@ -117,6 +117,9 @@ fn read_document(
     let design = read_tables(&document, path, &mut files);
     let numbers = document.take_numbers();
     let spread = read_spread(&Table::top(&document), &numbers);
+    if document.is_sound() {
+        document.check_changeable();
+    }
     let mistakes = document.into_mistakes();
     match design {
         Some(design) if mistakes.is_empty() => {

@@ -8,6 +8,7 @@ use std::sync::Arc;
 use miette::NamedSource;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
+use toml_edit::DocumentMut;
 
 use crate::key_path::{KeyPath, Step};
 use crate::mistake::{MOST_COLLECTED, Mistake, Source};
@@ -83,6 +84,22 @@ impl<'t> Document<'t> {
 
     pub(crate) fn tree(&self) -> &DeTable<'t> {
         &self.tree
+    }
+
+    /// Puts down what keeps the text from being changed and written.
+    ///
+    /// Tables that other commands read may hold numbers that are none, which the tree keeps as they
+    /// are written, but which can't be written again.
+    pub(crate) fn check_changeable(&self) {
+        if self.as_written.is_some() {
+            // It was changed already.
+            return;
+        }
+        if let Err(error) = self.source.inner().parse::<DocumentMut>() {
+            let (span, why) = (error.span().unwrap_or(0..0), error.message().to_owned());
+            let what = DesignError::Syntax { why };
+            self.note_all(vec![Mistake::at(&self.source, span, String::new(), what)]);
+        }
     }
 
     /// Remembers a number that was read, or a default that stands for it.

@@ -11,6 +11,9 @@ pub(crate) enum Step {
     Item(usize),
 }
 
+/// Most keys of a path that is read from a text.
+const MOST_STEPS: usize = 16;
+
 /// Steps from the top of a file.
 #[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord, Default)]
 pub(crate) struct KeyPath(pub(crate) Vec<Step>);
@@ -47,15 +50,18 @@ impl KeyPath {
         self.0.starts_with(&outer.0)
     }
 
-    /// Reads a path as it is written, quotes allowed around a key.
+    /// Reads a path as it is written, quotes allowed around a key; no design has one of many steps.
     pub(crate) fn parse(text: &str) -> Option<Self> {
         let mut steps = Vec::new();
         let mut rest = text.trim();
         loop {
+            if steps.len() > MOST_STEPS {
+                return None;
+            }
             let (step, after) = parse_key(rest)?;
             steps.push(step);
             rest = after;
-            while let Some(inside) = rest.strip_prefix('[') {
+            while let Some(inside) = rest.strip_prefix('[').filter(|_| steps.len() <= MOST_STEPS) {
                 let (idx, after) = inside.split_once(']')?;
                 steps.push(Step::Item(idx.trim().parse().ok()?));
                 rest = after;
@@ -69,12 +75,22 @@ impl KeyPath {
 }
 
 fn parse_key(text: &str) -> Option<(Step, &str)> {
-    if let Some(quote) = text.chars().next().filter(|&first| first == '"' || first == '\'') {
-        let (key, after) = text[1..].split_once(quote)?;
-        return Some((Step::Key(key.to_owned()), after));
+    if let Some(quote) = text.bytes().next().filter(|first| b"\"'".contains(first)) {
+        let end = 1 + quoted_len(&text.as_bytes()[1..], quote)?;
+        let key: toml_edit::Key = text[..=end].parse().ok()?;
+        return Some((Step::Key(key.get().to_owned()), &text[end + 1..]));
     }
     let end = text.find(|c: char| !is_bare(c)).unwrap_or(text.len());
     (end > 0).then(|| (Step::Key(text[..end].to_owned()), &text[end..]))
+}
+
+/// Bytes up to the quote that ends a text; in double quotes a backslash goes with what follows it.
+fn quoted_len(text: &[u8], quote: u8) -> Option<usize> {
+    let mut at = 0;
+    while *text.get(at)? != quote {
+        at += if quote == b'"' && text[at] == b'\\' { 2 } else { 1 };
+    }
+    Some(at)
 }
 
 fn is_bare(c: char) -> bool {
@@ -91,7 +107,8 @@ impl fmt::Display for KeyPath {
                     if !key.is_empty() && key.chars().all(is_bare) {
                         f.write_str(key)?;
                     } else {
-                        write!(f, "{key:?}")?;
+                        // Quoted and escaped as in a file.
+                        write!(f, "{}", toml_edit::Key::new(key.as_str()))?;
                     }
                 }
             }
@@ -106,10 +123,15 @@ mod tests {
 
     #[test]
     fn twin_paths_read_back_as_they_are_written() {
+        for key in ["", "a \"b\"", "it's", "\\", "\n\0", "é", "a.b[3]", "'\""] {
+            let path = KeyPath::of(["section", key]).item(2);
+            assert_eq!(KeyPath::parse(&path.to_string()), Some(path.clone()), "{path}");
+        }
         for text in ["body.length_m[3]", "servo.mid-34.mass_kg", "spread.\"launch.speed_m_s\".sd"] {
             assert_eq!(KeyPath::parse(text).unwrap().to_string(), text);
         }
-        for text in ["", "a..b", "a[", "a[x]", "a b", ".a", "a.", "\"a"] {
+        let deep = "a.".repeat(100_000) + "a";
+        for text in [deep.as_str(), "", "a..b", "a[", "a[x]", "a b", ".a", "a.", "\"a"] {
             assert_eq!(KeyPath::parse(text), None, "{text}");
         }
     }

@@ -1,12 +1,13 @@
 //! Numbers of a design by their keys: read and set in memory.
 //!
-//! A knob's value is in the unit of the file. Numbers of launch, gait and air, scales and pressure
+//! A knob's value is in the unit of the file. Numbers of launch and gait, wind, scales and pressure
 //! centres are set in the glider itself, in well under a microsecond; all others by way of the
 //! text, which is read again from memory. Both give what reading the file with the value in it
-//! gives.
+//! gives. A design that was changed in other ways since it was read loses that when the text is
+//! read again.
 
 use crate::fast::Way;
-use crate::key_path::{KeyPath, Step};
+use crate::key_path::KeyPath;
 use crate::no_number::no_number;
 use crate::numbers::{Allowed, Number};
 use crate::{Design, DesignError, DesignErrors};
@@ -98,14 +99,6 @@ impl Knob {
     /// Whether a value can be put into a design without text.
     fn can_put(&self, design: &Design, value: f64) -> bool {
         self.is_fast() && self.allows(value) && design.origin.numbers().contains_key(&self.path)
-    }
-
-    /// The table at the top of the file that it belongs to.
-    pub fn table(&self) -> &str {
-        match self.path.0.first() {
-            Some(Step::Key(table)) => table,
-            _ => "",
-        }
     }
 }
 

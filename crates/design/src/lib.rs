@@ -3,7 +3,8 @@
 //! A design is a TOML file; it may name a servo catalogue (TOML), section tables and a gait table
 //! (CSV). [`read`] finds all mistakes of all these files at once and tells each with its place, what
 //! was found, what may stand there and what to do. Values from outside ([`Override`]) are
-//! written into the text before it is read.
+//! written into the text before it is read. A number of a design that was read is a [`Knob`], and
+//! [`Design::written`] gives a design back as text; reading and writing lose no bit.
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
 //! and radians. Tables that other commands read (`search`, `wiring`) are left alone.

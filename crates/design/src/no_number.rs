@@ -4,12 +4,13 @@ use toml::de::{DeTable, DeValue};
 
 use crate::key_path::{KeyPath, Step};
 use crate::nearest::nearest;
+use crate::node::shortened;
 use crate::numbers::Numbers;
 use crate::{Design, DesignError, Mistake, Override};
 
 /// Tells a key that is no number of a design.
 pub(crate) fn no_number(design: &Design, key: &str) -> DesignError {
-    let told = |why: String, nearest| DesignError::NoNumber { key: key.to_owned(), why, nearest };
+    let told = |why: String, nearest| DesignError::NoNumber { key: shortened(key), why, nearest };
     let Some(path) = KeyPath::parse(key) else {
         return told("it isn't written as a key is".into(), None);
     };

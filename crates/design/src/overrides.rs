@@ -5,6 +5,7 @@ use toml_edit::{DocumentMut, InlineTable, Item, Table, TableLike, Value};
 use crate::DesignError;
 use crate::key_path::{KeyPath, Step};
 use crate::nearest::nearest;
+use crate::node::shortened;
 
 /// Lists that are three zeros where they are left out, by table and key.
 const ZERO_TRIPLES: [(&str, &str); 2] = [("air", "wind_m_s"), ("launch", "spin_deg_s")];
@@ -28,10 +29,10 @@ impl Override {
     ///
     /// [`DesignError::Setting`] where it is neither.
     pub fn parse(text: &str) -> Result<Self, DesignError> {
-        let wrong = |why: String| DesignError::Setting { text: text.to_owned(), why };
+        let wrong = |why: String| DesignError::Setting { text: shortened(text), why };
         let (key, value) = text.split_once('=').ok_or_else(|| wrong("it has no `=`".into()))?;
-        let path =
-            KeyPath::parse(key).ok_or_else(|| wrong(format!("`{}` isn't a key", key.trim())))?;
+        let path = KeyPath::parse(key)
+            .ok_or_else(|| wrong(format!("`{}` isn't a key", shortened(key.trim()))))?;
         let value = parse_value(value.trim()).map_err(wrong)?;
         Ok(Self { text: text.to_owned(), by_flag: true, path, value })
     }
@@ -43,9 +44,10 @@ impl Override {
     /// [`DesignError::Setting`] where the key is none.
     pub fn number(key: &str, value: f64) -> Result<Self, DesignError> {
         let text = format!("{key} = {value:?}");
-        let why = format!("`{}` isn't a key", key.trim());
+        let why = format!("`{}` isn't a key", shortened(key.trim()));
         let path = KeyPath::parse(key).ok_or(DesignError::Setting { text, why })?;
-        Ok(Self::number_at(&path, value, false))
+        // Keys that take any number take whole ones as well.
+        Ok(Self::number_at(&path, value, true))
     }
 
     /// - `whole`: whether it is written without a point, where it can be
@@ -78,6 +80,9 @@ impl Override {
     }
 }
 
+/// −0, which whole numbers don't have.
+const SIGNED_ZERO: u64 = 1 << 63;
+
 /// A number as TOML has it, in the fewest digits that read back as the same.
 ///
 /// - `whole`: whether it is written without a point, where it can be
@@ -85,7 +90,8 @@ pub(crate) fn number_text(value: f64, whole: bool) -> String {
     if value.is_nan() {
         // Rust writes it with capitals, and with the sign that it may have.
         "nan".to_owned()
-    } else if whole && value.fract() == 0.0 && value.abs() < 1e15 {
+    } else if whole && value.fract() == 0.0 && value.abs() < 1e15 && value.to_bits() != SIGNED_ZERO
+    {
         (value as i64).to_string()
     } else {
         format!("{value:?}")

@@ -39,7 +39,7 @@ fn frozen_first_mistakes_in_keys_and_numbers() {
         ("unknown key", line("speed_m_s = 3.0\nthrown_by = \"me\"")),
         ("unknown table", design(&spoilt(&[], "[motor]\nkv = 1400\n"))),
         ("misspelt key", line("lateral_waves = 1.0\nsharpnes = 0.5")),
-        ("misspelt table", design(&SOUND.replace("[launch]", "[lauch]"))),
+        ("misspelt table", design(&SOUND.replace("[launch]", "[launhc]"))),
         ("wrong type", line("frequency_hz = \"1.3 Hz\"")),
         ("wrong type of a table", line("section = { name = \"plate\" }")),
         ("comma for a point", line("speed_m_s = 3,5")),

@@ -2,6 +2,7 @@
 
 #![allow(dead_code, reason = "each test file uses a part")]
 
+pub mod garble;
 pub mod random;
 
 use std::path::{Path, PathBuf};
