@@ -1,10 +1,9 @@
 //! The built-in `domed` section: flattened, with a hollow belly.
 //!
-//! Rows from −10° to 60° were measured: Holden, Socha, Cardwell, Vlachos, *Aerodynamics of the
-//! flying snake Chrysopelea paradisi*, J. Exp. Biol. 217:382–394, 2014, rounded to 0.01. The rest
-//! is an engineering completion of ours, without a source but its ends: broadside 2.05 after
-//! Hoerner's plates (*Fluid-Dynamic Drag*, 1965), and 1.2 at −90° for the convex side of a half
-//! shell (*Aeronautical Engineer's Data Book*, fig. 5.13).
+//! Rows from −10° to 60° were measured: Holden, Socha, Cardwell, Vlachos, J. Exp. Biol. 217:382–394,
+//! 2014, rounded to 0.01. The rest is an engineering completion of ours, without a source but its
+//! ends: broadside 2.05 after Hoerner's plates (*Fluid-Dynamic Drag*, 1965), and 1.2 at −90° for the
+//! convex side of a half shell (*Aeronautical Engineer's Data Book*, fig. 5.13).
 
 /// Reynolds numbers of the measurements.
 pub(crate) const REYNOLDS: [f64; 4] = [5000.0, 9000.0, 13_000.0, 15_000.0];

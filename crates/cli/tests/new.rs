@@ -93,7 +93,7 @@ fn completions_for_every_shell() {
 #[test]
 fn examples_in_help_work() {
     let folder = folder_with_designs();
-    for command in ["fly", "check", "budget", "new", "completions"] {
+    for command in ["fly", "check", "budget", "size", "new", "completions"] {
         let help = answer(&undulift(&[command, "--help"]));
         let (_, examples) = help.split_once("Examples:").expect("examples");
         for line in examples.lines().map(str::trim).filter(|line| !line.is_empty()) {
@@ -104,7 +104,9 @@ fn examples_in_help_work() {
                 let output = run_in(folder.path(), &[&words[1..], &again].concat());
                 let status = output.status.code();
                 // Some show what it looks like when a limit is missed.
-                let missed = ["frequency_hz=2.5", "held-out"].iter().any(|m| example.contains(m));
+                let missed = ["frequency_hz=2.5", "held-out", "size designs/hasty-16"]
+                    .iter()
+                    .any(|m| example.contains(m));
                 assert_eq!(status, Some(i32::from(missed)), "{example}: {}", complaint(&output));
             }
         }

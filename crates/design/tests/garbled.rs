@@ -5,7 +5,6 @@
 
 mod common;
 
-use std::cell::RefCell;
 use std::panic::{AssertUnwindSafe, catch_unwind, resume_unwind};
 use std::path::{Path, PathBuf};
 use std::time::Instant;
@@ -17,8 +16,11 @@ use miette::{GraphicalReportHandler, NarratableReportHandler};
 use proptest::prelude::*;
 use undulift_design::{Design, DesignErrors, Knob, Override, copy_for, read, read_text, starter};
 
-/// Files of a design, under the names that it may call them by.
-type Files = Vec<(&'static str, Vec<u8>)>;
+/// A folder with a sound design, and the names of all its files, the design's first.
+struct Bed {
+    folder: Folder,
+    names: Vec<&'static str>,
+}
 
 /// Settings that go with a part of the cases.
 const SETS: [&str; 14] = [
@@ -39,40 +41,36 @@ const SETS: [&str; 14] = [
 ];
 
 thread_local! {
-    static FOLDER: RefCell<Folder> = RefCell::new(Folder::new());
-    static SOUND_FILES: Vec<Files> = sound_files();
+    static BEDS: Vec<Bed> = beds();
 }
 
-/// Sound designs to begin with, each with its files.
-fn sound_files() -> Vec<Files> {
-    let rib = include_bytes!("my-rib.csv");
-    let full = include_bytes!("full.toml").to_vec();
-    let mut sound = vec![
-        vec![("d.toml", full), ("my-rib.csv", rib.to_vec())],
-        vec![("d.toml", starter().as_bytes().to_vec())],
-    ];
-    let texts = demos().into_iter().map(|(_, design)| vec![("d.toml", design.text.into_bytes())]);
-    sound.extend(texts);
+/// Sound designs to begin with.
+fn beds() -> Vec<Bed> {
+    let full = Folder::with(&[
+        ("d.toml", include_str!("full.toml")),
+        ("my-rib.csv", include_str!("my-rib.csv")),
+    ]);
+    let alone = |text: &str| Bed { folder: common::design(text), names: vec!["d.toml"] };
+    let mut beds =
+        vec![Bed { folder: full, names: vec!["d.toml", "my-rib.csv"] }, alone(starter())];
+    beds.extend(demos().iter().map(|(_, design)| alone(&design.text)));
     for seed in 0..60 {
         let folder = random_folder(seed);
-        let file = |name| Some((name, std::fs::read(folder.path().join(name)).ok()?));
-        sound.push(
-            ["d.toml", "rib.csv", "g.csv", "shelf.toml"].into_iter().filter_map(file).collect(),
-        );
+        let has = |name: &&str| folder.path().join(name).exists();
+        let names = ["d.toml", "rib.csv", "g.csv", "shelf.toml"].into_iter().filter(has).collect();
+        beds.push(Bed { folder, names });
     }
-    sound
+    beds
 }
 
-/// A design with one of its files spoilt.
-fn spoilt_files(dice: &mut Dice, sound: &[Files]) -> Files {
-    let mut files = sound[dice.below(sound.len())].clone();
-    // The design itself in half of the cases, any of its files in the others.
-    let which = if dice.one_in(2) { 0 } else { dice.below(files.len()) };
-    let other = &sound[dice.below(sound.len())];
-    let mut others: Vec<Vec<u8>> = other.iter().map(|(_, bytes)| bytes.clone()).collect();
-    others.push(SERVO.as_bytes().to_vec());
-    files[which].1 = spoil(dice, &files[which].1, &others);
-    files
+impl Bed {
+    fn path(&self) -> PathBuf {
+        self.folder.path().join("d.toml")
+    }
+
+    fn bytes(&self, name: &str) -> Vec<u8> {
+        std::fs::read(self.folder.path().join(name)).unwrap()
+    }
 }
 
 fn sets(dice: &mut Dice) -> Vec<Override> {
@@ -91,10 +89,15 @@ fn sets(dice: &mut Dice) -> Vec<Override> {
 }
 
 /// Everything that a design can be asked for, whether it is sound or not.
-fn check(path: &Path, dice: &mut Dice) {
+///
+/// - `text`: stands for what the file holds
+fn check(path: &Path, text: Option<&str>, dice: &mut Dice) {
     let sets = sets(dice);
     let begun = Instant::now();
-    let design = read(path, &sets);
+    let design = match text {
+        Some(text) => read_text(path, text, &sets),
+        None => read(path, &sets),
+    };
     // In a quick run on a busy machine a second may pass by itself.
     let most_s = if std::env::var_os("UNDULIFT_FUZZ_CASES").is_some() { 1.0 } else { 20.0 };
     assert!(begun.elapsed().as_secs_f64() < most_s, "{:?}", begun.elapsed());
@@ -148,31 +151,45 @@ fn check_design(path: &Path, design: &Design, dice: &mut Dice) {
     }
 }
 
-fn write(folder: &Path, files: &Files) {
-    for name in ["d.toml", "my-rib.csv", "rib.csv", "g.csv", "shelf.toml"] {
-        match files.iter().find(|(own, _)| *own == name) {
-            Some((_, bytes)) => std::fs::write(folder.join(name), bytes).unwrap(),
-            None => drop(std::fs::remove_file(folder.join(name))),
-        }
+/// Tries one case: a design with one of its files spoilt.
+fn try_case(seed: u64, beds: &[Bed]) {
+    let mut dice = Dice::new(seed);
+    let bed = &beds[dice.below(beds.len())];
+    // The design itself in half of the cases, any of its files in the others.
+    let name = bed.names[if dice.one_in(2) { 0 } else { dice.below(bed.names.len()) }];
+    let other = &beds[dice.below(beds.len())];
+    let mut others: Vec<Vec<u8>> = other.names.iter().map(|name| other.bytes(name)).collect();
+    others.push(SERVO.as_bytes().to_vec());
+    let sound = bed.bytes(name);
+    let spoilt = spoil(&mut dice, &sound, &others);
+    // Writing files takes longer than reading them, so most designs come from memory.
+    let in_memory = name == "d.toml" && !dice.one_in(10);
+    let text = std::str::from_utf8(&spoilt).ok().filter(|_| in_memory);
+    let file = bed.folder.path().join(name);
+    if text.is_none() {
+        std::fs::write(&file, &spoilt).unwrap();
+    }
+    let tried = catch_unwind(AssertUnwindSafe(|| check(&bed.path(), text, &mut dice)));
+    if let Err(panic) = tried {
+        std::fs::write(&file, &spoilt).unwrap();
+        keep(bed, seed);
+        std::fs::write(&file, &sound).unwrap();
+        resume_unwind(panic);
+    }
+    if text.is_none() {
+        std::fs::write(&file, &sound).unwrap();
     }
 }
 
-/// Tries one case; files that break something are kept.
-fn try_case(seed: u64) {
-    let mut dice = Dice::new(seed);
-    let files = SOUND_FILES.with(|sound| spoilt_files(&mut dice, sound));
-    FOLDER.with_borrow(|folder| {
-        write(folder.path(), &files);
-        let path = folder.path().join("d.toml");
-        let tried = catch_unwind(AssertUnwindSafe(|| check(&path, &mut dice)));
-        if let Err(panic) = tried {
-            let kept = PathBuf::from(env!("CARGO_TARGET_TMPDIR")).join(format!("garbled-{seed}"));
-            std::fs::create_dir_all(&kept).unwrap();
-            write(&kept, &files);
-            eprintln!("the files are in {}", kept.display());
-            resume_unwind(panic);
-        }
-    });
+/// Keeps the files that broke something.
+fn keep(bed: &Bed, seed: u64) {
+    let kept = PathBuf::from(env!("CARGO_TARGET_TMPDIR")).join(format!("garbled-{seed}"));
+    std::fs::create_dir_all(&kept).unwrap();
+    for name in &bed.names {
+        let to = if *name == "d.toml" { "design" } else { name };
+        std::fs::copy(bed.folder.path().join(name), kept.join(to)).unwrap();
+    }
+    eprintln!("the files are in {}", kept.display());
 }
 
 proptest! {
@@ -180,7 +197,7 @@ proptest! {
 
     #[test]
     fn twin_spoilt_files_are_refused_or_read_and_nothing_else(seed: u64) {
-        try_case(seed);
+        BEDS.with(|beds| try_case(seed, beds));
     }
 }
 
@@ -189,17 +206,15 @@ proptest! {
 
     #[test]
     fn twin_any_text_is_refused_or_read(text in "\\PC*", key in "[a-z.\\[\\]0-9\"_-]{0,20}", value in "\\PC{0,20}") {
-        FOLDER.with_borrow(|folder| {
-            let full = include_bytes!("full.toml").to_vec();
-            let text = text.into_bytes();
-            let set = Override::parse(&format!("{key}={value}")).ok();
-            for files in [vec![("d.toml", text.clone())], vec![("d.toml", full), ("my-rib.csv", text)]] {
-                write(folder.path(), &files);
-                if let Err(errors) = read(&folder.path().join("d.toml"), set.as_slice()) {
-                    check_errors(&errors, &mut Dice::new(0));
-                }
+        let folder = Folder::new();
+        let path = folder.path().join("d.toml");
+        let set = Override::parse(&format!("{key}={value}")).ok();
+        std::fs::write(folder.path().join("my-rib.csv"), &text).unwrap();
+        for design in [text.as_str(), include_str!("full.toml")] {
+            if let Err(errors) = read_text(&path, design, set.as_slice()) {
+                check_errors(&errors, &mut Dice::new(0));
             }
-        });
+        }
     }
 }
 
@@ -212,7 +227,7 @@ fn frozen_what_broke_once_stays_mended() {
         let path = entry.unwrap().path().join("design");
         assert!(path.exists(), "{}", path.display());
         for seed in 0..100 {
-            check(&path, &mut Dice::new(seed));
+            check(&path, None, &mut Dice::new(seed));
         }
         seen += 1;
     }
