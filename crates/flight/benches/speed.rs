@@ -44,7 +44,7 @@ fn part_gait(bencher: Bencher, n: usize) {
 #[divan::bench(args = SIZES, sample_size = 500)]
 fn part_gait_and_mechanics(bencher: Bencher, n: usize) {
     let (mut equations, at, _) = in_flight(n);
-    bencher.bench_local(|| equations.shape(divan::black_box(at)));
+    bencher.bench_local(|| equations.shape(divan::black_box(at), &[]));
 }
 
 /// From a glider to where it landed.

@@ -44,7 +44,8 @@ pub fn bench_loads(
             let launch = &glider.launch;
             let attitude = Attitude::from_angles(launch.roll_rad, launch.pitch_rad, launch.yaw_rad);
             let at = Instant::at(0.0);
-            let root_to_world = attitude.body_to_world * equations.body_in_root(at).transpose();
+            let root_to_world =
+                attitude.body_to_world * equations.body_in_root(at, &[]).transpose();
             let angles_rad = equations.motion(at).angles_rad[..n_axes].to_vec();
             (angles_rad, root_to_world.tr_mul(&weight_m_s2))
         }
