@@ -15,6 +15,9 @@ use crate::{Drives, End, Equations, Flight, FlightError, Glider, Settings, State
 const STILL_STEP_S: f64 = 0.02;
 const STEPS_PER_CYCLE: f64 = 20.0;
 
+/// Where steps are short, looks are taken this many times as often as longest steps would end.
+const LOOKS_PER_STEP: f64 = 4.0;
+
 /// A flight in the making.
 pub(crate) struct Flying {
     pub(crate) equations: RefCell<Equations>,
@@ -26,8 +29,8 @@ pub(crate) struct Flying {
     pub(crate) looks: Vec<Look>,
     pub(crate) inverted_at_s: Option<f64>,
     steps: u32,
-    /// Longest step of the last piece, s.
-    last_step_s: f64,
+    /// That the last piece with loose axes began with, s.
+    first_step_s: f64,
 }
 
 impl Flying {
@@ -50,7 +53,7 @@ impl Flying {
             looks: Vec::new(),
             inverted_at_s: None,
             steps: 0,
-            last_step_s: 0.0,
+            first_step_s: 0.0,
         }
     }
 
@@ -110,13 +113,14 @@ impl Flying {
         };
         let units = *self.equations.borrow().units();
         let mut steps = self.steps_of(from_s, until_s);
+        let any_loose = turning.is_some();
         let inside_s = watch.inside_s;
         let (course, stats) = match (turning, &self.driving) {
             (Some(turning), Some(Driving { hybrid, .. })) => {
                 let system = Loose { watch, hybrid, turning: &turning };
                 // Pieces are short, and one is like the next.
-                steps.first_s = self.last_step_s;
-                let (model, stats) = integrate(system, steps, units.long(start))?;
+                steps.first_s = self.first_step_s;
+                let (model, stats) = integrate(system, steps, units.long(start, &turning.axes))?;
                 (Course::Loose(model, turning), stats)
             }
             _ => {
@@ -126,9 +130,11 @@ impl Flying {
         };
         self.steps += stats.accepted_steps + stats.rejected_steps;
         self.trajectory.push(from_s, inside_s, course);
-        let ends = ends.into_inner();
-        let lengths_s = ends.windows(2).map(|pair| pair[1].time_s - pair[0].time_s);
-        self.last_step_s = lengths_s.fold(0.0, f64::max);
+        let mut ends = ends.into_inner();
+        if any_loose {
+            self.first_step_s = ends.first().map_or(0.0, |look| look.time_s - from_s);
+            thin_out(&mut ends, from_s, steps.longest_s / LOOKS_PER_STEP);
+        }
         Ok(ends)
     }
 
@@ -163,4 +169,16 @@ impl Flying {
             looks: self.looks,
         }
     }
+}
+
+/// Keeps the last, and of those before as many as lie this far apart.
+fn thin_out(ends: &mut Vec<Look>, from_s: f64, apart_s: f64) {
+    let Some(last) = ends.pop() else { return };
+    let mut kept_s = from_s;
+    ends.retain(|look| {
+        let far = look.time_s - kept_s >= apart_s && last.time_s - look.time_s >= apart_s;
+        kept_s = if far { look.time_s } else { kept_s };
+        far
+    });
+    ends.push(last);
 }

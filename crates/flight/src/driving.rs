@@ -98,7 +98,9 @@ impl Driving {
         if self.has_frames() && at.time_s >= self.frame as f64 * self.frame_s {
             self.start_frame(equations.motion(at), state);
         }
-        let axes = state.loose.iter().map(|axis| self.turned(axis.axis_idx)).collect();
+        let free_rad_s = equations.units().rate_rad_s();
+        let turned = |axis: &LooseAxis| self.turned(axis.axis_idx, free_rad_s);
+        let axes = state.loose.iter().map(turned).collect();
         Some(Turning { axes, told_rad: self.told_rad.clone() })
     }
 
@@ -143,19 +145,29 @@ impl Driving {
         load
     }
 
-    fn turned(&self, axis_idx: usize) -> Turned {
+    /// - `free_rad_s`: unit of the rate of an axis that nothing holds
+    fn turned(&self, axis_idx: usize, free_rad_s: f64) -> Turned {
+        let mut unit_rad_s = free_rad_s;
         let by = match self.modes[axis_idx] {
             Mode::Driven { servo_idx } => {
-                let own_v = self.servos[servo_idx].at_voltage_v;
+                let servo = &self.servos[servo_idx];
+                let own_v = servo.at_voltage_v;
+                // A loop takes away an error of rate in full_at/ω₀, so it moves the angle no further
+                // than this many times less.
+                let loop_rad_s = servo.no_load_speed_rad_s / servo.position_loop.full_at_rad;
+                unit_rad_s = free_rad_s.max(loop_rad_s);
                 let supply = Supply {
                     voltage_v: self.voltage_v.unwrap_or(own_v),
                     winding_ohm: self.windings_ohm[servo_idx],
                 };
-                By::Servo { servo_idx, supply }
+                By::Servo {
+                    fed: servo.fed_loop(supply),
+                    rotor_kg_m2: servo.rotor_inertia_at_output_kg_m2,
+                }
             }
             Mode::Limp => By::Nothing,
             Mode::Locked | Mode::Commanded => By::Lock,
         };
-        Turned { axis_idx, by }
+        Turned { axis_idx, by, unit_rad_s }
     }
 }

@@ -129,7 +129,10 @@ impl Equations {
 
     #[inline]
     fn place_segments(&mut self, at: Instant, loose: &[LooseAxis]) {
-        self.commands.rates(at, &mut self.room.motion);
+        // Where every axis is loose nobody asks what it was told.
+        if loose.is_empty() || loose.len() < self.commands.axes().len() {
+            self.commands.rates(at, &mut self.room.motion);
+        }
         let Room { motion, joints, frames, .. } = &mut self.room;
         let (angles_rad, rates_rad_s) = joints.of(motion, loose);
         self.mechanics.frames(angles_rad, rates_rad_s, frames);
@@ -152,6 +155,22 @@ impl Equations {
     /// Frames as the last call of [`Equations::shape`] left them.
     pub(crate) fn frames(&self) -> &Frames {
         &self.room.frames
+    }
+
+    /// Frames of the last instant that a moving chain was asked for at, and rates of all its axes,
+    /// some of which don't follow their commands.
+    pub(crate) fn loose_frames(&self) -> (&Frames, &[f64]) {
+        (&self.room.frames, &self.room.joints.rates_rad_s[..self.commands.axes().len()])
+    }
+
+    /// Frames of an instant, as if all joints stood still.
+    pub(crate) fn frames_at_rest(&mut self, at: Instant, loose: &[LooseAxis]) -> &Frames {
+        self.commands.rates(at, &mut self.room.motion);
+        let Room { motion, joints, frames, .. } = &mut self.room;
+        let (angles_rad, rates_rad_s) = joints.of(motion, loose);
+        let still = vec![0.0; rates_rad_s.len()];
+        self.mechanics.frames(angles_rad, &still, frames);
+        frames
     }
 
     /// The shape of an instant, turning as a state's momentum makes it.
@@ -295,6 +314,9 @@ impl Equations {
     /// Body axes to root axes at an instant; leaves the frames of that instant behind.
     pub(crate) fn body_in_root(&mut self, at: Instant, loose: &[LooseAxis]) -> Matrix3<f64> {
         self.place_segments(at, loose);
+        if !loose.is_empty() {
+            self.commands.rates(at, &mut self.room.motion);
+        }
         let Room { motion, frames, body, .. } = &mut self.room;
         self.body.in_root(&self.commands, motion, frames, body)
     }

@@ -5,7 +5,7 @@ use undulift_servo::{Battery, Load};
 use crate::crossing::first_at_or_below_zero;
 
 /// How closely a voltage is found, V.
-const VOLTAGE_V: f64 = 1e-9;
+const VOLTAGE_V: f64 = 1e-6;
 
 /// A battery on its way through a flight.
 #[derive(Debug, Clone)]

@@ -7,7 +7,7 @@ use nalgebra::{DVector, Vector3};
 use undulift_chain::Chain;
 use undulift_dynamics::{Articulated, Drive, Outside};
 use undulift_gait::{Instant, Motion};
-use undulift_servo::{Servo, Supply};
+use undulift_servo::{FedLoop, Servo};
 
 use crate::equations::Moving;
 use crate::state::{LooseAxis, Scaled, Units};
@@ -33,12 +33,14 @@ pub(crate) struct Turning {
 pub(crate) struct Turned {
     pub(crate) axis_idx: usize,
     pub(crate) by: By,
+    /// That its rate is scaled by, rad/s.
+    pub(crate) unit_rad_s: f64,
 }
 
 /// What turns it.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub(crate) enum By {
-    Servo { servo_idx: usize, supply: Supply },
+    Servo { fed: FedLoop, rotor_kg_m2: f64 },
     Nothing,
     Lock,
 }
@@ -89,10 +91,10 @@ impl Hybrid {
         let body = equations.body_rates(&state, &moving, loads);
         rates.rows_mut(0, BODY).copy_from(&body);
         let n = turning.axes.len();
-        for (k, axis) in state.loose.iter().enumerate() {
+        for (k, (axis, turned)) in state.loose.iter().zip(&turning.axes).enumerate() {
             let acceleration_rad_s2 = self.articulated.accelerations_rad_s2()[axis.axis_idx];
             rates[BODY + k] = axis.rate_rad_s;
-            rates[BODY + n + k] = acceleration_rad_s2 / units.rate_rad_s();
+            rates[BODY + n + k] = acceleration_rad_s2 / turned.unit_rad_s;
         }
         self.state = state;
     }
@@ -123,7 +125,11 @@ impl Hybrid {
         state: &State,
     ) -> Wrench {
         let loads = equations.air_on_segments(moving, state, &mut self.outside);
-        if turning.axes.len() < self.drives.len() {
+        if turning.axes.len() == self.drives.len() {
+            if turning.told_rad.is_none() {
+                equations.motion(at);
+            }
+        } else {
             let follow = equations.full_motion(at).accelerations_rad_s2.iter();
             for (drive, &acceleration_rad_s2) in self.drives.iter_mut().zip(follow) {
                 *drive = Drive::Motion(acceleration_rad_s2);
@@ -131,22 +137,21 @@ impl Hybrid {
         }
         for (turned, axis) in turning.axes.iter().zip(&state.loose) {
             self.drives[turned.axis_idx] = match turned.by {
-                By::Servo { servo_idx, supply } => {
-                    let servo = &self.servos[servo_idx];
+                By::Servo { fed, rotor_kg_m2 } => {
                     let error_rad = turning.error_rad(equations.last_motion(), axis);
                     Drive::Torque {
-                        torque_nm: servo.loop_torque_nm(error_rad, axis.rate_rad_s, supply),
-                        rotor_kg_m2: servo.rotor_inertia_at_output_kg_m2,
+                        torque_nm: fed.torque_nm(error_rad, axis.rate_rad_s),
+                        rotor_kg_m2,
                     }
                 }
                 By::Nothing => Drive::Torque { torque_nm: 0.0, rotor_kg_m2: 0.0 },
                 By::Lock => Drive::Motion(0.0),
             };
         }
-        let (angles_rad, rates_rad_s) = equations.joints_as_last(&state.loose);
+        let (frames, rates_rad_s) = equations.loose_frames();
         // Weight pulls all segments alike, so no joint feels it.
         self.articulated.solve(
-            angles_rad,
+            frames,
             rates_rad_s,
             &self.drives,
             moving.angular_velocity_rad_s.into(),
@@ -183,9 +188,9 @@ impl Hybrid {
         self.outside.fill(Outside::default());
         // Velocities change in an instant as accelerations would them in a second, from rest.
         let still = vec![0.0; self.drives.len()];
-        let angles_rad = equations.joints(at, &state.loose).0;
+        let frames = equations.frames_at_rest(at, &state.loose);
         let (zero, outside) = (Vector3::zeros(), &self.outside);
-        self.articulated.solve(angles_rad, &still, &self.drives, zero, zero, outside);
+        self.articulated.solve(frames, &still, &self.drives, zero, zero, outside);
         for axis in &mut state.loose {
             axis.rate_rad_s += self.articulated.accelerations_rad_s2()[axis.axis_idx];
         }
@@ -193,14 +198,15 @@ impl Hybrid {
 }
 
 impl Units {
-    /// √(g/L), rad/s.
-    fn rate_rad_s(&self) -> f64 {
+    /// √(g/L), rad/s: of an axis that nothing holds.
+    pub(crate) fn rate_rad_s(&self) -> f64 {
         self.speed_m_s / self.length_m
     }
 
-    pub(crate) fn long(&self, state: &State) -> Long {
+    pub(crate) fn long(&self, state: &State, axes: &[Turned]) -> Long {
         let angles = state.loose.iter().map(|axis| axis.angle_rad);
-        let rates = state.loose.iter().map(|axis| axis.rate_rad_s / self.rate_rad_s());
+        let pairs = state.loose.iter().zip(axes);
+        let rates = pairs.map(|(axis, turned)| axis.rate_rad_s / turned.unit_rad_s);
         let body = self.scaled(state);
         let body = body.iter().copied();
         Long::from_iterator(BODY + 2 * state.loose.len(), body.chain(angles).chain(rates))
@@ -219,7 +225,7 @@ impl Units {
         loose.extend(axes.iter().enumerate().map(|(k, turned)| LooseAxis {
             axis_idx: turned.axis_idx,
             angle_rad: long[BODY + k],
-            rate_rad_s: long[BODY + axes.len() + k] * self.rate_rad_s(),
+            rate_rad_s: long[BODY + axes.len() + k] * turned.unit_rad_s,
         }));
         state.loose = loose;
     }
