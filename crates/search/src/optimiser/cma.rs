@@ -95,6 +95,12 @@ impl Cma {
         &self.mean + self.step * step
     }
 
+    /// A step, as far as the faces of the box let it go.
+    fn stopped(&self, step: &DVector<f64>) -> DVector<f64> {
+        // Less what is beyond, and not anew from the place, which would be rounded inside, too.
+        step - self.place(step).map(|at| at - at.clamp(0.0, 1.0)) / self.step
+    }
+
     /// Learns from a whole generation.
     ///
     /// - `steps`: as drawn from `axes`, best first
@@ -105,14 +111,15 @@ impl Cma {
     pub(crate) fn learn(&mut self, axes: &Axes, steps: &[&DVector<f64>]) {
         let strategy = Strategy::new(self.mean.len(), self.population);
         let parents = steps.iter().zip(&strategy.weights).take(strategy.parents);
-        let pull = parents.fold(DVector::zeros(self.mean.len()), |sum, (step, w)| sum + *w * *step);
+        let none = DVector::zeros(self.mean.len());
+        let pull = parents.fold(none, |pull, (step, weight)| pull + *weight * self.stopped(step));
         self.mean += self.step * &pull;
         self.age += 1;
         let on_course = self.lengthen_paths(axes, &strategy, &pull);
         self.adapt_covariance(axes, &strategy, steps, on_course);
         let excess = self.step_path.norm() / strategy.normal_length - 1.0;
         self.step *= (strategy.step_path_rate / strategy.step_damping * excess).exp();
-        // Mirrors make anything wider than the box look the same.
+        // Candidates spread wider than the box would all be at its faces.
         self.step = self.step.min(1.0 / self.covariance.diagonal().max().sqrt());
     }
 
