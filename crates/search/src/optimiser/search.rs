@@ -97,7 +97,7 @@ impl Search {
         self.advance_with(&mut |units| Ok(score_all(units))).expect("an objective always answers")
     }
 
-    /// As [`Search::advance`], with scores from anywhere; on an error nothing is learnt.
+    /// As [`Search::advance`], with scores from anywhere; after an error it can't go on.
     pub(crate) fn advance_with(&mut self, score: &mut Scorer) -> Result<Generation, Error> {
         let mut score = |units: &[Vec<f64>]| -> Result<Vec<Score>, Error> {
             Ok(score(units)?.into_iter().map(Score::or_unjudged).collect())
@@ -130,6 +130,11 @@ impl Search {
     /// Best so far: the least cost, or the least violation while nothing is feasible.
     pub fn best(&self) -> Option<(&[f64], Score)> {
         self.best.as_ref().map(|best| (best.unit.as_slice(), best.score))
+    }
+
+    /// What the next generation is for; what the last one was, where the search is over.
+    pub fn stage(&self) -> Stage {
+        self.stage
     }
 
     fn advance_cma(&mut self, score: &mut Scorer) -> Result<Tried, Error> {
@@ -183,7 +188,9 @@ impl Search {
         let tried = match &mut self.simplex {
             Some(simplex) => simplex.advance(left, score)?,
             None => {
-                let (simplex, tried) = Simplex::new(&best.unit, best.score, &best.axes, score)?;
+                let Best { unit, score: best_score, axes } = best;
+                let tolerance = self.plan.cost_tolerance;
+                let (simplex, tried) = Simplex::new(unit, *best_score, axes, tolerance, score)?;
                 self.simplex = Some(simplex);
                 tried
             }
@@ -211,10 +218,5 @@ impl Search {
             Stage::Simplex => 0,
         };
         self.plan.evaluations - kept - self.evaluations
-    }
-
-    /// What the next generation is for; the last one, where the search is over.
-    pub fn stage(&self) -> Stage {
-        self.stage
     }
 }

@@ -39,10 +39,12 @@ impl Simplex {
     /// Scores a corner at one end of each axis about the best, all at once.
     ///
     /// - `axes`: one a column
+    /// - `tolerance`: standard deviation of the corners' costs below which it is level
     pub(crate) fn new(
         best: &[f64],
         best_score: Score,
         axes: &DMatrix<f64>,
+        tolerance: f64,
         score: &mut Scorer,
     ) -> Result<(Self, Tried), Error> {
         let corners: Vec<Vec<f64>> =
@@ -50,7 +52,8 @@ impl Simplex {
         let scores = score(&corners)?;
         let all = std::iter::once(&best_score).chain(&scores);
         let known = Known(RefCell::new(all.map(Score::as_one_number).collect()));
-        let mut walk = Walk::new([vec![best.to_vec()], corners.clone()].concat());
+        let all_corners = [vec![best.to_vec()], corners.clone()].concat();
+        let mut walk = Walk::new(all_corners).with_sd_tolerance(tolerance)?;
         walk.init(&mut Problem::new(known), NoState::new())?;
         Ok((Self { walk }, corners.into_iter().zip(scores).collect()))
     }
@@ -70,7 +73,7 @@ impl Simplex {
         }
     }
 
-    /// Whether all corners cost the same, to a standard deviation of rounding.
+    /// Whether all corners cost the same, within the tolerance.
     pub(crate) fn is_level(&mut self) -> bool {
         Solver::<Known, NoState>::terminate(&mut self.walk, &NoState::new()).terminated()
     }
