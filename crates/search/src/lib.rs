@@ -15,6 +15,7 @@ mod error;
 mod estimate;
 mod misses;
 mod mixes;
+pub mod optimiser;
 mod sizing;
 mod texts;
 mod want;
