@@ -23,5 +23,5 @@ pub use bench::Candidate;
 pub use choice::{Choice, Split, driven};
 pub use error::SizingError;
 pub use sizing::{Sized, Step, size};
-pub use texts::{with_catalogue, with_servos};
+pub use texts::with_servos;
 pub use want::Want;
