@@ -364,6 +364,7 @@ fn what_cannot_be_asked_is_refused() {
         (case("designs", &["--clamp", "8"]), "folder"),
         (case("held-out", &["--clamp", "8", "--at-s", "1"]), "--case release"),
         (case("flight", &["--at-s", "1"]), "--case release"),
+        (case("flight", &["--clamp", "17"]), "--clamp"),
         (case("release", &["--clamp", "8", "--at-s", "-1"]), "-1"),
         (case("release", &["--clamp", "8", "--at-s", "nan"]), "nan"),
         (case("release", &["--clamp", "8", "--launches", "3"]), "--case flight"),

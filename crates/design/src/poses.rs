@@ -9,13 +9,16 @@ use undulift_chain::joint_axes;
 use crate::columns::{ColumnRule, Columns};
 use crate::design::unusable;
 use crate::document::source_of;
-use crate::files::{MOST_CSV_BYTES, read_file};
+use crate::files::read_file;
 use crate::mistake::{Mistake, Source};
 use crate::range::Range;
 use crate::{Design, DesignError, DesignErrors};
 
 /// Most rows that are read.
 const MOST_ROWS: usize = 100_000;
+
+/// Largest file: traces give all digits of every joint.
+const MOST_BYTES: u64 = 256 << 20;
 
 /// How a body is held.
 #[derive(Debug, Clone, PartialEq)]
@@ -34,7 +37,7 @@ pub struct PoseRow {
 ///
 /// All mistakes in it, each with its place.
 pub fn read_poses(path: &Path, design: &Design) -> Result<Vec<PoseRow>, DesignErrors> {
-    let text = read_file(path, MOST_CSV_BYTES).map_err(|error| unusable(path, error))?;
+    let text = read_file(path, MOST_BYTES).map_err(|error| unusable(path, error))?;
     let fail = |mistakes| DesignErrors::new(path.display().to_string(), mistakes);
     poses(&source_of(path, text), design).map_err(fail)
 }

@@ -59,6 +59,9 @@ fn refuse_what_does_not_go_together(args: &Args) -> anyhow::Result<()> {
     if args.at_s.is_some() && args.case != Case::Release {
         bail!("--at-s names a time of the gait, so it goes with --case release alone");
     }
+    if args.clamp.is_some() && args.case == Case::Flight {
+        bail!("--clamp holds the body on the bench, so it goes with the other cases than flight");
+    }
     if args.launches.is_some() && args.case != Case::Flight {
         bail!("--launches fly, so they go with --case flight alone");
     }
