@@ -102,10 +102,11 @@ pub struct Fly {
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift budget designs/reed-16.toml
-  undulift budget designs/reed-16.toml --launches 200 --seed 7
+  undulift budget designs/reed-16.toml --launches 50 --seed 7
   undulift budget designs/reed-16.toml --case held-out --clamp 8 --load-factor 3
   undulift budget designs/reed-16.toml --case release --at-s 0.4 --clamp 8
-  undulift budget designs/reed-16.toml --case poses.csv --clamp 8
+  undulift fly designs/reed-16.toml --trace poses.csv &&
+    undulift budget designs/reed-16.toml --case poses.csv --clamp 8
   undulift budget designs/reed-16.toml --drops 10 --rest-s 60 --histories torques.csv")]
 pub struct Budget {
     /// A design file (TOML).
