@@ -1,4 +1,4 @@
-//! Choosing for a design: which servos of a catalogue can do it.
+//! Choosing for a design: what it asks of its servos, and which of a catalogue can do it.
 //!
 //! Every candidate is flown with its servos' masses in the chain, and its budget made from that
 //! flight. Of one kind of servo for yaw and one for pitch, all pairs are flown. Of mixes, one servo
@@ -9,6 +9,7 @@
 //!
 //! The same on any number of threads. Nothing here opens a file or prints.
 
+mod asked;
 mod bench;
 mod choice;
 mod error;
@@ -18,11 +19,14 @@ mod mixes;
 pub mod optimiser;
 mod sizing;
 mod texts;
+mod travel;
 mod want;
 
+pub use asked::{Asked, Drops, asked_at_rest, asked_in_flight};
 pub use bench::Candidate;
 pub use choice::{Choice, Split, driven};
 pub use error::SizingError;
 pub use sizing::{Sized, Step, size};
-pub use texts::{with_catalogue, with_servos};
+pub use texts::with_servos;
+pub use travel::{BeyondTravel, beyond_travel};
 pub use want::Want;
