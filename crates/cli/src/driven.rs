@@ -12,6 +12,7 @@ use undulift_flight::{
 use undulift_gait::Peak;
 
 use crate::args::{Fly, Joints};
+use crate::joints::{self, Missed};
 use crate::people;
 
 /// An axis that fails, as the command line says it: `JOINT:AXIS=limp|locked[@SECONDS]`.
@@ -132,11 +133,13 @@ impl Driven {
         }
         people::line(text, "Servos", &self.following());
         if self.servos > 0 {
-            people::line(text, "Give all they have", &self.saturated());
+            people::line(text, "Saturated", &self.saturated());
         }
         let glide_ratio = self.commanded.and_then(|summary| summary.glide_ratio);
-        let commanded = glide_ratio.map_or("no glide ratio".into(), |ratio| format!("{ratio:.2}"));
-        people::line(text, "If all followed", &format!("glide ratio {commanded}"));
+        let commanded =
+            glide_ratio.map_or("no glide ratio".into(), |ratio| format!("glide ratio {ratio:.2}"));
+        let told = format!("{commanded}, were every joint where it is told to be");
+        people::line(text, "Commanded", &told);
     }
 
     fn following(&self) -> String {
@@ -204,12 +207,16 @@ impl Driven {
         })
     }
 
-    /// Puts what axes did that don't follow their commands in the place of what they were told.
-    pub fn replace_peaks(&self, peaks: &mut [Peak]) {
-        for own in &self.tracking.peaks {
-            if let Some(told) = peaks.iter_mut().find(|peak| peak.of == own.of) {
-                *told = *own;
-            }
-        }
+    /// Joints beyond their travel: by what they were told where they follow that, else by what they
+    /// did.
+    ///
+    /// - `told`: by their commands
+    pub fn beyond_travel(&self, design: &Design, told: &[Peak]) -> Vec<Missed> {
+        let own = &self.tracking.peaks;
+        let follows = |peak: &&Peak| own.iter().all(|own| own.of != peak.of);
+        let told: Vec<Peak> = told.iter().filter(follows).copied().collect();
+        let of_told = joints::beyond_travel(design, &told);
+        let of_own = undulift_search::beyond_travel(&design.glider.chain, own);
+        of_told.chain(of_own.map(Missed::Turned)).collect()
     }
 }

@@ -82,12 +82,12 @@ fn fly_one(path: &Path, args: &Fly, settings: &Settings) -> Result<Flown, Refuse
     let summary = summary(&design.glider, &mut flight);
     let bands = bands(&design.glider, &mut flight);
     let doubts = doubts(&design.glider, &flight, &summary, &bands);
-    let mut peaks = flight.commands().peaks(0.0, flight.time_s);
+    let peaks = flight.commands().peaks(0.0, flight.time_s);
     let driven = driven::Driven::of(args, &design, &drives, &mut flight, settings);
-    if let Some(driven) = &driven {
-        driven.replace_peaks(&mut peaks);
-    }
-    let joints_missed = joints::beyond_travel(&design, &peaks).collect();
+    let joints_missed = match &driven {
+        Some(driven) => driven.beyond_travel(&design, &peaks),
+        None => joints::beyond_travel(&design, &peaks).collect(),
+    };
     let missed = missed_limits(&design, &summary);
     let launches = None;
     Ok(Flown { flight, summary, bands, doubts, missed, joints_missed, launches, driven, design })
