@@ -38,7 +38,7 @@ pub enum Command {
   undulift fly designs/reed-16.toml
   undulift fly designs/reed-16.toml --set gait.frequency_hz=1.0 --json
   undulift fly designs/reed-16.toml --trace reed-16.csv --every-ms 2
-  undulift fly designs/reed-16.toml --joints driven --fault 8:yaw=limp@0.5
+  undulift fly designs/reed-16.toml --joints driven --fault 14:yaw=locked@1.2
   undulift fly designs/reed-16.toml --launches 200 --seed 7 --csv launches.csv")]
 pub struct Fly {
     /// Design files (TOML).
