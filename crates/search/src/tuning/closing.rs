@@ -4,7 +4,7 @@ use std::convert::Infallible;
 
 use super::slopes::slopes;
 use super::{Judge, Run, Slope, Store, Tried, Verdict};
-use crate::Plan;
+use crate::optimiser::Plan;
 
 /// How near to a limit it is active, of the limit's scale; to an end, of the range.
 const NEAR: f64 = 0.01;

@@ -32,5 +32,5 @@ pub enum TuningError {
     Flight(#[from] FlightError),
     /// The search can't begin.
     #[error(transparent)]
-    Optimiser(#[from] crate::OptimiserError),
+    Optimiser(#[from] crate::optimiser::OptimiserError),
 }

@@ -6,7 +6,7 @@ use std::sync::Mutex;
 use serde::{Deserialize, Serialize};
 
 use super::{Fineness, Judge, Ledger, TuningError, Verdict};
-use crate::{Objective, Plan, Score, Search};
+use crate::optimiser::{Objective, Plan, Score, Search};
 
 /// A search under way, with all it needs to go on to the same bits.
 #[derive(Debug, Clone, Serialize, Deserialize)]

@@ -2,7 +2,7 @@
 
 use serde::{Deserialize, Serialize};
 
-use crate::Score;
+use crate::optimiser::Score;
 
 /// What a candidate comes to.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
