@@ -1,13 +1,14 @@
-//! Choosing for a design: which servos of a catalogue can do it, and what to set its numbers to.
+//! Choosing for a design: servos of a catalogue, and what its numbers are best set to.
 //!
-//! For servos, every candidate is flown with its servos' masses in the chain, and its budget made from that
-//! flight. Of one kind of servo for yaw and one for pitch, all pairs are flown. Of mixes, one servo
-//! for the middle joints of an axis and another for as many joints at either end, so many that not
-//! all are: loads of flights with one kind an axis tell which may pass, and those are flown in the
-//! order of the wish ([`size`] says how far). Three kinds on an axis, ends that differ, another
-//! battery and another gait aren't tried; nor are servos checked for room in a segment.
+//! For servos, every candidate is flown with its servos' masses in the chain, and its budget made
+//! from that flight. Of one kind of servo for yaw and one for pitch, all pairs are flown. Of mixes,
+//! one servo for the middle joints of an axis and another for as many joints at either end, so many
+//! that not all are: loads of flights with one kind an axis tell which may pass, and those are flown
+//! in the order of the wish ([`size`] says how far). Three kinds on an axis, ends that differ and
+//! another battery aren't tried; nor are servos checked for room in a segment.
 //!
-//! Numbers are set by [`tuning`], which asks the [`optimiser`] what to try next. The same on any number of threads. Nothing here opens a file or prints.
+//! Numbers are set by [`tuning`], which asks the [`optimiser`] what to try next. All is the same on
+//! any number of threads. Nothing here opens a file or prints.
 
 mod bench;
 mod choice;

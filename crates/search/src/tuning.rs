@@ -5,7 +5,7 @@
 //! together with all it needs to go on. [`closing`] says what the best is worth: which ends and
 //! limits hold it back, what they cost, and how it moves with each number.
 //!
-//! While searching, loads are looked at every 10 ms and limits on them are kept with 1 % to spare;
+//! While searching, loads are looked at every 10 ms and limits on them are kept with half a per cent to spare;
 //! whatever becomes the best so far is judged again at every millisecond against the limits
 //! themselves. The same on any number of threads. Several wishes at once aren't traded here.
 

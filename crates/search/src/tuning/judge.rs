@@ -14,7 +14,7 @@ const COARSE_S: f64 = 10e-3;
 const FINE_S: f64 = 1e-3;
 
 /// Share of a limit on loads that is kept to spare where peaks between looks are missed.
-const SPARE: f64 = 0.01;
+const SPARE: f64 = 0.005;
 
 /// Numbers that vary are rounded to the decimal place below this share of their range.
 const ROUNDED: f64 = 1e-6;
@@ -22,7 +22,7 @@ const ROUNDED: f64 = 1e-6;
 /// How closely loads are looked at.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Fineness {
-    /// Every 10 ms, limits on them kept with 1 % to spare: for searching.
+    /// Every 10 ms, limits on them kept with 0.5 % to spare: for searching.
     Coarse,
     /// Every millisecond, against the limits themselves, as in a budget.
     Fine,

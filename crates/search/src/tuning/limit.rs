@@ -2,7 +2,7 @@
 
 use serde::{Deserialize, Serialize};
 use undulift_chain::joint_axes;
-use undulift_design::{Design, Required, Tuning};
+use undulift_design::{Design, Knob, Required, Tuning};
 
 use super::outcome::{HEIGHT_LEFT, TIMES_OVER, TRAVEL_SHARE};
 
@@ -116,8 +116,8 @@ impl Limit {
 /// What `fly` and `budget` end with status 1 for; where the search has its own limit on that side
 /// of a quantity, that one holds alone.
 fn of_design(design: &Design, own: &[Required]) -> Vec<Limit> {
-    let tilt = Bound::AtMost(design.limits.tilt_rad.to_degrees());
-    let margin = Bound::AtLeast(design.limits.torque_factor);
+    let tilt = Bound::AtMost(number(design, "limits.tilt_deg"));
+    let margin = Bound::AtLeast(number(design, "limits.torque_factor"));
     let axes = joint_axes(design.glider.chain.joints());
     let joints = design.glider.chain.joints();
     let stops = axes.iter().any(|of| joints[of.joint_idx].travel_rad(of.axis).is_some());
@@ -137,6 +137,11 @@ fn of_design(design: &Design, own: &[Required]) -> Vec<Limit> {
     };
     let asked = all.into_iter().filter(|(given, key, bound)| *given && !replaced(key, *bound));
     asked.map(|(_, key, bound)| Limit::new(key, bound, Origin::Design)).collect()
+}
+
+/// As the file has it, or its default.
+fn number(design: &Design, key: &str) -> f64 {
+    Knob::find(design, key).map_or(f64::NAN, |knob| knob.value(design))
 }
 
 fn of_search(required: &Required) -> Vec<Limit> {
