@@ -12,6 +12,7 @@ mod fly;
 mod joints;
 mod json;
 mod launches;
+mod many;
 mod new;
 mod people;
 mod size;

@@ -4,14 +4,13 @@ use std::fmt::Write;
 use std::path::Path;
 
 use anyhow::{Context, anyhow, bail};
-use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use serde_json::{Value, json};
 use undulift_design::{Design, DesignErrors, Servo};
 use undulift_flight::Settings;
 use undulift_search::{Candidate, Sized, Split, Step, Want, size, with_catalogue, with_servos};
 
 use crate::args::{Size as Args, Wish};
-use crate::{Outcome, Refused, json, terminal, whole_file};
+use crate::{Outcome, Refused, json, many, terminal, whole_file};
 
 /// Lines of what the nearest miss misses.
 const MOST_MISSES: usize = 5;
@@ -75,7 +74,7 @@ fn read_catalogue(design: &Design, args: &Args) -> anyhow::Result<Result<Catalog
 }
 
 fn search(design: &Design, catalogue: &Catalogue, args: &Args) -> anyhow::Result<Sized> {
-    let bar = progress(&design.name);
+    let bar = many::bar(0, &design.name);
     let told = |step: Step| match step {
         Step::Planned(more) => bar.inc_length(more as u64),
         Step::Flown => bar.inc(1),
@@ -86,22 +85,11 @@ fn search(design: &Design, catalogue: &Catalogue, args: &Args) -> anyhow::Result
         Wish::Furthest => Want::Furthest,
         Wish::Cheapest => Want::Cheapest,
     };
-    let pool = rayon::ThreadPoolBuilder::new()
-        .num_threads(args.threads.map_or(0, usize::from))
-        .build()
-        .context("can't start threads")?;
+    let pool = many::threads(args.threads.map_or(0, usize::from))?;
     let settings = Settings::default();
     let sized = pool.install(|| size(design, &catalogue.servos, want, settings, &told));
     bar.finish_and_clear();
     sized.with_context(|| design.name.clone())
-}
-
-fn progress(name: &str) -> ProgressBar {
-    let style = ProgressStyle::with_template("{msg} {wide_bar} {pos}/{len} flights, {eta} left");
-    let bar = ProgressBar::with_draw_target(Some(0), ProgressDrawTarget::stderr());
-    bar.set_style(style.unwrap_or_else(|_| ProgressStyle::default_bar()));
-    bar.set_message(name.to_owned());
-    bar
 }
 
 fn answer(design: &Design, catalogue: &Catalogue, sized: &Sized, args: &Args) -> String {
