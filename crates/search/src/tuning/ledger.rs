@@ -49,6 +49,10 @@ impl Ledger {
         self.unjudged
     }
 
+    pub(crate) fn limits(&self) -> usize {
+        self.met.len()
+    }
+
     /// How many of those tried met a limit.
     pub fn met(&self, limit: usize) -> u32 {
         self.met[limit][limit]

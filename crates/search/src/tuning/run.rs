@@ -76,6 +76,12 @@ impl Run {
         self.search.is_over()
     }
 
+    /// Whether it could be of this judge: as many numbers vary, and as much is required.
+    pub fn is_of(&self, judge: &Judge) -> bool {
+        let varied = self.search.plan().start.len();
+        varied == judge.varied().len() && self.ledger.limits() == judge.limits().len()
+    }
+
     /// All of it, to be read again by [`Run::from_bytes`].
     pub fn to_bytes(&self) -> Vec<u8> {
         postcard::to_stdvec(self).expect("numbers and lists are always written")
