@@ -100,8 +100,8 @@ fn read(asked: &Asked, sets: &[Override]) -> anyhow::Result<Result<(Record, Judg
     };
     let evaluations = asked.evaluations.or(tuning.evaluations).unwrap_or(EVALUATIONS);
     let settings = Settings::default();
-    let judge = Judge::new(&design, &tuning, asked.seed, settings)
-        .with_context(|| design.name.clone())?;
+    let judge =
+        Judge::new(&design, &tuning, asked.seed, settings).with_context(|| design.name.clone())?;
     let record = Record::new(asked, &design, &tuning, evaluations, &settings)?;
     Ok(Ok((record, judge)))
 }
@@ -188,6 +188,7 @@ fn tell(told: &Told<'_>, as_json: bool) -> anyhow::Result<Outcome> {
     } else {
         terminal::answer(&people::answer(told))?;
     }
+    people::tell_ridge(told);
     if told.closing.after.is_feasible() {
         return Ok(Outcome::WithinLimits);
     }

@@ -113,5 +113,8 @@ pub fn of_budget(budget: &Budget, passes: bool) -> Vec<(&'static str, Quantity)>
         battery.and_then(|battery| battery.regulator_peak_current_a),
     ];
     let own = [budget.least_margin, Some(f64::from(u8::from(passes)))];
-    BUDGET_NUMBERS.into_iter().zip(own.into_iter().chain(of_battery).map(Quantity::or_none)).collect()
+    BUDGET_NUMBERS
+        .into_iter()
+        .zip(own.into_iter().chain(of_battery).map(Quantity::or_none))
+        .collect()
 }

@@ -132,10 +132,7 @@ fn frozen_mistakes_in_a_search() {
             wished(&format!("{want}\nrobust = {{ launches = 1001, take = \"mean\" }}")),
         ),
         ("nothing taken", wished(&format!("{want}\nrobust = {{ launches = 9 }}"))),
-        (
-            "another taken",
-            wished(&format!("{want}\nrobust = {{ launches = 9, take = \"best\" }}")),
-        ),
+        ("another taken", wished(&format!("{want}\nrobust = {{ launches = 9, take = \"best\" }}"))),
         ("limits", wished(&format!("{want}\nlimits = \"keep\""))),
         ("a key that nobody reads", wished(&format!("{want}\nevaluation = 5"))),
         ("with a heading", of(&format!("[search]\n{want}")).unwrap_err().join("\n")),

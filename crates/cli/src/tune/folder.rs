@@ -121,7 +121,12 @@ impl Folder {
     }
 
     /// Writes the design with the best numbers in it.
-    pub fn write_best(&self, judge: &Judge, record: &Record, ledger: &Ledger) -> anyhow::Result<()> {
+    pub fn write_best(
+        &self,
+        judge: &Judge,
+        record: &Record,
+        ledger: &Ledger,
+    ) -> anyhow::Result<()> {
         let best = ledger.best().context("nothing was tried")?;
         // One that can't even be read is no design to write.
         let Ok(design) = judge.design_with(&best.values) else { return Ok(()) };

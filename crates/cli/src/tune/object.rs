@@ -69,11 +69,18 @@ fn limit(limit: &Limit) -> Value {
     json!({ "key": limit.key, side: limit.bound.value(), "from": origin })
 }
 
-/// For each unit of the file.
+/// A step to either side, and what that comes to for each unit of the file.
 fn slopes(told: &Told<'_>) -> Value {
+    let n_limits = told.judge.limits().len();
     let slopes = told.closing.slopes.iter().map(|slope| {
-        let required = by_limit(told, &slope.limits);
-        json!({ "between": slope.between, "wish": slope.wish, "required": required })
+        let required: Vec<_> = (0..n_limits).map(|limit| slope.limit_per_unit(limit)).collect();
+        json!({
+            "values": slope.values,
+            "wish": slope.verdicts.each_ref().map(|verdict| verdict.wish),
+            "feasible": slope.verdicts.each_ref().map(Verdict::is_feasible),
+            "wish_per_unit": slope.wish_per_unit(),
+            "required_per_unit": by_limit(told, &required),
+        })
     });
     by_number(told, slopes)
 }
@@ -86,9 +93,7 @@ fn active(told: &Told<'_>) -> Value {
         let (key, side, at) = match active.held {
             Held::Low(idx) => (of(idx).knob.key(), "low", of(idx).low),
             Held::High(idx) => (of(idx).knob.key(), "high", of(idx).high),
-            Held::Limit(idx) => {
-                (columns[idx].as_str(), "limit", judge.limits()[idx].bound.value())
-            }
+            Held::Limit(idx) => (columns[idx].as_str(), "limit", judge.limits()[idx].bound.value()),
         };
         json!({ "key": key, "side": side, "at": at, "loosened_to": active.loosened,
             "gain": active.gain })

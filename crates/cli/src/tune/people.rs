@@ -2,11 +2,16 @@
 
 use std::fmt::Write;
 
-use undulift_search::tuning::{Active, Bound, Closing, Held, Judge, Ledger, Limit, Origin, Verdict};
+use undulift_search::tuning::{
+    Active, Bound, Closing, Held, Judge, Ledger, Limit, Origin, Slope, Verdict,
+};
 
 use super::Told;
 use super::record::Record;
 use crate::terminal;
+
+/// Share of the best that a small step may take away before it is told (our choice).
+const RIDGE: f64 = 0.05;
 
 /// Lines of what is missed.
 const MOST_MISSES: usize = 8;
@@ -65,7 +70,9 @@ pub fn answer(told: &Told<'_>) -> String {
     );
     text.push_str(&table(judge, closing));
     if !closing.after.is_feasible() {
-        text.push_str("  Nothing that was tried keeps all that is required; shown is what misses least\n");
+        text.push_str(
+            "  Nothing that was tried keeps all that is required; shown is what misses least\n",
+        );
     }
     text.push_str(&slopes(judge, closing));
     text.push_str(&holding(judge, closing));
@@ -100,8 +107,7 @@ fn table(judge: &Judge, closing: &Closing) -> String {
     let [names, own, best] = [1, 2, 3].map(|column| width(column).unwrap_or(0));
     let line = |row: &[String; 5]| {
         let [label, name, before, after, note] = row;
-        let line =
-            format!("  {label:<9} {name:<names$}  {before:>own$}  {after:>best$}   {note}");
+        let line = format!("  {label:<9} {name:<names$}  {before:>own$}  {after:>best$}   {note}");
         format!("{}\n", line.trim_end())
     };
     rows.iter().map(line).collect()
@@ -126,14 +132,18 @@ fn limit_in_words(limit: &Limit) -> String {
 /// How the wish moves with each number.
 fn slopes(judge: &Judge, closing: &Closing) -> String {
     let key = &judge.wish().key;
-    let mut text = format!("  How {key} moves about there, each number alone\n");
-    for (one, slope) in judge.varied().iter().zip(&closing.slopes) {
-        let step = if one.knob.is_whole() { 1.0 } else { 0.01 * (one.high - one.low) };
-        let moved = match slope.wish {
-            Some(wish) => format!("{:+.2e} for {} more", wish * step, short(step)),
-            None => "unknown: a flight beside it has none".into(),
-        };
-        let _ = writeln!(text, "    {:<32} {moved}", one.knob.key());
+    let mut text = format!("  How {key} moves about there, each number alone by a step\n");
+    for (idx, (one, slope)) in judge.varied().iter().zip(&closing.slopes).enumerate() {
+        let own = closing.after.values[idx];
+        let [less, more] = [0, 1].map(|side| {
+            let by = short((slope.values[side] - own).abs());
+            match (slope.verdicts[side].wish, closing.after.wish) {
+                _ if slope.values[side] == own => "at the end".into(),
+                (Some(wish), Some(best)) => format!("{:+.4} for {by}", wish - best),
+                _ => format!("none for {by}"),
+            }
+        });
+        let _ = writeln!(text, "    {:<30} {less:>22} less {more:>22} more", one.knob.key());
     }
     text
 }
@@ -188,6 +198,29 @@ pub fn held_in_words(judge: &Judge, active: &Active) -> String {
                 Bound::AtMost(value) => format!("{} at most {value}", limit.key),
             }
         }
+    }
+}
+
+/// Says where the best stands on a ridge too narrow for a robot.
+pub fn tell_ridge(told: &Told<'_>) {
+    let Told { judge, closing, .. } = told;
+    let Some(best) = closing.after.wish.filter(|_| judge.launches() == 1) else { return };
+    let loss = |wish: f64| {
+        let by = if judge.wish().maximise { best - wish } else { wish - best };
+        by / best.abs()
+    };
+    let worst =
+        |of: &Slope| of.verdicts.iter().filter_map(|v| Some(loss(v.wish?))).reduce(f64::max);
+    let losses = closing.slopes.iter().enumerate().filter_map(|(idx, of)| Some((worst(of)?, idx)));
+    let Some((loss, idx)) = losses.max_by(|a, b| a.0.total_cmp(&b.0)) else { return };
+    if loss > RIDGE {
+        terminal::tell_hint(&format!(
+            "the best stands on a narrow ridge: a hundredth of the range of {} takes {:.0} % of it \
+             away; to find one that launches and settings may miss, add robust = {{ launches = 8, \
+             take = \"worst\" }}",
+            judge.varied()[idx].knob.key(),
+            100.0 * loss
+        ));
     }
 }
 

@@ -108,12 +108,13 @@ fn as_read(tuning: &Tuning) -> Value {
     let vary = tuning.vary.iter().map(|one| (one.knob.key().into(), json!([one.low, one.high])));
     let require = tuning.require.iter().map(|one| {
         let sides = [("at_least", one.at_least), ("at_most", one.at_most)];
-        let sides = sides.into_iter().filter_map(|(side, value)| Some((side.into(), json!(value?))));
+        let sides =
+            sides.into_iter().filter_map(|(side, value)| Some((side.into(), json!(value?))));
         (one.key.clone(), Value::Object(sides.collect()))
     });
-    let robust = tuning.robust.map(|robust| {
-        json!({ "launches": robust.launches, "take": robust.take.word() })
-    });
+    let robust = tuning
+        .robust
+        .map(|robust| json!({ "launches": robust.launches, "take": robust.take.word() }));
     json!({
         "want": wishes.collect::<Vec<_>>(),
         "robust": robust,

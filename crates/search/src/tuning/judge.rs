@@ -5,15 +5,11 @@ use undulift_design::{Design, DesignErrors, Knob, Robust, Scatter, Tuning, Varie
 use undulift_flight::{FlightError, Settings};
 use undulift_gait::{Interpolation, Pattern};
 
-use super::outcome::Outcome;
+use super::outcome::{Outcome, TIMES_OVER, TRAVEL_SHARE};
 use super::several::taken;
 use super::{Bound, Limit, TuningError, Verdict};
 
-/// Between looks at the loads, s.
-const COARSE_S: f64 = 10e-3;
-const FINE_S: f64 = 1e-3;
-
-/// Share of a limit on loads that is kept to spare where peaks between looks are missed.
+/// Share of a limit on loads or travel that is kept to spare where peaks between looks are missed.
 const SPARE: f64 = 0.005;
 
 /// Numbers that vary are rounded to the decimal place below this share of their range.
@@ -22,7 +18,7 @@ const ROUNDED: f64 = 1e-6;
 /// How closely loads are looked at.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Fineness {
-    /// Every 10 ms, limits on them kept with 0.5 % to spare: for searching.
+    /// Every 10 ms, limits on them and on travel kept with 0.5 % to spare: for searching.
     Coarse,
     /// Every millisecond, against the limits themselves, as in a budget.
     Fine,
@@ -193,12 +189,8 @@ impl Judge {
     }
 
     fn verdict(&self, design: &Design, values: Vec<f64>, fineness: Fineness) -> Verdict {
-        let every_s = match fineness {
-            Fineness::Coarse => COARSE_S,
-            Fineness::Fine => FINE_S,
-        };
-        let every_s = self.asks_for_loads().then_some(every_s);
-        let fly = |design: &Design| Outcome::of(design, &self.settings, every_s).ok();
+        let with_loads = self.asks_for_loads();
+        let fly = |design: &Design| Outcome::of(design, &self.settings, fineness, with_loads).ok();
         let launches: Vec<Option<Outcome>> = match &self.robust {
             None => vec![fly(design)],
             Some((scatter, robust)) => (0..u64::from(robust.launches))
@@ -243,11 +235,11 @@ impl Judge {
     }
 }
 
-/// A limit on loads, kept with something to spare; those that no peak between looks moves a little
-/// are as they are.
+/// A limit on what peaks between looks may move, kept with something to spare; what is 1 where all
+/// is well stays as it is.
 fn with_spare(limit: &Limit) -> Limit {
-    let moves = limit.is_of_loads()
-        && ![super::outcome::TIMES_OVER, "budget.passes"].contains(&limit.key.as_str());
+    let is_verdict = [TIMES_OVER, "budget.passes"].contains(&limit.key.as_str());
+    let moves = limit.key == TRAVEL_SHARE || limit.is_of_loads() && !is_verdict;
     let bound = if moves { limit.bound.eased(-SPARE) } else { limit.bound };
     Limit { bound, ..limit.clone() }
 }

@@ -61,7 +61,8 @@ impl Ledger {
     /// Pairs of limits of which each was met by some, but never both by the same.
     pub fn never_together(&self) -> Vec<(usize, usize)> {
         let all = 0..self.met.len();
-        let pairs = all.clone().flat_map(|one| all.clone().skip(one + 1).map(move |two| (one, two)));
+        let pairs =
+            all.clone().flat_map(|one| all.clone().skip(one + 1).map(move |two| (one, two)));
         let apart = |&(one, two): &(usize, usize)| {
             self.met(one) > 0 && self.met(two) > 0 && self.met[one][two] == 0
         };

@@ -1,8 +1,8 @@
-//! The budget of a design that has flown.
+//! The budget of a design that has flown, from no more than it needs.
 
 use undulift_chain::{AxisOf, joint_axes};
 use undulift_design::Design;
-use undulift_flight::{Flight, FlightError, histories as joint_histories};
+use undulift_flight::{Flight, FlightError, loads_at};
 use undulift_servo::{AxisHistory, Budget, Conditions, Histories, Place, Servo, budget};
 
 /// - `every_s`: between the instants that it is made from
@@ -12,24 +12,18 @@ pub(crate) fn budget_of(
     flight: &mut Flight,
     every_s: f64,
 ) -> Result<Option<Budget>, FlightError> {
-    let found = joint_histories(&design.glider, flight, every_s)?;
-    let servos: Vec<Servo> = design.servos.values().cloned().collect();
-    let servo_of = |of: &AxisOf| {
-        let name = design.servo_names.of(of.joint_idx, of.axis)?;
-        design.servos.keys().position(|known| known == name)
-    };
-    let axes = joint_axes(design.glider.chain.joints());
-    let axes = axes.iter().enumerate().map(|(axis_idx, of)| {
-        let column = |rows: &[Vec<f64>]| rows.iter().map(|row| row[axis_idx]).collect();
-        AxisHistory {
-            place: Place { joint: of.joint_idx + 1, axis: of.axis.word() },
-            servo_idx: servo_of(of),
-            joint_torque_nm: column(&found.torques_nm),
-            rate_rad_s: column(&found.rates_rad_s),
-            acceleration_rad_s2: column(&found.accelerations_rad_s2),
+    let mut histories = Histories { times_s: times_s(flight.time_s, every_s), axes: axes(design) };
+    let mut motion = flight.commands().room();
+    for &time_s in &histories.times_s {
+        let torques_nm = loads_at(&design.glider, flight, time_s)?.torques_nm;
+        flight.commands().accelerations(flight.trajectory.instant(time_s), &mut motion);
+        for (axis_idx, axis) in histories.axes.iter_mut().enumerate() {
+            axis.joint_torque_nm.push(torques_nm[axis_idx]);
+            axis.rate_rad_s.push(motion.rates_rad_s[axis_idx]);
+            axis.acceleration_rad_s2.push(motion.accelerations_rad_s2[axis_idx]);
         }
-    });
-    let histories = Histories { axes: axes.collect(), times_s: found.times_s };
+    }
+    let servos: Vec<Servo> = design.servos.values().cloned().collect();
     let conditions = Conditions {
         battery: design.battery.as_ref().map(|battery| battery.supply.clone()),
         air_temperature_k: design.glider.air.temperature_k,
@@ -37,4 +31,26 @@ pub(crate) fn budget_of(
         ..Conditions::default()
     };
     Ok(budget(&servos, &histories, &conditions).ok())
+}
+
+/// Equal steps, and the end.
+fn times_s(end_s: f64, every_s: f64) -> Vec<f64> {
+    let whole = (end_s / every_s - 1e-9).floor() as u64;
+    (0..=whole).map(|row| row as f64 * every_s).chain([end_s]).collect()
+}
+
+/// Without anything in their columns yet.
+fn axes(design: &Design) -> Vec<AxisHistory> {
+    let servo_of = |of: &AxisOf| {
+        let name = design.servo_names.of(of.joint_idx, of.axis)?;
+        design.servos.keys().position(|known| known == name)
+    };
+    let axis = |of: &AxisOf| AxisHistory {
+        place: Place { joint: of.joint_idx + 1, axis: of.axis.word() },
+        servo_idx: servo_of(of),
+        joint_torque_nm: Vec::new(),
+        rate_rad_s: Vec::new(),
+        acceleration_rad_s2: Vec::new(),
+    };
+    joint_axes(design.glider.chain.joints()).iter().map(axis).collect()
 }

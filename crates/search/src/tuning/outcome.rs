@@ -1,11 +1,21 @@
 //! One launch, flown: its quantities by name.
 
+use undulift_chain::AxisOf;
 use undulift_design::Design;
 use undulift_design::quantities::{Quantity, of_budget, of_flight};
 use undulift_flight::{Bands, End, Flight, FlightError, Settings, Summary, fly, summary};
+use undulift_gait::Instant;
 use undulift_servo::MissKind;
 
+use super::Fineness;
 use super::loads::budget_of;
+
+/// Between looks at the loads, s.
+const COARSE_S: f64 = 10e-3;
+const FINE_S: f64 = 1e-3;
+
+/// Between looks at the joints' angles where they are coarse, s.
+const COARSE_TRAVEL_S: f64 = 5e-3;
 
 /// 0 where it landed; else 1 and the share of the release height that was left.
 pub(crate) const HEIGHT_LEFT: &str = "height_left";
@@ -22,7 +32,7 @@ pub(crate) struct Outcome(Vec<(&'static str, Quantity)>);
 impl Outcome {
     /// Flies a design.
     ///
-    /// - `every_s`: between looks at the loads; absent where nobody asks for them
+    /// - `with_loads`: whether anybody asks for them
     ///
     /// # Errors
     ///
@@ -30,18 +40,19 @@ impl Outcome {
     pub(crate) fn of(
         design: &Design,
         settings: &Settings,
-        every_s: Option<f64>,
+        fineness: Fineness,
+        with_loads: bool,
     ) -> Result<Self, FlightError> {
         let mut flight = fly(&design.glider, settings)?;
         let flown = summary(&design.glider, &mut flight);
         // Many flights leave the bands out, which cost as much as the flight.
         let no_bands = Bands { alpha_rad: None, reynolds: None, stretched: Vec::new() };
         let mut quantities = of_flight(&flown, &no_bands);
-        let travel_share = travel_share(design, &flight);
+        let travel_share = travel_share(design, &flight, fineness);
         quantities.push((HEIGHT_LEFT, Quantity::Number(height_left(design, &flown))));
         quantities.push((TRAVEL_SHARE, Quantity::Number(travel_share)));
-        if let Some(every_s) = every_s {
-            quantities.extend(loads(design, &mut flight, every_s, travel_share)?);
+        if with_loads {
+            quantities.extend(loads(design, &mut flight, fineness, travel_share)?);
         }
         Ok(Self(quantities))
     }
@@ -63,24 +74,47 @@ fn height_left(design: &Design, flown: &Summary) -> f64 {
     1.0 + ((height_m - flown.drop_m) / height_m).clamp(0.0, 1.0)
 }
 
-/// Infinite where a joint without travel is asked to turn.
-fn travel_share(design: &Design, flight: &Flight) -> f64 {
+/// What the gait asks of joints over their travel, the largest, 0 where none has an end; infinite
+/// where a joint without travel is asked to turn.
+///
+/// A gait repeats itself, so its start and a cycle say it all.
+fn travel_share(design: &Design, flight: &Flight, fineness: Fineness) -> f64 {
+    let commands = flight.commands();
+    let end_s =
+        commands.steady_cycle_s().map_or(flight.time_s, |cycle| cycle[1].min(flight.time_s));
     let joints = design.glider.chain.joints();
-    let peaks = flight.commands().peaks(0.0, flight.time_s);
-    let share = |peak: &undulift_gait::Peak| {
-        let travel_rad = joints[peak.of.joint_idx].travel_rad(peak.of.axis)?;
-        Some(if peak.angle_rad > 0.0 { peak.angle_rad / travel_rad } else { 0.0 })
+    let share = |of: &AxisOf, angle_rad: f64| {
+        let travel_rad = joints[of.joint_idx].travel_rad(of.axis);
+        travel_rad.map_or(0.0, |travel_rad| angle_rad / travel_rad)
     };
-    peaks.iter().filter_map(share).fold(0.0, f64::max)
+    let largest = |shares: &mut dyn Iterator<Item = f64>| {
+        shares.fold(0.0, |most: f64, share| if share.is_nan() { most } else { most.max(share) })
+    };
+    if fineness == Fineness::Fine {
+        let peaks = commands.peaks(0.0, end_s);
+        return largest(&mut peaks.iter().map(|peak| share(&peak.of, peak.angle_rad)));
+    }
+    let mut motion = commands.room();
+    let looks = (end_s / COARSE_TRAVEL_S).ceil().max(1.0) as usize;
+    let at = |look: usize| {
+        commands.rates(Instant::at(end_s * look as f64 / looks as f64), &mut motion);
+        let angles = commands.axes().iter().zip(&motion.angles_rad);
+        largest(&mut angles.map(|(of, angle_rad)| share(of, angle_rad.abs())))
+    };
+    (0..=looks).map(at).fold(0.0, f64::max)
 }
 
 /// Quantities of the budget; none where it can't be made, which counts as a miss.
 fn loads(
     design: &Design,
     flight: &mut Flight,
-    every_s: f64,
+    fineness: Fineness,
     travel_share: f64,
 ) -> Result<Vec<(&'static str, Quantity)>, FlightError> {
+    let every_s = match fineness {
+        Fineness::Coarse => COARSE_S,
+        Fineness::Fine => FINE_S,
+    };
     let Some(budget) = budget_of(design, flight, every_s)? else { return Ok(Vec::new()) };
     let others = budget.misses.iter().filter(|miss| miss.kind != MissKind::Torque);
     let times_over = others.map(|miss| miss.times_over).fold(1.0, f64::max);

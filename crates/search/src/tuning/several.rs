@@ -25,7 +25,11 @@ pub(crate) fn taken(mut values: Vec<Option<f64>>, take: Take, high_is_good: bool
             let at = TENTH * (values.len() - 1) as f64;
             let (low, share) = (at.floor() as usize, at.fract());
             let first = values[low]?;
-            if share == 0.0 { Some(first) } else { Some(first + share * (values[low + 1]? - first)) }
+            if share == 0.0 {
+                Some(first)
+            } else {
+                Some(first + share * (values[low + 1]? - first))
+            }
         }
     }
 }

@@ -7,16 +7,34 @@ use super::{Fineness, Judge, Verdict};
 /// Step to either side, of the range.
 const STEP: f64 = 0.01;
 
-/// How the result moves with one number, by a difference over a step to either side: 1 % of its
-/// range, or 1 for a whole number, less where an end of the range is nearer.
+/// What becomes of a candidate when one number is moved a step to either side: by 1 % of its range,
+/// or by 1 where it is whole; less where an end of the range is nearer, and not at all at the end.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Slope {
-    /// Least and most that it was set to, in the file's unit.
-    pub between: [f64; 2],
-    /// Of what is wanted, for each unit of the file; absent where a flight has no value.
-    pub wish: Option<f64>,
-    /// The same of each limit's quantity.
-    pub limits: Vec<Option<f64>>,
+    /// Less and more, as set, in the file's unit.
+    pub values: [f64; 2],
+    /// What both come to, judged finely.
+    pub verdicts: [Verdict; 2],
+}
+
+impl Slope {
+    /// Change of what is wanted for each unit of the file between the two; absent where a flight
+    /// has no value. Where the best stands on a ridge this says little: see both sides.
+    pub fn wish_per_unit(&self) -> Option<f64> {
+        let [less, more] = &self.verdicts;
+        self.per_unit(less.wish, more.wish)
+    }
+
+    /// The same of a limit's quantity.
+    pub fn limit_per_unit(&self, limit: usize) -> Option<f64> {
+        let [less, more] = &self.verdicts;
+        self.per_unit(less.limits[limit], more.limits[limit])
+    }
+
+    fn per_unit(&self, less: Option<f64>, more: Option<f64>) -> Option<f64> {
+        let slope = (more? - less?) / (self.values[1] - self.values[0]);
+        slope.is_finite().then_some(slope)
+    }
 }
 
 /// Slopes at a candidate, one for each number that varies.
@@ -28,20 +46,11 @@ fn slope(judge: &Judge, at: &Verdict, idx: usize) -> Slope {
     let one = &judge.varied()[idx];
     let step = if one.knob.is_whole() { 1.0 } else { STEP * (one.high - one.low) };
     let own = at.values[idx];
-    let between = [(own - step).max(one.low), (own + step).min(one.high)];
-    let [below, above] = between.map(|value| {
+    let values = [(own - step).max(one.low), (own + step).min(one.high)];
+    let verdicts = values.map(|value| {
         let mut values = at.values.clone();
         values[idx] = value;
         judge.judge(values, Fineness::Fine)
     });
-    let per_unit = |below: Option<f64>, above: Option<f64>| {
-        let slope = (above? - below?) / (between[1] - between[0]);
-        slope.is_finite().then_some(slope)
-    };
-    let pairs = below.limits.iter().zip(&above.limits);
-    Slope {
-        between,
-        wish: per_unit(below.wish, above.wish),
-        limits: pairs.map(|(below, above)| per_unit(*below, *above)).collect(),
-    }
+    Slope { values, verdicts }
 }
