@@ -220,7 +220,7 @@ fn twin_a_number_of_the_catalogue_is_written_into_the_best() {
          \"servo.thin-12.mass_kg\" = [0.008, 0.016]\n\"body.width_m.middle\" = [0.09, 0.13]\n",
     );
     let out = place.text("out");
-    let mut args = vec!["tune", SEDGE, &search, "--out", &out, "--evaluations", "30", "--json"];
+    let mut args = vec!["tune", SEDGE, &search, "--out", &out, "--evaluations", "90", "--json"];
     args.extend(sets.iter().flat_map(|set| ["--set", set]));
     let output = undulift(&args);
     assert_eq!(output.status.code(), Some(0), "{}", complaint(&output));
