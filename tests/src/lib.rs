@@ -4,6 +4,7 @@
 
 pub mod chains;
 pub mod gliders;
+pub mod landscapes;
 
 use std::path::PathBuf;
 

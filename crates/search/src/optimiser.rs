@@ -15,7 +15,7 @@
 mod cma;
 mod error;
 mod executor;
-mod mirror;
+mod faces;
 mod plan;
 mod score;
 mod search;

@@ -8,7 +8,7 @@ use rayon::prelude::*;
 use serde::{Deserialize, Serialize};
 
 use super::cma::{Axes, Cma};
-use super::mirror::mirrored;
+use super::faces::stopped;
 use super::simplex::{Scorer, Simplex, Tried};
 use super::stall::has_stalled;
 use super::{Objective, OptimiserError, Plan, Score, Strategy};
@@ -33,8 +33,6 @@ pub struct Search {
 #[derive(Debug, Clone, Serialize, Deserialize)]
 struct Best {
     unit: Vec<f64>,
-    /// Before it was mirrored.
-    free: Vec<f64>,
     score: Score,
     /// Principal axes of the candidates among which it was found.
     axes: DMatrix<f64>,
@@ -99,7 +97,7 @@ impl Search {
         self.advance_with(&mut |units| Ok(score_all(units))).expect("an objective always answers")
     }
 
-    /// As [`Search::advance`], with scores from anywhere; on an error nothing is learnt.
+    /// As [`Search::advance`], with scores from anywhere; after an error it can't go on.
     pub(crate) fn advance_with(&mut self, score: &mut Scorer) -> Result<Generation, Error> {
         let mut score = |units: &[Vec<f64>]| -> Result<Vec<Score>, Error> {
             Ok(score(units)?.into_iter().map(Score::or_unjudged).collect())
@@ -134,21 +132,24 @@ impl Search {
         self.best.as_ref().map(|best| (best.unit.as_slice(), best.score))
     }
 
+    /// What the next generation is for; what the last one was, where the search is over.
+    pub fn stage(&self) -> Stage {
+        self.stage
+    }
+
     fn advance_cma(&mut self, score: &mut Scorer) -> Result<Tried, Error> {
         let axes = self.run.axes();
         let steps = self.run.draw(&axes, &mut self.rng);
-        let start = (self.evaluations == 0).then(|| DVector::from_column_slice(&self.plan.start));
+        let start = (self.evaluations == 0).then(|| self.plan.start.clone());
         let n_before = start.iter().len();
-        let drawn = steps.iter().map(|step| self.run.place(step));
-        let free: Vec<DVector<f64>> = start.into_iter().chain(drawn).take(self.left()).collect();
-        let units: Vec<Vec<f64>> = free.iter().map(mirrored).collect();
+        let drawn = steps.iter().map(|step| stopped(&self.run.place(step)));
+        let units: Vec<Vec<f64>> = start.into_iter().chain(drawn).take(self.left()).collect();
         let scores = score(&units)?;
         self.evaluations += units.len();
-        for ((free, unit), score) in free.iter().zip(&units).zip(&scores) {
+        for (unit, score) in units.iter().zip(&scores) {
             if self.is_best(score) {
                 let axes = self.run.spread(&axes, SHORTEST_AXIS);
-                let (unit, free) = (unit.clone(), free.as_slice().to_vec());
-                self.best = Some(Best { unit, free, score: *score, axes });
+                self.best = Some(Best { unit: unit.clone(), score: *score, axes });
             }
         }
         self.learn(&axes, &steps, &scores[n_before..]);
@@ -187,7 +188,9 @@ impl Search {
         let tried = match &mut self.simplex {
             Some(simplex) => simplex.advance(left, score)?,
             None => {
-                let (simplex, tried) = Simplex::new(&best.free, best.score, &best.axes, score)?;
+                let Best { unit, score: best_score, axes } = best;
+                let tolerance = self.plan.cost_tolerance;
+                let (simplex, tried) = Simplex::new(unit, *best_score, axes, tolerance, score)?;
                 self.simplex = Some(simplex);
                 tried
             }
@@ -215,10 +218,5 @@ impl Search {
             Stage::Simplex => 0,
         };
         self.plan.evaluations - kept - self.evaluations
-    }
-
-    /// What the next generation is for; the last one, where the search is over.
-    pub fn stage(&self) -> Stage {
-        self.stage
     }
 }

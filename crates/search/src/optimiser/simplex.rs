@@ -1,18 +1,18 @@
 //! The finish: argmin's Nelder–Mead, from the best found.
 //!
-//! It walks one score at a time, except for its first corners. It is free to leave the box and is
-//! mirrored into it, as candidates are, and it sees scores as one number.
+//! It walks one score at a time, except for its first corners. What it asks beyond the box is stopped
+//! at the faces, as candidates are, and it sees scores as one number.
 
 use std::cell::RefCell;
 use std::collections::VecDeque;
 
 use argmin::core::{CostFunction, Error, IterState, Problem, Solver, State};
 use argmin::solver::neldermead::NelderMead;
-use nalgebra::{DMatrix, DVectorView};
+use nalgebra::{DMatrix, DVector, DVectorView};
 use serde::{Deserialize, Serialize};
 
 use super::Score;
-use super::mirror::mirrored;
+use super::faces::stopped;
 
 /// Scores candidates, in their order.
 pub(crate) type Scorer<'a> = dyn FnMut(&[Vec<f64>]) -> Result<Vec<Score>, Error> + 'a;
@@ -36,26 +36,26 @@ impl std::fmt::Debug for Simplex {
 }
 
 impl Simplex {
-    /// Scores a corner at the end of each axis about the best, all at once.
+    /// Scores a corner at one end of each axis about the best, all at once.
     ///
-    /// - `best`: not mirrored
     /// - `axes`: one a column
+    /// - `tolerance`: standard deviation of the corners' costs below which it is level
     pub(crate) fn new(
         best: &[f64],
         best_score: Score,
         axes: &DMatrix<f64>,
+        tolerance: f64,
         score: &mut Scorer,
     ) -> Result<(Self, Tried), Error> {
-        let best = DVectorView::from_slice(best, best.len());
         let corners: Vec<Vec<f64>> =
-            axes.column_iter().map(|axis| (best + axis).as_slice().to_vec()).collect();
-        let units: Vec<Vec<f64>> = corners.iter().map(mirrored).collect();
-        let scores = score(&units)?;
+            axes.column_iter().map(|axis| farther_end(best, &axis.into_owned())).collect();
+        let scores = score(&corners)?;
         let all = std::iter::once(&best_score).chain(&scores);
         let known = Known(RefCell::new(all.map(Score::as_one_number).collect()));
-        let mut walk = Walk::new([vec![best.as_slice().to_vec()], corners].concat());
+        let all_corners = [vec![best.to_vec()], corners.clone()].concat();
+        let mut walk = Walk::new(all_corners).with_sd_tolerance(tolerance)?;
         walk.init(&mut Problem::new(known), NoState::new())?;
-        Ok((Self { walk }, units.into_iter().zip(scores).collect()))
+        Ok((Self { walk }, corners.into_iter().zip(scores).collect()))
     }
 
     /// One step: one score or two, or one for each corner where it shrinks.
@@ -73,10 +73,20 @@ impl Simplex {
         }
     }
 
-    /// Whether all corners cost the same, to a standard deviation of rounding.
+    /// Whether all corners cost the same, within the tolerance.
     pub(crate) fn is_level(&mut self) -> bool {
         Solver::<Known, NoState>::terminate(&mut self.walk, &NoState::new()).terminated()
     }
+}
+
+/// The end of an axis that is farther away after both are stopped at the faces.
+fn farther_end(middle: &[f64], axis: &DVector<f64>) -> Vec<f64> {
+    let middle = DVectorView::from_slice(middle, middle.len());
+    let end = |sign: f64| DVector::from_vec(stopped(&(middle + sign * axis)));
+    let (one, other) = (end(1.0), end(-1.0));
+    let farther =
+        if other.metric_distance(&middle) > one.metric_distance(&middle) { other } else { one };
+    farther.as_slice().to_vec()
 }
 
 /// Answers in the order of asking.
@@ -107,7 +117,7 @@ impl CostFunction for Desk<'_, '_> {
         if tried.len() == self.left {
             return Err(Error::msg("no evaluation is left"));
         }
-        let unit = mirrored(free);
+        let unit = stopped(free);
         let score = (self.score.borrow_mut())(std::slice::from_ref(&unit))?[0];
         tried.push((unit, score));
         Ok(score.as_one_number())

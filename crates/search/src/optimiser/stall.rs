@@ -53,3 +53,33 @@ fn span(scores: &[Score]) -> f64 {
     // Infinity less infinity would be no number.
     if least == most { 0.0 } else { most - least }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn scores(pairs: &[(f64, f64)]) -> Vec<Score> {
+        pairs.iter().map(|&(cost, violation)| Score { cost, violation }).collect()
+    }
+
+    /// By hand.
+    #[test]
+    fn analytic_span_is_of_one_kind() {
+        assert_eq!(span(&scores(&[(3.0, 0.0), (1.0, 0.0), (2.0, 0.0)])), 2.0);
+        assert_eq!(span(&scores(&[(9.0, 0.5), (1.0, 0.25)])), 0.25);
+        assert_eq!(span(&scores(&[(1.0, 0.0), (1.0, 1e-9)])), f64::INFINITY);
+        assert_eq!(span(&[Score::UNJUDGED, Score::UNJUDGED]), 0.0);
+    }
+
+    /// With two numbers and six candidates, 10 + 30·2/6 = 20 generations are kept, so a run whose
+    /// scores never change stalls at the twentieth.
+    #[test]
+    fn analytic_a_flat_run_stalls_when_its_memory_is_full() {
+        let plan = Plan::new(vec![0.5; 2], 1000, 1);
+        let mut run = Cma::new(&plan.start, plan.step, 6);
+        let axes = run.axes();
+        let mut stalls = |cost| has_stalled(&mut run, &axes, &scores(&[(cost, 0.0); 6]), &plan);
+        assert!(!stalls(2.0));
+        assert_eq!((2..40).find(|_| stalls(1.0)), Some(21));
+    }
+}

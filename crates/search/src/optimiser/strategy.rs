@@ -4,7 +4,7 @@
 ///
 /// # Source
 ///
-/// Hansen, arXiv:1604.00772, table 1, equations 49 to 58, with the negative weights (active
+/// Hansen, arXiv:1604.00772, table 1, equations 48 to 58, with the negative weights (active
 /// covariance matrix adaptation).
 #[derive(Debug, Clone, PartialEq)]
 pub struct Strategy {
