@@ -96,27 +96,41 @@ pub struct Fly {
 
 /// Ask whether the servos can do it: torque, speed, power, heat and battery, joint by joint.
 ///
-/// By default over the flight; on the bench, held out level and straight or in the shape of its
-/// release, at rest. Exit status 1 means that a limit is missed: the torque factor of `[limits]`,
-/// a servo's speed, heat or travel, the battery's or its regulator's current.
+/// By default over the flight; or at rest on the bench: held out level and straight, in the shape
+/// of its release, or in the poses of a file. Exit status 1 means that a limit is missed: the
+/// torque factor of `[limits]`, a servo's speed, heat or travel, the battery's or its regulator's
+/// current. With --launches the single design launch decides it, too.
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift budget designs/reed-16.toml
+  undulift budget designs/reed-16.toml --launches 200 --seed 7
   undulift budget designs/reed-16.toml --case held-out --clamp 8 --load-factor 3
+  undulift budget designs/reed-16.toml --case release --at-s 0.4 --clamp 8
+  undulift budget designs/reed-16.toml --case poses.csv --clamp 8
   undulift budget designs/reed-16.toml --drops 10 --rest-s 60 --histories torques.csv")]
 pub struct Budget {
     /// A design file (TOML).
     #[arg(value_name = "DESIGN")]
     pub design: PathBuf,
 
-    /// What the joints bear: a flight, or the body at rest on the bench.
-    #[arg(long, value_enum, default_value_t = Case::Flight)]
+    /// What the joints bear: flight, held-out, release, or a CSV file of poses.
+    ///
+    /// flight: the design's flight. held-out: level and straight, held by --clamp. release: the
+    /// shape and attitude of its release, held by the grip or --clamp. A file holds one pose a row,
+    /// each held still by --clamp: columns yaw_1_deg, pitch_1_deg and so on for the axes that there
+    /// are, and if you like roll_deg and pitch_deg of the body, which is level without them. Other
+    /// columns are left unread, so that a trace of `fly` serves, too. At most 100000 rows.
+    #[arg(long, value_name = "CASE", default_value = "flight")]
     pub case: Case,
 
     /// The segment that holds the body on the bench, from 1 at the head; in the shape of its
     /// release it is the grip's unless given.
     #[arg(long, value_name = "SEGMENT", value_parser = clap::value_parser!(u32).range(1..=128))]
     pub clamp: Option<u32>,
+
+    /// With --case release: hold the shape that the gait has this long after release, s.
+    #[arg(long, value_name = "T", value_parser = seconds)]
+    pub at_s: Option<f64>,
 
     /// Weights for each newton of weight on the bench, more than 1 for being caught.
     #[arg(long, value_name = "G", default_value_t = 1.0, value_parser = load_factor)]
@@ -128,10 +142,31 @@ pub struct Budget {
     pub drops: u32,
 
     /// Rest between drops, s.
-    #[arg(long, value_name = "S", default_value_t = 0.0, value_parser = rest_s)]
+    #[arg(long, value_name = "S", default_value_t = 0.0, value_parser = seconds)]
     pub rest_s: f64,
 
-    /// Write joint torques (rotor inertia left out) and speeds of the flight as CSV.
+    /// Make the budget of this many launches more, each a little different.
+    ///
+    /// What differs stands in the design's `[spread]`, as for `undulift fly --launches`. At most
+    /// 100000.
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(1..=100_000))]
+    pub launches: Option<u32>,
+
+    /// Seed of the launches: the same seed gives the same launches.
+    #[arg(long, value_name = "S", default_value_t = 1, requires = "launches")]
+    pub seed: u64,
+
+    /// Threads to fly the launches on [default: all cores]; the result is the same.
+    #[arg(long, value_name = "T", requires = "launches",
+        value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub threads: Option<u16>,
+
+    /// Add a table of what each hinge carries at most.
+    #[arg(long)]
+    pub hinges: bool,
+
+    /// Write joint torques (rotor inertia left out), speeds and what the hinges carry along the
+    /// flight as CSV.
     #[arg(long, value_name = "FILE.csv")]
     pub histories: Option<PathBuf>,
 
@@ -154,7 +189,7 @@ pub struct Budget {
 }
 
 /// What the joints bear.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+#[derive(Debug, Clone, PartialEq, Eq)]
 pub enum Case {
     /// The design's flight.
     Flight,
@@ -162,6 +197,21 @@ pub enum Case {
     HeldOut,
     /// The shape and attitude of its release, held by the grip or --clamp.
     Release,
+    /// Poses of a file, held by --clamp.
+    File(PathBuf),
+}
+
+impl std::str::FromStr for Case {
+    type Err = std::convert::Infallible;
+
+    fn from_str(text: &str) -> Result<Self, Self::Err> {
+        Ok(match text {
+            "flight" => Self::Flight,
+            "held-out" => Self::HeldOut,
+            "release" => Self::Release,
+            file => Self::File(file.into()),
+        })
+    }
 }
 
 /// Choose servos of a catalogue: every joint that the design drives gets one, and what can do it is
@@ -332,7 +382,7 @@ fn load_factor(text: &str) -> Result<f64, String> {
     within(text, [-1000.0, 1000.0])
 }
 
-fn rest_s(text: &str) -> Result<f64, String> {
+fn seconds(text: &str) -> Result<f64, String> {
     within(text, [0.0, 1e6])
 }
 

@@ -157,7 +157,8 @@ impl Launches {
     }
 }
 
-fn counted(launches: usize) -> String {
+/// So many launches.
+pub fn counted(launches: usize) -> String {
     if launches == 1 { "1 launch".into() } else { format!("{launches} launches") }
 }
 

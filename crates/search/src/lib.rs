@@ -1,4 +1,5 @@
-//! Choosing for a design: servos of a catalogue, and what its numbers are best set to.
+//! Choosing for a design: what it asks of its servos, which of a catalogue can do it, and what its
+//! numbers are best set to.
 //!
 //! For servos, every candidate is flown with its servos' masses in the chain, and its budget made
 //! from that flight. Of one kind of servo for yaw and one for pitch, all pairs are flown. Of mixes,
@@ -10,6 +11,7 @@
 //! Numbers are set by [`tuning`], which asks the [`optimiser`] what to try next. All is the same on
 //! any number of threads. Nothing here opens a file or prints.
 
+mod asked;
 mod bench;
 mod choice;
 mod error;
@@ -19,12 +21,15 @@ mod mixes;
 pub mod optimiser;
 mod sizing;
 mod texts;
+mod travel;
 pub mod tuning;
 mod want;
 
+pub use asked::{Asked, Drops, asked_at_rest, asked_in_flight};
 pub use bench::Candidate;
 pub use choice::{Choice, Split, driven};
 pub use error::SizingError;
 pub use sizing::{Sized, Step, size};
-pub use texts::{with_catalogue, with_servos};
+pub use texts::with_servos;
+pub use travel::{BeyondTravel, beyond_travel};
 pub use want::Want;

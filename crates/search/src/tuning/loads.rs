@@ -1,9 +1,12 @@
-//! The budget of a design that has flown, from no more than it needs.
+//! The budget of a design that has flown, from no more than it needs: hinges, energies and joint
+//! travel, which take as long as the flight, are left out.
 
 use undulift_chain::{AxisOf, joint_axes};
 use undulift_design::Design;
 use undulift_flight::{Flight, FlightError, loads_at};
-use undulift_servo::{AxisHistory, Budget, Conditions, Histories, Place, Servo, budget};
+use undulift_servo::{AxisHistory, Budget, Histories, Servo, budget};
+
+use crate::asked::{Drops, conditions, place, servo_idx};
 
 /// - `every_s`: between the instants that it is made from
 /// - returns none where a servo, the battery or the motion can't be reckoned with
@@ -24,13 +27,7 @@ pub(crate) fn budget_of(
         }
     }
     let servos: Vec<Servo> = design.servos.values().cloned().collect();
-    let conditions = Conditions {
-        battery: design.battery.as_ref().map(|battery| battery.supply.clone()),
-        air_temperature_k: design.glider.air.temperature_k,
-        torque_factor: design.limits.torque_factor,
-        ..Conditions::default()
-    };
-    Ok(budget(&servos, &histories, &conditions).ok())
+    Ok(budget(&servos, &histories, &conditions(design, Drops::default())).ok())
 }
 
 /// Equal steps, and the end.
@@ -41,13 +38,9 @@ fn times_s(end_s: f64, every_s: f64) -> Vec<f64> {
 
 /// Without anything in their columns yet.
 fn axes(design: &Design) -> Vec<AxisHistory> {
-    let servo_of = |of: &AxisOf| {
-        let name = design.servo_names.of(of.joint_idx, of.axis)?;
-        design.servos.keys().position(|known| known == name)
-    };
     let axis = |of: &AxisOf| AxisHistory {
-        place: Place { joint: of.joint_idx + 1, axis: of.axis.word() },
-        servo_idx: servo_of(of),
+        place: place(of),
+        servo_idx: servo_idx(design, of),
         joint_torque_nm: Vec::new(),
         rate_rad_s: Vec::new(),
         acceleration_rad_s2: Vec::new(),
