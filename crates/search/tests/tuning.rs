@@ -205,3 +205,22 @@ fn a_wish_that_nothing_moves_is_refused() {
     let refused = judge_of(two).unwrap_err();
     assert_eq!(refused, TuningError::SeveralWishes { wishes: 2 });
 }
+
+/// Every demo search is of its design, and asks for a glide beside what it wants.
+#[test]
+fn demo_searches_are_of_their_designs() {
+    for name in ["reed-16", "sedge-10", "withy-24", "pair-wave"] {
+        let design = undulift_design::read(&designs(&format!("{name}.toml")), &[]).unwrap();
+        let tuning = Tuning::read(&designs(&format!("search-{name}.toml")), &design).unwrap();
+        let judge = Judge::new(&design, &tuning, 1, Settings::default()).unwrap();
+        for key in ["last_cycle_glide_ratio", "forward_airspeed_m_s"] {
+            let asked = |limit: &Limit| limit.key == key && limit.bound.value() > 0.0;
+            assert!(judge.limits().iter().any(asked), "{name} {key}");
+        }
+        // All start inside of their ends.
+        let own = judge.varied().iter().map(|one| one.knob.value(&design));
+        for (own, start) in own.zip(judge.values(&judge.start())) {
+            assert_relative_eq!(own, start, max_relative = 1e-9);
+        }
+    }
+}
