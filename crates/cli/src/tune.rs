@@ -9,7 +9,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
-use anyhow::{Context, bail};
+use anyhow::{Context, anyhow, bail};
 use undulift_design::{Design, Override, Tuning};
 use undulift_flight::Settings;
 use undulift_search::tuning::{Closing, Ended, Judge, Run, closing};
@@ -130,10 +130,11 @@ fn search(set: Set, as_json: bool) -> anyhow::Result<Outcome> {
     let mut keeping = Keeping { folder, judge: &judge, record: &record, bar: &bar };
     let ended = run.go_on(&judge, &mut keeping, &|| stopped.load(Ordering::Relaxed));
     let Keeping { folder, .. } = keeping;
-    let ended = ended.with_context(|| {
-        format!(
-            "what was found before is kept; make room, then go on with: undulift tune --resume {}",
-            folder.path().display()
+    let ended = ended.map_err(|error| {
+        let shown = folder.path().display();
+        anyhow!(
+            "{error:#}; all that was found before is kept: when that is mended, go on with: \
+             undulift tune --resume {shown}"
         )
     })?;
     if ended == Ended::Stopped {

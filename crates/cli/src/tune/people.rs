@@ -133,17 +133,27 @@ fn limit_in_words(limit: &Limit) -> String {
 fn slopes(judge: &Judge, closing: &Closing) -> String {
     let key = &judge.wish().key;
     let mut text = format!("  How {key} moves about there, each number alone by a step\n");
+    let mut missing = false;
     for (idx, (one, slope)) in judge.varied().iter().zip(&closing.slopes).enumerate() {
         let own = closing.after.values[idx];
-        let [less, more] = [0, 1].map(|side| {
-            let by = short((slope.values[side] - own).abs());
-            match (slope.verdicts[side].wish, closing.after.wish) {
-                _ if slope.values[side] == own => "at the end".into(),
-                (Some(wish), Some(best)) => format!("{:+.4} for {by}", wish - best),
-                _ => format!("none for {by}"),
+        let sides = [(0, "less", "at its least"), (1, "more", "at its most")];
+        let [less, more] = sides.map(|(side, word, end)| {
+            let (value, verdict) = (slope.values[side], &slope.verdicts[side]);
+            if value == own {
+                return end.to_owned();
             }
+            let moved = match (verdict.wish, closing.after.wish) {
+                (Some(wish), Some(best)) => format!("{:+.4}", wish - best),
+                _ => "none".into(),
+            };
+            let mark = if verdict.is_feasible() { "" } else { "*" };
+            missing |= !verdict.is_feasible();
+            format!("{moved}{mark} at {} {word}", short((value - own).abs()))
         });
-        let _ = writeln!(text, "    {:<30} {less:>22} less {more:>22} more", one.knob.key());
+        let _ = writeln!(text, "    {:<30}{less:>25}{more:>27}", one.knob.key());
+    }
+    if missing && closing.after.is_feasible() {
+        text.push_str("    * misses what is required\n");
     }
     text
 }
