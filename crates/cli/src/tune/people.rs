@@ -152,7 +152,7 @@ fn slopes(judge: &Judge, closing: &Closing) -> String {
         });
         let _ = writeln!(text, "    {:<30}{less:>25}{more:>27}", one.knob.key());
     }
-    if missing && closing.after.is_feasible() {
+    if missing {
         text.push_str("    * misses what is required\n");
     }
     text
@@ -160,9 +160,6 @@ fn slopes(judge: &Judge, closing: &Closing) -> String {
 
 /// What holds the best back.
 fn holding(judge: &Judge, closing: &Closing) -> String {
-    if !closing.after.is_feasible() {
-        return String::new();
-    }
     let mut text = if closing.active.is_empty() {
         "  No end and no limit holds it back\n".to_owned()
     } else {
@@ -214,7 +211,8 @@ pub fn held_in_words(judge: &Judge, active: &Active) -> String {
 /// Says where the best stands on a ridge too narrow for a robot.
 pub fn tell_ridge(told: &Told<'_>) {
     let Told { judge, closing, .. } = told;
-    let Some(best) = closing.after.wish.filter(|_| judge.launches() == 1) else { return };
+    let asked = closing.after.is_feasible() && judge.launches() == 1;
+    let Some(best) = closing.after.wish.filter(|_| asked) else { return };
     let loss = |wish: f64| {
         let by = if judge.wish().maximise { best - wish } else { wish - best };
         by / best.abs()
@@ -226,8 +224,8 @@ pub fn tell_ridge(told: &Told<'_>) {
     if loss > RIDGE {
         terminal::tell_hint(&format!(
             "the best stands on a narrow ridge: a hundredth of the range of {} takes {:.0} % of it \
-             away; to find one that launches and settings may miss, add robust = {{ launches = 8, \
-             take = \"worst\" }}",
+             away; to find one that launches and settings may miss, add robust = {{ launches = 24, \
+             take = \"q10\" }}",
             judge.varied()[idx].knob.key(),
             100.0 * loss
         ));
@@ -279,10 +277,10 @@ fn short(value: f64) -> String {
     let size = value.abs();
     if value == 0.0 || !value.is_finite() {
         format!("{value}")
-    } else if !(1e-3..1e6).contains(&size) {
+    } else if !(1e-5..1e6).contains(&size) {
         format!("{value:.3e}")
     } else {
-        let digits = (4 - size.log10().floor() as i32).clamp(0, 7) as usize;
+        let digits = (4 - size.log10().floor() as i32).clamp(0, 9) as usize;
         let shown = format!("{value:.digits$}");
         let shown = if shown.contains('.') { shown.trim_end_matches('0') } else { &shown };
         shown.trim_end_matches('.').to_owned()

@@ -17,7 +17,7 @@ const LOCAL_STEP: f64 = 0.05;
 
 /// Evaluations of such a search for each number that varies, and the fewest and most in all.
 const LOCAL_EACH: usize = 40;
-const LOCAL_ALL: [usize; 2] = [100, 400];
+const LOCAL_ALL: [usize; 2] = [60, 400];
 
 /// What the best of a search is worth.
 #[derive(Debug, Clone, PartialEq)]
