@@ -4,7 +4,7 @@ use approx::assert_relative_eq;
 use nalgebra::{Quaternion, UnitQuaternion, Vector3};
 use serde::Deserialize;
 use undulift_chain::{Chain, Joint, PointMass, Segment, Shape};
-use undulift_dynamics::{Articulated, Drive, Held, JointMotion, Outside, joint_loads};
+use undulift_dynamics::{Articulated, Drive, Held, JointMotion, Mechanics, Outside, joint_loads};
 use undulift_flight::{Pose, Settings, bench_loads, fly, histories};
 use undulift_gait::{Gait, GaitTable, Interpolation, Pattern, Start};
 use undulift_tests::chains::{Case, cases};
@@ -145,8 +145,11 @@ fn twin_forward_dynamics_inverts_the_rigid_body_library() {
                 })
                 .collect();
             let mut articulated = Articulated::new(&posed.chain);
+            let mechanics = Mechanics::new(&posed.chain);
+            let mut frames = mechanics.room();
+            mechanics.frames(&posed.angles_rad, &posed.rates_rad_s, &mut frames);
             let head = articulated.solve(
-                &posed.angles_rad,
+                &frames,
                 &posed.rates_rad_s,
                 &drives,
                 posed.head_rad_s,

@@ -192,7 +192,7 @@ fn analytic_wind_is_a_moving_frame() {
     windy.wind_world_m_s = wind;
     let mut equations = [&still, &windy].map(|glider| Equations::new(glider).unwrap());
     let state = release(&mut equations[0], &still.launch, 0.0).unwrap();
-    let mut faster = state;
+    let mut faster = state.clone();
     faster.velocity_m_s += wind;
     let at = Instant::at(0.37);
     let [still, windy] = [equations[0].air_loads(at, &state), equations[1].air_loads(at, &faster)];

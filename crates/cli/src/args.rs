@@ -3,6 +3,8 @@ use std::path::PathBuf;
 use clap::{Parser, Subcommand};
 use undulift_design::Override;
 
+use crate::driven::FaultAsked;
+
 /// Flies snake-inspired gliding robots before anyone builds them.
 ///
 /// A design file describes a chain of segments joined by servos, the wave that runs down it and how
@@ -30,13 +32,14 @@ pub enum Command {
 
 /// Fly designs from release to the floor, and say how it went.
 ///
-/// Joints follow the gait exactly. Exit status 1 means that a flight did not land, rolled or pitched
+/// Joints follow the gait exactly, unless --joints driven lets their servos turn them. Exit status 1 means that a flight did not land, rolled or pitched
 /// beyond `[limits] tilt_deg`, or asked a joint to go beyond its travel.
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift fly designs/reed-16.toml
   undulift fly designs/reed-16.toml --set gait.frequency_hz=1.0 --json
   undulift fly designs/reed-16.toml --trace reed-16.csv --every-ms 2
+  undulift fly designs/reed-16.toml --joints driven --fault 8:yaw=limp@0.5
   undulift fly designs/reed-16.toml --launches 200 --seed 7 --csv launches.csv")]
 pub struct Fly {
     /// Design files (TOML).
@@ -67,6 +70,18 @@ pub struct Fly {
     #[arg(long)]
     pub through_inversion: bool,
 
+    /// What turns the joints.
+    #[arg(long, value_enum, default_value_t = Joints::Commanded)]
+    pub joints: Joints,
+
+    /// Let an axis fail, such as 5:yaw=limp or 5:yaw=locked@0.8; may be given again.
+    ///
+    /// JOINT counts from 1 at the head, AXIS is yaw or pitch. A limp axis turns freely, a locked one
+    /// stops at once and holds its angle. SECONDS count from release, where it fails if none are
+    /// given. End stops are left out: an axis that turns beyond its travel is told.
+    #[arg(long = "fault", value_name = "JOINT:AXIS=limp|locked[@SECONDS]")]
+    pub faults: Vec<FaultAsked>,
+
     /// Fly it this many times more, each launch a little different.
     ///
     /// What differs stands in the design's `[spread]`; without one, speed, attitude, spin and phase
@@ -94,6 +109,16 @@ pub struct Fly {
     pub sets: Vec<Override>,
 }
 
+/// What turns the joints.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+pub enum Joints {
+    /// They follow the gait exactly, whatever torque that takes.
+    Commanded,
+    /// Their servos do as well as they can, on the battery's voltage, with the commands of
+    /// `[firmware] update_hz`; a joint without a servo follows the gait.
+    Driven,
+}
+
 /// Ask whether the servos can do it: torque, speed, power, heat and battery, joint by joint.
 ///
 /// By default over the flight; or at rest on the bench: held out level and straight, in the shape
@@ -103,10 +128,11 @@ pub struct Fly {
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift budget designs/reed-16.toml
-  undulift budget designs/reed-16.toml --launches 200 --seed 7
+  undulift budget designs/reed-16.toml --launches 50 --seed 7
   undulift budget designs/reed-16.toml --case held-out --clamp 8 --load-factor 3
   undulift budget designs/reed-16.toml --case release --at-s 0.4 --clamp 8
-  undulift budget designs/reed-16.toml --case poses.csv --clamp 8
+  undulift fly designs/reed-16.toml --trace poses.csv &&
+    undulift budget designs/reed-16.toml --case poses.csv --clamp 8
   undulift budget designs/reed-16.toml --drops 10 --rest-s 60 --histories torques.csv")]
 pub struct Budget {
     /// A design file (TOML).

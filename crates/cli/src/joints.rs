@@ -12,6 +12,8 @@ use crate::terminal;
 pub enum Missed {
     /// Further than its travel.
     Travel(BeyondTravel),
+    /// It turned further than that by itself.
+    Turned(BeyondTravel),
     /// The same in a pose of a file, its row from 1.
     Pose { of: AxisOf, angle_rad: f64, travel_rad: f64, row: usize },
     /// Faster than its servo turns without load.
@@ -76,7 +78,9 @@ impl Missed {
     /// Which axis.
     pub fn of(&self) -> AxisOf {
         match self {
-            Self::Travel(BeyondTravel { peak, .. }) | Self::Speed { peak, .. } => peak.of,
+            Self::Travel(BeyondTravel { peak, .. })
+            | Self::Turned(BeyondTravel { peak, .. })
+            | Self::Speed { peak, .. } => peak.of,
             Self::Pose { of, .. } => *of,
         }
     }
@@ -85,7 +89,7 @@ impl Missed {
     pub fn row(&self) -> Option<usize> {
         match self {
             Self::Pose { row, .. } => Some(*row),
-            Self::Travel(_) | Self::Speed { .. } => None,
+            Self::Travel(_) | Self::Turned(_) | Self::Speed { .. } => None,
         }
     }
 
@@ -97,7 +101,7 @@ impl Missed {
     /// What is asked over what can be done.
     fn excess(&self) -> f64 {
         match self {
-            Self::Travel(beyond) => beyond.times_over(),
+            Self::Travel(beyond) | Self::Turned(beyond) => beyond.times_over(),
             Self::Pose { angle_rad, travel_rad, .. } => angle_rad / travel_rad,
             Self::Speed { peak, no_load_rad_s, .. } => peak.rate_rad_s / no_load_rad_s,
         }
@@ -107,6 +111,15 @@ impl Missed {
     pub fn in_words(&self) -> String {
         match self {
             Self::Travel(beyond) => beyond.to_string(),
+            Self::Turned(BeyondTravel { peak, travel_rad }) => format!(
+                "joint {} turns to {:.1}° of {} at t = {:.2} s, beyond its travel of {:.1}°, where \
+                 an end stop, which is left out here, would stop it",
+                peak.of.joint_idx + 1,
+                peak.angle_rad.to_degrees(),
+                peak.of.axis.word(),
+                peak.angle_at_s,
+                travel_rad.to_degrees()
+            ),
             Self::Pose { of, angle_rad, travel_rad, row } => format!(
                 "joint {} is held at {:.1}° of {} in row {row}, beyond its travel of {:.1}°",
                 of.joint_idx + 1,

@@ -5,10 +5,10 @@ use std::path::Path;
 use serde_json::{Map, Value, json};
 use undulift_design::quantities::{Quantity, of_flight};
 use undulift_design::{Design, Scatter};
-use undulift_flight::{Bands, End, FlightError, Settings, Spread, Summary, fly, summary};
+use undulift_flight::{Bands, End, FlightError, Settings, Spread, Summary, fly_driven, summary};
 
-use crate::args::Fly;
-use crate::{many, people, trace_file, whole_file};
+use crate::args::{Fly, Joints};
+use crate::{driven, many, people, trace_file, whole_file};
 
 /// Many launches of a design, flown.
 pub struct Launches {
@@ -41,9 +41,14 @@ pub fn fly_all(
 ) -> anyhow::Result<Launches> {
     let scatter = Scatter::of(design);
     let threads = args.threads.map_or(0, usize::from);
+    // Servos and battery may differ from launch to launch, what fails doesn't.
+    let faults = driven::drives(args, design)?.faults;
+    let driven = args.joints == Joints::Driven;
     let flown = many::each(n_launches, threads, &design.name, |launch| {
-        let (Design { glider, .. }, drawn) = scatter.launch(design, args.seed, launch);
-        let result = fly(&glider, settings).map(|mut flight| summary(&glider, &mut flight));
+        let (changed, drawn) = scatter.launch(design, args.seed, launch);
+        let drives = changed.drives(driven, faults.clone());
+        let flight = fly_driven(&changed.glider, &drives, settings);
+        let result = flight.map(|mut flight| summary(&changed.glider, &mut flight));
         Launched { drawn, result }
     })?;
     Ok(Launches::new(design, args.seed, scatter.columns(), flown))

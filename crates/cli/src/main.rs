@@ -7,6 +7,7 @@ mod args;
 mod budget;
 mod check;
 mod doubts;
+mod driven;
 mod flown;
 mod fly;
 mod joints;
@@ -49,11 +50,18 @@ fn complete(shell: clap_complete::Shell) -> anyhow::Result<Outcome> {
 enum Refused {
     Design(DesignErrors),
     Flight { name: String, error: FlightError },
+    Asked(anyhow::Error),
 }
 
 impl From<DesignErrors> for Refused {
     fn from(errors: DesignErrors) -> Self {
         Self::Design(errors)
+    }
+}
+
+impl From<anyhow::Error> for Refused {
+    fn from(error: anyhow::Error) -> Self {
+        Self::Asked(error)
     }
 }
 
@@ -66,6 +74,7 @@ impl Refused {
         match self {
             Self::Design(errors) => terminal::tell_diagnostic(errors),
             Self::Flight { name, error } => terminal::tell_error(&format!("{name}: {error}")),
+            Self::Asked(error) => terminal::tell_error(&format!("{error:#}")),
         }
     }
 }

@@ -16,6 +16,7 @@ mod catalogue;
 mod columns;
 mod design;
 mod document;
+mod drives;
 mod error;
 mod fast;
 mod files;

@@ -47,16 +47,18 @@ fn newton_euler(bencher: Bencher, n: usize) {
     bencher.bench_local(|| joint_loads(&chain, divan::black_box(motion), held, gravity, &outside));
 }
 
-/// Accelerations from torques.
+/// Accelerations from torques, frames given.
 #[divan::bench(args = SIZES, sample_size = 50)]
 fn articulated(bencher: Bencher, n: usize) {
     let (chain, angles_rad) = chain(n);
     let mut articulated = Articulated::new(&chain);
+    let mechanics = Mechanics::new(&chain);
+    let mut frames = mechanics.room();
+    mechanics.frames(&angles_rad, &angles_rad, &mut frames);
     let drives = vec![Drive::Torque { torque_nm: 0.1, rotor_kg_m2: 1e-4 }; angles_rad.len()];
     let outside = vec![Outside::default(); n];
     let (head, gravity) = (Vector3::new(0.1, 0.2, 0.3), Vector3::new(0.0, 0.0, -9.8));
     bencher.bench_local(|| {
-        let angles_rad = divan::black_box(&angles_rad);
-        articulated.solve(angles_rad, angles_rad, &drives, head, gravity, &outside)
+        articulated.solve(&frames, divan::black_box(&angles_rad), &drives, head, gravity, &outside)
     });
 }

@@ -37,7 +37,7 @@ pub struct Centroidal {
 /// Masses of four neighbouring segments, side by side; lanes past the tail have none.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub(crate) struct FourInertials {
-    mass_kg: f64x4,
+    pub(crate) mass_kg: f64x4,
     centre_m: Triple<f64x4>,
     /// Second moments ∫r rᵀ dm about the segment's own centre, segment axes.
     second: Symmetric<f64x4>,
@@ -187,9 +187,26 @@ impl Mechanics {
 }
 
 impl FourInertials {
+    /// Second moments about the front ends in root axes.
+    ///
+    /// - `arm_m`: from there to the centres of mass
+    #[inline(always)]
+    pub(crate) fn about_front(&self, at: &FourFrames, arm_m: Triple<f64x4>) -> Symmetric<f64x4> {
+        let moment = arm_m.times(self.mass_kg);
+        let own = self.turned(at);
+        Symmetric {
+            xx: own.xx + moment.x * arm_m.x,
+            yy: own.yy + moment.y * arm_m.y,
+            zz: own.zz + moment.z * arm_m.z,
+            xy: own.xy + moment.x * arm_m.y,
+            xz: own.xz + moment.x * arm_m.z,
+            yz: own.yz + moment.y * arm_m.z,
+        }
+    }
+
     /// From the front end to the centre of mass in root axes, m.
     #[inline(always)]
-    fn arm_m(&self, at: &FourFrames) -> Triple<f64x4> {
+    pub(crate) fn arm_m(&self, at: &FourFrames) -> Triple<f64x4> {
         at.x.times(self.centre_m.x) + at.y.times(self.centre_m.y) + at.z.times(self.centre_m.z)
     }
 }
@@ -215,6 +232,21 @@ impl Sums {
         second.xy += own.xy + moment.x * place_m.y;
         second.xz += own.xz + moment.x * place_m.z;
         second.yz += own.yz + moment.y * place_m.z;
+    }
+}
+
+impl<T: Number> std::ops::Add for Symmetric<T> {
+    type Output = Self;
+    #[inline(always)]
+    fn add(self, other: Self) -> Self {
+        Self {
+            xx: self.xx + other.xx,
+            yy: self.yy + other.yy,
+            zz: self.zz + other.zz,
+            xy: self.xy + other.xy,
+            xz: self.xz + other.xz,
+            yz: self.yz + other.yz,
+        }
     }
 }
 
@@ -244,6 +276,20 @@ impl<T: Number> Symmetric<T> {
 }
 
 impl Symmetric<f64x4> {
+    /// Takes one lane.
+    #[inline(always)]
+    pub(crate) fn lane(&self, lane: usize) -> Symmetric<f64> {
+        let of = |four: &f64x4| four.as_array_ref()[lane];
+        Symmetric {
+            xx: of(&self.xx),
+            yy: of(&self.yy),
+            zz: of(&self.zz),
+            xy: of(&self.xy),
+            xz: of(&self.xz),
+            yz: of(&self.yz),
+        }
+    }
+
     fn over_lanes(self) -> Symmetric<f64> {
         Symmetric {
             xx: self.xx.reduce_add(),
@@ -270,6 +316,17 @@ impl Symmetric<f64> {
         };
         let determinant = self.xx * cofactors.xx + self.xy * cofactors.xy + self.xz * cofactors.xz;
         cofactors.times(right).times(1.0 / determinant)
+    }
+
+    /// Takes away u vᵀ, which must be symmetric.
+    #[inline(always)]
+    pub(crate) fn subtract_outer(&mut self, u: Triple<f64>, v: Triple<f64>) {
+        self.xx -= u.x * v.x;
+        self.yy -= u.y * v.y;
+        self.zz -= u.z * v.z;
+        self.xy -= u.x * v.y;
+        self.xz -= u.x * v.z;
+        self.yz -= u.y * v.z;
     }
 
     /// All nine entries.

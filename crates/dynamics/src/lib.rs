@@ -10,6 +10,7 @@ mod articulated;
 mod centroidal;
 mod frames;
 mod newton_euler;
+mod reduced;
 
 pub use articulated::{Articulated, Drive, HeadAcceleration};
 pub use centroidal::{Centroidal, Symmetric};

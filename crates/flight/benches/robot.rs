@@ -5,8 +5,9 @@ use undulift_aero::{Air, Scales, Section, SkinFriction};
 use undulift_chain::{
     Carried, Chain, Joint, PointMass, Profile, ProfileShape, Segment, line_density_masses,
 };
-use undulift_flight::{Glider, Launch};
+use undulift_flight::{Drives, Glider, Launch, Mode};
 use undulift_gait::{Gait, Pattern, Start, Taper, Wave};
+use undulift_servo::{Battery, CellVoltage, Endurance, PositionLoop, Pulse, Servo};
 
 /// Cut into `n` segments; servo masses are shared out so that the total stays.
 pub fn robot(n: usize) -> Glider {
@@ -74,4 +75,42 @@ fn gait() -> Gait {
         taper: Taper::default(),
     };
     Gait { pattern: Pattern::Wave(wave), phase_rad: 0.0, start: Start::Running }
+}
+
+/// The same robot's joints turned by servos of two kinds, on a battery, at 50 commands a second.
+pub fn drives(n: usize) -> Drives {
+    let servo =
+        |mass_kg, stall_torque_nm, no_load_speed_rad_s, rotor_inertia_at_output_kg_m2| Servo {
+            name: "invented".into(),
+            mass_kg,
+            at_voltage_v: 6.0,
+            stall_torque_nm,
+            no_load_speed_rad_s,
+            stall_current_a: 3.5 * stall_torque_nm,
+            no_load_current_a: 0.15,
+            idle_current_a: 0.006,
+            gear_efficiency: None,
+            rotor_inertia_at_output_kg_m2,
+            endurance: Endurance::Unknown,
+            pulse: Pulse::default(),
+            position_loop: PositionLoop::default(),
+            price: None,
+        };
+    let driven = |servo_idx| std::iter::repeat_n(Mode::Driven { servo_idx }, n - 1);
+    Drives {
+        modes: driven(0).chain(driven(1)).collect(),
+        faults: Vec::new(),
+        servos: vec![servo(0.034, 1.2, 10.8, 4e-4), servo(0.012, 0.35, 10.5, 4e-5)],
+        battery: Some(Battery {
+            cells: 2,
+            capacity_coulomb: 1620.0,
+            cell_resistance_ohm: 0.015,
+            cell_voltage: CellVoltage::default(),
+            current_limit_a: None,
+            charge: 1.0,
+            regulator: None,
+            electronics_w: 1.0,
+        }),
+        update_hz: Some(50.0),
+    }
 }

@@ -2,12 +2,12 @@
 
 use divan::Bencher;
 use undulift_flight::{
-    Differs, Equations, Settings, State, draw, fly, fly_launches, release, summary,
+    Differs, Equations, Settings, State, draw, fly, fly_driven, fly_launches, release, summary,
 };
 use undulift_gait::{Commands, Instant};
 
 mod robot;
-use robot::robot;
+use robot::{drives, robot};
 
 const SIZES: [usize; 4] = [8, 16, 32, 64];
 
@@ -44,7 +44,7 @@ fn part_gait(bencher: Bencher, n: usize) {
 #[divan::bench(args = SIZES, sample_size = 500)]
 fn part_gait_and_mechanics(bencher: Bencher, n: usize) {
     let (mut equations, at, _) = in_flight(n);
-    bencher.bench_local(|| equations.shape(divan::black_box(at)));
+    bencher.bench_local(|| equations.shape(divan::black_box(at), &[]));
 }
 
 /// From a glider to where it landed.
@@ -54,7 +54,14 @@ fn flight(bencher: Bencher, n: usize) {
     bencher.bench_local(|| fly(&glider, &Settings::default()).expect("flies"));
 }
 
-/// The same with what it comes to.
+/// The same with joints that servos turn.
+#[divan::bench(args = SIZES, sample_count = 20)]
+fn driven_flight(bencher: Bencher, n: usize) {
+    let (glider, drives) = (robot(n), drives(n));
+    bencher.bench_local(|| fly_driven(&glider, &drives, &Settings::default()).expect("flies"));
+}
+
+/// A commanded flight with what it comes to.
 #[divan::bench]
 fn flight_and_summary(bencher: Bencher) {
     let glider = robot(16);

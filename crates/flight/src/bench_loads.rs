@@ -96,7 +96,8 @@ impl<'a> Clamped<'a> {
         let launch = &self.glider.launch;
         let attitude = Attitude::from_angles(launch.roll_rad, launch.pitch_rad, launch.yaw_rad);
         let at = Instant::at(at_s);
-        let root_to_world = attitude.body_to_world * self.equations.body_in_root(at).transpose();
+        let root_to_world =
+            attitude.body_to_world * self.equations.body_in_root(at, &[]).transpose();
         let axes = self.equations.commands().axes().len();
         (self.equations.motion(at).angles_rad[..axes].to_vec(), root_to_world)
     }

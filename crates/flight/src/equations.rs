@@ -1,4 +1,6 @@
-//! Equations of motion of a chain whose joints follow their commands.
+//! Equations of motion: how a chain turns, what the air does to it, how its state changes.
+//!
+//! Axes follow their commands but for those that the state itself carries.
 
 use nalgebra::{Matrix3, Vector3};
 use undulift_aero::STANDARD_GRAVITY_M_S2;
@@ -9,7 +11,7 @@ use undulift_lanes::{LANES, Triple, f64x4, lanes};
 
 use crate::attitude::{BodyFrame, BodyRoom};
 use crate::loads::{AirLoads, StripAir, Through};
-use crate::state::{Scaled, Units};
+use crate::state::{LooseAxis, Scaled, Units};
 use crate::{Attitude, FlightError, Glider, State, Wrench};
 
 /// A glider laid out for the inner loop, with the room for one evaluation.
@@ -28,8 +30,16 @@ pub struct Equations {
 #[derive(Debug, Clone)]
 struct Room {
     motion: Motion,
+    joints: Joints,
     frames: Frames,
     body: BodyRoom,
+}
+
+/// Angles and rates of joints of which some don't follow their commands, by axis.
+#[derive(Debug, Clone)]
+struct Joints {
+    angles_rad: Vec<f64>,
+    rates_rad_s: Vec<f64>,
 }
 
 /// Boxes of four neighbouring segments: half their sides, and what lifts lanes past the tail out of
@@ -60,7 +70,12 @@ impl Equations {
         let commands = Commands::new(&glider.gait, &glider.chain)?;
         let mechanics = Mechanics::new(&glider.chain);
         let body = BodyFrame::new(&glider.chain);
-        let room = Room { motion: commands.room(), frames: mechanics.room(), body: body.room() };
+        let motion = commands.room();
+        let joints = Joints {
+            angles_rad: motion.angles_rad.clone(),
+            rates_rad_s: motion.rates_rad_s.clone(),
+        };
+        let room = Room { motion, joints, frames: mechanics.room(), body: body.room() };
         Ok(Self {
             commands,
             mechanics,
@@ -103,13 +118,38 @@ impl Equations {
         &self.room.motion
     }
 
-    /// First stage: joint commands, frames and centroidal sums of an instant.
+    /// First stage: joint motion, frames and centroidal sums of an instant.
+    ///
+    /// - `loose`: axes that don't follow their commands
     #[inline]
-    pub fn shape(&mut self, at: Instant) -> Centroidal {
-        self.commands.rates(at, &mut self.room.motion);
-        let motion = &self.room.motion;
-        self.mechanics.frames(&motion.angles_rad, &motion.rates_rad_s, &mut self.room.frames);
+    pub fn shape(&mut self, at: Instant, loose: &[LooseAxis]) -> Centroidal {
+        self.place_segments(at, loose);
         self.mechanics.centroidal(&self.room.frames)
+    }
+
+    #[inline]
+    fn place_segments(&mut self, at: Instant, loose: &[LooseAxis]) {
+        // Where every axis is loose nobody asks what it was told.
+        if loose.is_empty() || loose.len() < self.commands.axes().len() {
+            self.commands.rates(at, &mut self.room.motion);
+        }
+        let Room { motion, joints, frames, .. } = &mut self.room;
+        let (angles_rad, rates_rad_s) = joints.of(motion, loose);
+        self.mechanics.frames(angles_rad, rates_rad_s, frames);
+    }
+
+    /// Angles and rates of all axes at an instant, by axis.
+    pub(crate) fn joints(&mut self, at: Instant, loose: &[LooseAxis]) -> (&[f64], &[f64]) {
+        self.commands.rates(at, &mut self.room.motion);
+        self.joints_as_last(loose)
+    }
+
+    /// The same with the commands as they were last asked for.
+    pub(crate) fn joints_as_last(&mut self, loose: &[LooseAxis]) -> (&[f64], &[f64]) {
+        let n_axes = self.commands.axes().len();
+        let Room { motion, joints, .. } = &mut self.room;
+        let (angles_rad, rates_rad_s) = joints.of(motion, loose);
+        (&angles_rad[..n_axes], &rates_rad_s[..n_axes])
     }
 
     /// Frames as the last call of [`Equations::shape`] left them.
@@ -117,10 +157,26 @@ impl Equations {
         &self.room.frames
     }
 
+    /// Frames of the last instant that a moving chain was asked for at, and rates of all its axes,
+    /// some of which don't follow their commands.
+    pub(crate) fn loose_frames(&self) -> (&Frames, &[f64]) {
+        (&self.room.frames, &self.room.joints.rates_rad_s[..self.commands.axes().len()])
+    }
+
+    /// Frames of an instant, as if all joints stood still.
+    pub(crate) fn frames_at_rest(&mut self, at: Instant, loose: &[LooseAxis]) -> &Frames {
+        self.commands.rates(at, &mut self.room.motion);
+        let Room { motion, joints, frames, .. } = &mut self.room;
+        let (angles_rad, rates_rad_s) = joints.of(motion, loose);
+        let still = vec![0.0; rates_rad_s.len()];
+        self.mechanics.frames(angles_rad, &still, frames);
+        frames
+    }
+
     /// The shape of an instant, turning as a state's momentum makes it.
     #[inline]
     pub(crate) fn moving(&mut self, at: Instant, state: &State) -> Moving {
-        let centroidal = self.shape(at);
+        let centroidal = self.shape(at, &state.loose);
         let head_to_world = *state.head_to_world.to_rotation_matrix().matrix();
         let momentum: Triple<f64> = head_to_world.tr_mul(&state.momentum_kg_m2_s).into();
         let angular_velocity_rad_s =
@@ -144,22 +200,37 @@ impl Equations {
     #[inline]
     fn air_loads_on(&self, moving: &Moving, state: &State) -> Wrench {
         let about_origin = self.loads.wrench(&self.room.frames, &self.through(moving, state));
+        self.about_centre_in_world(moving, about_origin)
+    }
+
+    /// - `about_origin`: root axes
+    #[inline]
+    fn about_centre_in_world(&self, moving: &Moving, about_origin: Wrench) -> Wrench {
         let force = about_origin.force_n;
         let moment = about_origin.moment_nm - moving.centroidal.centre_m.cross(force);
         let to_world = |v: Triple<f64>| (moving.head_to_world * Vector3::from(v)).into();
         Wrench { force_n: to_world(force), moment_nm: to_world(moment) }
     }
 
-    /// Air loads on every segment at an instant, moment about its front end; root axes.
-    pub(crate) fn air_on_segments(&mut self, moving: &Moving, state: &State) -> Vec<Outside> {
+    /// Air loads on every segment at an instant, moment about its front end, root axes; returns
+    /// those on the whole chain, moment about the centre of mass, world axes.
+    pub(crate) fn air_on_segments(
+        &self,
+        moving: &Moving,
+        state: &State,
+        on_segments: &mut Vec<Outside>,
+    ) -> Wrench {
         let through = self.through(moving, state);
-        self.loads.on_segments(&self.room.frames, &through, self.mechanics.n_segments())
+        let about_origin = self.loads.on_segments(&self.room.frames, &through, on_segments);
+        on_segments.truncate(self.mechanics.n_segments());
+        self.about_centre_in_world(moving, about_origin)
     }
 
     /// Power of the air on the whole chain at an instant, W.
     pub(crate) fn air_power_w(&mut self, at: Instant, state: &State) -> f64 {
         let moving = self.moving(at, state);
-        let outside = self.air_on_segments(&moving, state);
+        let mut outside = Vec::new();
+        self.air_on_segments(&moving, state, &mut outside);
         // Over the ground: the chain's own motion, without the wind.
         let velocity: Triple<f64> = moving.head_to_world.tr_mul(&state.velocity_m_s).into();
         let head_rad_s = moving.angular_velocity_rad_s;
@@ -190,6 +261,14 @@ impl Equations {
         let state = self.units.state(scaled);
         let moving = self.moving(at, &state);
         let loads = self.air_loads_on(&moving, &state);
+        *rates = self.body_rates(&state, &moving, loads);
+    }
+
+    /// Time derivative of the scaled state, loose axes left out.
+    ///
+    /// - `loads`: on the whole chain, moment about the centre of mass, world axes
+    #[inline]
+    pub(crate) fn body_rates(&self, state: &State, moving: &Moving, loads: Wrench) -> Scaled {
         let units = &self.units;
         let mass_kg = self.mechanics.mass_kg();
         let q = state.head_to_world.quaternion();
@@ -198,7 +277,7 @@ impl Equations {
         let force = loads.force_n;
         let accelerate = 1.0 / (mass_kg * units.speed_m_s);
         let twist = 1.0 / units.momentum_kg_m2_s;
-        *rates = Scaled::from([
+        Scaled::from([
             place.x,
             place.y,
             place.z,
@@ -212,7 +291,7 @@ impl Equations {
             loads.moment_nm.x * twist,
             loads.moment_nm.y * twist,
             loads.moment_nm.z * twist,
-        ]);
+        ])
     }
 
     /// Time derivatives of place (m/s), quaternion (w, x, y, z), velocity (m/s²) and momentum
@@ -233,24 +312,25 @@ impl Equations {
     }
 
     /// Body axes to root axes at an instant; leaves the frames of that instant behind.
-    pub(crate) fn body_in_root(&mut self, at: Instant) -> Matrix3<f64> {
-        self.commands.rates(at, &mut self.room.motion);
-        let motion = &self.room.motion;
-        self.mechanics.frames(&motion.angles_rad, &motion.rates_rad_s, &mut self.room.frames);
-        let Room { motion, frames, body } = &mut self.room;
+    pub(crate) fn body_in_root(&mut self, at: Instant, loose: &[LooseAxis]) -> Matrix3<f64> {
+        self.place_segments(at, loose);
+        if !loose.is_empty() {
+            self.commands.rates(at, &mut self.room.motion);
+        }
+        let Room { motion, frames, body, .. } = &mut self.room;
         self.body.in_root(&self.commands, motion, frames, body)
     }
 
     /// How the body lies at an instant; leaves the frames of that instant behind.
     pub fn attitude(&mut self, at: Instant, state: &State) -> Attitude {
-        let body_to_root = self.body_in_root(at);
+        let body_to_root = self.body_in_root(at, &state.loose);
         let head_to_world = state.head_to_world.to_rotation_matrix();
         Attitude { body_to_world: head_to_world.matrix() * body_to_root }
     }
 
     /// Height of the lowest corner above the ground's z = 0 at an instant, m.
     pub fn lowest_corner_m(&mut self, at: Instant, state: &State) -> f64 {
-        let centroidal = self.shape(at);
+        let centroidal = self.shape(at, &state.loose);
         let up: Triple<f64> = state.head_to_world.inverse_transform_vector(&Vector3::z()).into();
         let lanes = up.in_lanes();
         let lowest = self.boxes.iter().zip(&self.room.frames.fours).fold(
@@ -278,6 +358,23 @@ impl Equations {
                 &moving.centroidal,
                 moving.angular_velocity_rad_s,
             )
+    }
+}
+
+impl Joints {
+    /// Commands with what loose axes do laid over them.
+    #[inline]
+    fn of<'a>(&'a mut self, motion: &'a Motion, loose: &[LooseAxis]) -> (&'a [f64], &'a [f64]) {
+        if loose.is_empty() {
+            return (&motion.angles_rad, &motion.rates_rad_s);
+        }
+        self.angles_rad.copy_from_slice(&motion.angles_rad);
+        self.rates_rad_s.copy_from_slice(&motion.rates_rad_s);
+        for axis in loose {
+            self.angles_rad[axis.axis_idx] = axis.angle_rad;
+            self.rates_rad_s[axis.axis_idx] = axis.rate_rad_s;
+        }
+        (&self.angles_rad, &self.rates_rad_s)
     }
 }
 

@@ -46,6 +46,35 @@ pub enum FlightError {
         "joint loads need a smooth gait: with interpolation = \"linear\" accelerations are impulses; use \"cubic\""
     )]
     Impulses,
+    /// A mode for each axis is needed.
+    #[error("there are {found} modes for {axes} axes")]
+    ModeCount {
+        /// Given.
+        found: usize,
+        /// Of the chain.
+        axes: usize,
+    },
+    /// A mode speaks of a servo that isn't there.
+    #[error("there is no servo {servo}: there are {servos}")]
+    NoSuchServo {
+        /// Counted from 1.
+        servo: usize,
+        /// Given.
+        servos: usize,
+    },
+    /// A fault speaks of an axis that the chain doesn't have.
+    #[error("there is no axis {axis}: the chain has 1 to {axes}")]
+    NoSuchAxis {
+        /// Counted from 1.
+        axis: usize,
+        /// Of the chain.
+        axes: usize,
+    },
+    /// Axes that jump in rate would knock at those that don't follow commands.
+    #[error(
+        "with interpolation = \"linear\" the rates of axes without a servo jump, and would knock at the rest; use \"cubic\", or give every axis a servo"
+    )]
+    Jumps,
     /// A setting that can't be used.
     #[error("{quantity} is {value}, but must be {allowed}")]
     Setting {

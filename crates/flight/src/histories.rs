@@ -6,7 +6,7 @@ use undulift_chain::Chain;
 use undulift_dynamics::{Held, JointLoads, JointMotion, Wrench, joint_loads};
 use undulift_gait::{Gait, Instant, Interpolation, Pattern};
 
-use crate::{Equations, Flight, FlightError, Glider, State};
+use crate::{Flight, FlightError, Glider, State};
 
 /// Loads and motion of all joints at equal steps of time and at the end.
 #[derive(Debug, Clone, PartialEq)]
@@ -96,8 +96,7 @@ pub fn histories(
     for time_s in times_s {
         let state = flight.trajectory.state(time_s);
         let at = flight.trajectory.instant(time_s);
-        let loads = flight.equations.joint_loads(&glider.chain, at, &state);
-        found.push(time_s, &loads, &flight.equations);
+        found.push(time_s, flight.joint_loads(&glider.chain, at, &state));
         let weight_n = glider.chain.mass_kg() * STANDARD_GRAVITY_M_S2;
         let kinetic_j = flight.equations.kinetic_energy_j(at, &state);
         found.energy_j.push(kinetic_j + weight_n * state.place_m.z);
@@ -119,7 +118,7 @@ pub fn loads_at(
     refuse_impulses(&glider.gait)?;
     let state = flight.trajectory.state(time_s);
     let at = flight.trajectory.instant(time_s);
-    Ok(flight.equations.joint_loads(&glider.chain, at, &state))
+    Ok(flight.joint_loads(&glider.chain, at, &state).loads)
 }
 
 /// Straight lines between rows jump in rate, so their accelerations are impulses.
@@ -132,38 +131,51 @@ pub(crate) fn refuse_impulses(gait: &Gait) -> Result<(), FlightError> {
     }
 }
 
+/// One instant of all joints.
+struct Loaded {
+    loads: JointLoads,
+    rates_rad_s: Vec<f64>,
+    accelerations_rad_s2: Vec<f64>,
+}
+
 impl Histories {
-    fn push(&mut self, time_s: f64, loads: &JointLoads, equations: &Equations) {
-        let motion = equations.last_motion();
-        let n_axes = loads.torques_nm.len();
+    fn push(&mut self, time_s: f64, loaded: Loaded) {
+        let loads = loaded.loads;
         self.times_s.push(time_s);
-        self.torques_nm.push(loads.torques_nm.clone());
-        self.rates_rad_s.push(motion.rates_rad_s[..n_axes].to_vec());
-        self.accelerations_rad_s2.push(motion.accelerations_rad_s2[..n_axes].to_vec());
-        self.hinge_loads.push(HingeLoad::of(loads));
+        self.rates_rad_s.push(loaded.rates_rad_s);
+        self.accelerations_rad_s2.push(loaded.accelerations_rad_s2);
+        self.hinge_loads.push(HingeLoad::of(&loads));
         let size = |wrench: &Wrench| wrench.force_n.norm().max(wrench.moment_nm.norm());
         let largest = loads.joints.iter().map(size).fold(f64::MIN_POSITIVE, f64::max);
         self.left_at_nose = self.left_at_nose.max(size(&loads.left) / largest);
+        self.torques_nm.push(loads.torques_nm);
     }
 }
 
-impl Equations {
-    /// Loads in the joints at an instant; leaves the motion of that instant behind.
-    fn joint_loads(&mut self, chain: &Chain, at: Instant, state: &State) -> JointLoads {
-        let moving = self.moving(at, state);
-        let outside = self.air_on_segments(&moving, state);
-        let gravity_m_s2 = state.head_to_world.inverse_transform_vector(&Vector3::new(
-            0.0,
-            0.0,
-            -STANDARD_GRAVITY_M_S2,
-        ));
-        let motion = self.full_motion(at);
-        let motion = JointMotion {
-            angles_rad: &motion.angles_rad,
-            rates_rad_s: &motion.rates_rad_s,
-            accelerations_rad_s2: &motion.accelerations_rad_s2,
+impl Flight {
+    /// Loads in the joints at an instant, with the rates and accelerations of all axes.
+    fn joint_loads(&mut self, chain: &Chain, at: Instant, state: &State) -> Loaded {
+        let Self { equations, hybrid, trajectory, .. } = self;
+        let n_axes = equations.commands().axes().len();
+        let accelerations_rad_s2 = match (trajectory.turning(at.time_s), hybrid) {
+            (Some(turning), Some(hybrid)) => {
+                hybrid.accelerations_rad_s2(equations, turning, at, state).to_vec()
+            }
+            _ => equations.full_motion(at).accelerations_rad_s2[..n_axes].to_vec(),
         };
+        let moving = equations.moving(at, state);
+        let mut outside = Vec::new();
+        equations.air_on_segments(&moving, state, &mut outside);
+        let weight_m_s2 = Vector3::new(0.0, 0.0, -STANDARD_GRAVITY_M_S2);
+        let gravity_m_s2 = state.head_to_world.inverse_transform_vector(&weight_m_s2);
+        let (angles_rad, rates_rad_s) = equations.joints_as_last(&state.loose);
+        let motion =
+            JointMotion { angles_rad, rates_rad_s, accelerations_rad_s2: &accelerations_rad_s2 };
         let held = Held::Free { head_rad_s: moving.angular_velocity_rad_s.into() };
-        joint_loads(chain, motion, held, gravity_m_s2, &outside)
+        Loaded {
+            loads: joint_loads(chain, motion, held, gravity_m_s2, &outside),
+            rates_rad_s: rates_rad_s.to_vec(),
+            accelerations_rad_s2,
+        }
     }
 }

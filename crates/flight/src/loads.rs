@@ -133,22 +133,30 @@ impl AirLoads {
         Wrench { force_n: force.over_lanes(), moment_nm: moment.over_lanes() }
     }
 
-    /// Air loads on every segment, moment about its front end; root axes, shape (n).
+    /// Air loads on every segment, moment about its front end, and on the chain as
+    /// [`AirLoads::wrench`] gives them; root axes.
+    ///
+    /// - `on_segments`: filled, with a segment for each lane past the tail
+    #[inline]
     pub(crate) fn on_segments(
         &self,
         frames: &Frames,
         through: &Through,
-        n_segments: usize,
-    ) -> Vec<Outside> {
-        let fours = self.fours.iter().zip(&frames.fours);
-        let in_lanes = fours.flat_map(|(four, at)| {
-            let (force, moment) = four.wrench(&self.sections, &self.friction, at, through);
-            (0..LANES).map(move |lane| Outside {
-                force_n: force.lane(lane).into(),
-                moment_nm: moment.lane(lane).into(),
-            })
-        });
-        in_lanes.take(n_segments).collect()
+        on_segments: &mut Vec<Outside>,
+    ) -> Wrench {
+        on_segments.clear();
+        let (mut force, mut moment) = (Triple::zero(), Triple::zero());
+        for (four, at) in self.fours.iter().zip(&frames.fours) {
+            let (force_here, moment_here) =
+                four.wrench(&self.sections, &self.friction, at, through);
+            on_segments.extend((0..LANES).map(|lane| Outside {
+                force_n: force_here.lane(lane).into(),
+                moment_nm: moment_here.lane(lane).into(),
+            }));
+            force = force + force_here;
+            moment = moment + moment_here + at.front_m.cross(force_here);
+        }
+        Wrench { force_n: force.over_lanes(), moment_nm: moment.over_lanes() }
     }
 
     /// What every strip meets, from the head.

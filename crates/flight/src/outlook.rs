@@ -151,7 +151,7 @@ fn along_body_m(
     equations: &mut Equations,
     at: Instant,
 ) -> Vec<f64> {
-    let forward = equations.body_in_root(at).column(0).into_owned();
+    let forward = equations.body_in_root(at, &[]).column(0).into_owned();
     let shape = shape_of(&glider.chain, commands, &equations.motion(at).angles_rad);
     let segments = glider.chain.segments().iter().enumerate();
     segments

@@ -27,11 +27,11 @@ pub fn release(
         let tilt_deg = attitude.uprightness().clamp(-1.0, 1.0).acos().to_degrees();
         return Err(FlightError::ReleasedInverted { tilt_deg });
     }
-    let body_to_root = equations.body_in_root(at);
+    let body_to_root = equations.body_in_root(at, &[]);
     let head_to_world = attitude.body_to_world * body_to_root.transpose();
     let launch_m_s =
         Vector3::new(launch.climb_rad.cos(), 0.0, launch.climb_rad.sin()) * launch.speed_m_s;
-    let centroidal = equations.shape(at);
+    let centroidal = equations.shape(at, &[]);
     let (velocity_m_s, momentum) = match launch.grip_segment_idx {
         None => (launch_m_s, Vector3::zeros()),
         Some(segment_idx) => {
@@ -56,6 +56,7 @@ pub fn release(
         head_to_world: UnitQuaternion::from_matrix(&head_to_world),
         velocity_m_s,
         momentum_kg_m2_s: momentum + inertia_world * launch.spin_world_rad_s,
+        loose: Vec::new(),
     };
     let lowest_m = equations.lowest_corner_m(at, &state) - floor_m;
     if lowest_m > 0.0 { Ok(state) } else { Err(FlightError::ReleasedOnFloor { lowest_m }) }

@@ -3,8 +3,8 @@ use ode_solvers::SVector;
 use undulift_aero::STANDARD_GRAVITY_M_S2;
 use undulift_chain::Chain;
 
-/// Where the chain is and how it moves, apart from its shape.
-#[derive(Debug, Clone, Copy, PartialEq)]
+/// Where the chain is and how it moves, apart from joints that follow their commands.
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct State {
     /// Centre of mass, world, m.
     pub place_m: Vector3<f64>,
@@ -14,6 +14,19 @@ pub struct State {
     pub velocity_m_s: Vector3<f64>,
     /// Angular momentum about the centre of mass, world, kg·m²/s.
     pub momentum_kg_m2_s: Vector3<f64>,
+    /// Axes that don't follow their commands.
+    pub loose: Vec<LooseAxis>,
+}
+
+/// One axis with a motion of its own.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LooseAxis {
+    /// In the order of [`undulift_chain::joint_axes`].
+    pub axis_idx: usize,
+    /// rad.
+    pub angle_rad: f64,
+    /// rad/s.
+    pub rate_rad_s: f64,
 }
 
 /// The thirteen numbers that are integrated, scaled so that small robots are held as well as large.
@@ -53,6 +66,7 @@ impl Units {
             head_to_world: UnitQuaternion::from_quaternion(quaternion),
             velocity_m_s: triple(7) * self.speed_m_s,
             momentum_kg_m2_s: triple(10) * self.momentum_kg_m2_s,
+            loose: Vec::new(),
         }
     }
 }

@@ -90,7 +90,7 @@ pub fn summary(glider: &Glider, flight: &mut Flight) -> Summary {
         drop_m,
         distance_m,
         glide_ratio: ratio(distance_m, drop_m),
-        last_cycle_glide_ratio: cycle_start.and_then(|start| {
+        last_cycle_glide_ratio: cycle_start.as_ref().and_then(|start| {
             let way_m = place_m - start.place_m;
             ratio(way_m.xy().norm(), -way_m.z)
         }),
@@ -129,7 +129,7 @@ impl Flight {
     }
 
     fn air_velocity_m_s(&self, look: &Look) -> nalgebra::Vector3<f64> {
-        look.state.velocity_m_s - self.equations.wind_world_m_s()
+        look.velocity_m_s - self.equations.wind_world_m_s()
     }
 
     fn airspeed_m_s(&self, look: &Look) -> f64 {
@@ -139,7 +139,7 @@ impl Flight {
     fn look(&mut self, time_s: f64) -> Look {
         let state = self.trajectory.state(time_s);
         let at = self.trajectory.instant(time_s);
-        Look { time_s, state, attitude: self.equations.attitude(at, &state) }
+        Look::new(time_s, &state, self.equations.attitude(at, &state))
     }
 
     /// Time mean of a quantity from a time to the end, by Boole's rule over the steps.

@@ -25,8 +25,7 @@ pub fn trace(flight: &mut Flight, every_s: f64) -> impl Iterator<Item = TraceRow
         let state = flight.trajectory.state(time_s);
         let at = flight.trajectory.instant(time_s);
         let attitude = flight.equations.attitude(at, &state);
-        let n_axes = flight.equations.commands().axes().len();
-        let angles_rad = flight.equations.motion(at).angles_rad[..n_axes].to_vec();
+        let angles_rad = flight.equations.joints(at, &state.loose).0.to_vec();
         TraceRow { time_s, state, attitude, angles_rad }
     })
 }

@@ -3,6 +3,7 @@ use undulift_gait::Instant;
 
 use crate::State;
 use crate::state::{Scaled, Units};
+use crate::turning::{Long, Turning};
 
 /// The integrator's own interpolant over a whole flight.
 #[derive(Debug, Clone)]
@@ -16,7 +17,16 @@ pub struct Trajectory {
 struct Piece {
     start_s: f64,
     inside_s: f64,
-    model: ContinuousOutputModel<f64, Scaled>,
+    course: Course,
+}
+
+/// What the interpolant holds.
+#[derive(Debug, Clone)]
+pub(crate) enum Course {
+    /// All joints follow their commands.
+    Following(ContinuousOutputModel<f64, Scaled>),
+    /// Some don't.
+    Loose(ContinuousOutputModel<f64, Long>, Turning),
 }
 
 impl Trajectory {
@@ -25,13 +35,8 @@ impl Trajectory {
     }
 
     /// - `inside_s`: a time inside the piece
-    pub(crate) fn push(
-        &mut self,
-        start_s: f64,
-        inside_s: f64,
-        model: ContinuousOutputModel<f64, Scaled>,
-    ) {
-        self.pieces.push(Piece { start_s, inside_s, model });
+    pub(crate) fn push(&mut self, start_s: f64, inside_s: f64, course: Course) {
+        self.pieces.push(Piece { start_s, inside_s, course });
     }
 
     fn piece(&self, time_s: f64) -> &Piece {
@@ -44,11 +49,27 @@ impl Trajectory {
         Instant { time_s, piece_s: self.piece(time_s).inside_s }
     }
 
+    /// What turns axes that don't follow their commands at a time; absent where all do.
+    pub(crate) fn turning(&self, time_s: f64) -> Option<&Turning> {
+        match &self.piece(time_s).course {
+            Course::Following(_) => None,
+            Course::Loose(_, turning) => Some(turning),
+        }
+    }
+
     /// State at a time; times outside the flight give its ends.
     pub fn state(&self, time_s: f64) -> State {
-        let model = &self.piece(time_s).model;
-        let (first_s, last_s) = model.bounds();
-        let scaled = model.evaluate(time_s.clamp(first_s, last_s)).expect("inside the bounds");
-        self.units.state(&scaled)
+        const INSIDE: &str = "inside the bounds";
+        match &self.piece(time_s).course {
+            Course::Following(model) => {
+                let (first_s, last_s) = model.bounds();
+                self.units.state(&model.evaluate(time_s.clamp(first_s, last_s)).expect(INSIDE))
+            }
+            Course::Loose(model, turning) => {
+                let (first_s, last_s) = model.bounds();
+                let long = model.evaluate(time_s.clamp(first_s, last_s)).expect(INSIDE);
+                self.units.long_state(&long, &turning.axes)
+            }
+        }
     }
 }

@@ -35,4 +35,5 @@ pub use heat::{COPPER_PER_K, COPPER_REFERENCE_K, Heat, Winding};
 pub use history::{AxisHistory, Histories, Place, When};
 pub use line::{Quadrant, Supply};
 pub use misses::{Miss, MissKind, Remedies};
+pub use position_loop::FedLoop;
 pub use servo::{Endurance, PositionLoop, Pulse, Servo};
