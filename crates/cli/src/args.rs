@@ -317,7 +317,7 @@ pub struct Tune {
     #[arg(value_name = "DESIGN", required_unless_present = "resume")]
     pub design: Option<PathBuf>,
 
-    /// What to search for (TOML) [default: the design's own [search]].
+    /// What to search for (TOML) [default: the design's own `[search]`].
     #[arg(value_name = "SEARCH")]
     pub search: Option<PathBuf>,
 

@@ -69,13 +69,12 @@ pub fn answer(told: &Told<'_>) -> String {
         ledger.best_at()
     );
     text.push_str(&table(judge, closing));
-    if !closing.after.is_feasible() {
-        text.push_str(
-            "  Nothing that was tried keeps all that is required; shown is what misses least\n",
-        );
+    if closing.after.is_feasible() {
+        text.push_str(&slopes(judge, closing));
+        text.push_str(&holding(judge, closing));
+    } else {
+        text.push_str("  Nothing that was tried keeps all that is required; this misses least\n");
     }
-    text.push_str(&slopes(judge, closing));
-    text.push_str(&holding(judge, closing));
     for path in [folder.best_path(), folder.history_path()] {
         let _ = writeln!(text, "  Wrote {}", path.display());
     }
