@@ -1,7 +1,7 @@
 //! The `undulift` command: flags, files, exit codes and the words that people read.
 //!
 //! Answers go to standard output, all else to standard error. Exit status: 0 done and within
-//! limits; 1 done, but a limit is missed; 2 could not run.
+//! limits; 1 done, but a limit is missed; 2 could not run; 130 ended by Ctrl-C with all kept.
 
 mod args;
 mod budget;
@@ -19,6 +19,7 @@ mod people;
 mod size;
 mod terminal;
 mod trace_file;
+mod tune;
 mod whole_file;
 
 use std::process::ExitCode;
@@ -34,6 +35,8 @@ enum Outcome {
     WithinLimits,
     LimitMissed,
     CouldNotRun,
+    /// Ended by Ctrl-C, with all that was found kept.
+    Interrupted,
 }
 
 fn complete(shell: clap_complete::Shell) -> anyhow::Result<Outcome> {
@@ -82,6 +85,8 @@ impl From<Outcome> for ExitCode {
             Outcome::WithinLimits => 0,
             Outcome::LimitMissed => 1,
             Outcome::CouldNotRun => 2,
+            // As shells report a program that Ctrl-C ended.
+            Outcome::Interrupted => 130,
         })
     }
 }
@@ -94,6 +99,7 @@ fn main() -> ExitCode {
         Command::Check(check) => check::run(check),
         Command::Budget(args) => budget::run(args),
         Command::Size(args) => size::run(args),
+        Command::Tune(args) => tune::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),
     };

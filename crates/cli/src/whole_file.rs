@@ -29,7 +29,7 @@ pub fn write(
 }
 
 /// Why a file can't be made, without the name of the one beside it.
-fn why(error: &io::Error) -> String {
+pub fn why(error: &io::Error) -> String {
     match error.kind() {
         io::ErrorKind::NotFound => "there is no such folder".into(),
         io::ErrorKind::PermissionDenied => "permission is denied".into(),

@@ -7,7 +7,8 @@
 //! [`Design::written`] gives a design back as text; reading and writing lose no bit.
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
-//! and radians. Tables that other commands read (`search`, `wiring`) are left alone.
+//! and radians. Tables that other commands read are left alone until they ask: [`Tuning`] is what
+//! `[search]` says.
 
 mod body;
 mod carried;
@@ -45,6 +46,8 @@ mod spread;
 mod starter;
 mod surroundings;
 mod table;
+mod tuning;
+mod tuning_rows;
 mod unit;
 mod written;
 
@@ -62,4 +65,6 @@ pub use scatter::Scatter;
 pub use spread::{Spread, Vary};
 pub use starter::starter;
 pub use surroundings::Limits;
+pub use tuning::{Robust, Take, Tuning, Wish};
+pub use tuning_rows::{Required, Varied};
 pub use undulift_servo::{Endurance, PositionLoop, Pulse, Regulator, Servo};

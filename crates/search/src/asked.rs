@@ -143,12 +143,12 @@ fn judged(design: &Design, histories: &Histories, drops: Drops) -> Result<Budget
 }
 
 /// The servo of an axis by its place among the design's.
-fn servo_idx(design: &Design, of: &AxisOf) -> Option<usize> {
+pub(crate) fn servo_idx(design: &Design, of: &AxisOf) -> Option<usize> {
     let name = design.servo_names.of(of.joint_idx, of.axis)?;
     design.servos.keys().position(|known| known == name)
 }
 
-fn place(of: &AxisOf) -> Place {
+pub(crate) fn place(of: &AxisOf) -> Place {
     Place { joint: of.joint_idx + 1, axis: of.axis.word() }
 }
 
