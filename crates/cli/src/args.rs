@@ -342,6 +342,10 @@ pub struct Tune {
     #[arg(long, value_name = "T", value_parser = clap::value_parser!(u16).range(1..=1024))]
     pub threads: Option<u16>,
 
+    /// Don't ask how the best moves and what holds it back, which takes some short searches more.
+    #[arg(long)]
+    pub brief: bool,
+
     /// Print JSON.
     #[arg(long)]
     pub json: bool,

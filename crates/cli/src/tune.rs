@@ -12,7 +12,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 use anyhow::{Context, anyhow, bail};
 use undulift_design::{Design, Override, Tuning};
 use undulift_flight::Settings;
-use undulift_search::tuning::{Closing, Ended, Judge, Run, closing};
+use undulift_search::tuning::{Closing, Ended, Judge, Run, brief_closing, closing};
 
 use crate::args::Tune as Args;
 use crate::{Outcome, Refused, json, many, terminal};
@@ -39,7 +39,7 @@ pub fn run(args: &Args) -> anyhow::Result<Outcome> {
             _ => bail!("a design and --out FOLDER are needed, or --resume FOLDER"),
         };
         match set {
-            Ok(set) => search(set, args.json),
+            Ok(set) => search(set, args),
             Err(refused) => {
                 refused.tell();
                 Ok(Outcome::CouldNotRun)
@@ -119,7 +119,7 @@ fn tell_moved_start(judge: &Judge) {
     }
 }
 
-fn search(set: Set, as_json: bool) -> anyhow::Result<Outcome> {
+fn search(set: Set, args: &Args) -> anyhow::Result<Outcome> {
     let Set { record, judge, mut run, folder } = set;
     let stopped = Arc::new(AtomicBool::new(false));
     watch_for_ctrl_c(&stopped)?;
@@ -143,13 +143,16 @@ fn search(set: Set, as_json: bool) -> anyhow::Result<Outcome> {
         return Ok(Outcome::Interrupted);
     }
     folder.write_best(&judge, &record, run.ledger())?;
-    let closing = closing(&judge, &run, &|searches| {
-        bar.set_message(format!("{}, asking what holds it back", judge.design().name));
-        bar.set_length(searches as u64);
-    });
+    let closing = match args.brief {
+        true => brief_closing(&judge, &run),
+        false => closing(&judge, &run, &|searches| {
+            bar.set_message(format!("{}, asking what holds it back", judge.design().name));
+            bar.set_length(searches as u64);
+        }),
+    };
     bar.finish_and_clear();
-    let closing = closing.context("nothing was tried")?;
-    tell(&Told { judge: &judge, run: &run, record: &record, closing: &closing, folder }, as_json)
+    let closing = &closing.context("nothing was tried")?;
+    tell(&Told { judge: &judge, run: &run, record: &record, closing, folder }, args.json)
 }
 
 /// The first ends the search when it may, the second at once.

@@ -21,7 +21,7 @@ mod several;
 mod slopes;
 mod verdict;
 
-pub use closing::{Active, Closing, Held, closing};
+pub use closing::{Active, Closing, Held, brief_closing, closing};
 pub use error::TuningError;
 pub use judge::{Fineness, Judge};
 pub use ledger::Ledger;

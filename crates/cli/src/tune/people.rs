@@ -69,11 +69,11 @@ pub fn answer(told: &Told<'_>) -> String {
         ledger.best_at()
     );
     text.push_str(&table(judge, closing));
-    if closing.after.is_feasible() {
+    if !closing.after.is_feasible() {
+        text.push_str("  Nothing that was tried keeps all that is required; this misses least\n");
+    } else if !closing.slopes.is_empty() {
         text.push_str(&slopes(judge, closing));
         text.push_str(&holding(judge, closing));
-    } else {
-        text.push_str("  Nothing that was tried keeps all that is required; this misses least\n");
     }
     for path in [folder.best_path(), folder.history_path()] {
         let _ = writeln!(text, "  Wrote {}", path.display());

@@ -59,23 +59,32 @@ pub enum Held {
     Limit(usize),
 }
 
+/// The best of a run beside what it began with; neither how it moves nor what holds it back.
+///
+/// - returns none before anything was tried
+pub fn brief_closing(judge: &Judge, run: &Run) -> Option<Closing> {
+    let after = run.ledger().best()?.clone();
+    Some(Closing {
+        before: judge.before(),
+        slopes: Vec::new(),
+        active: Vec::new(),
+        settled_within: None,
+        local_evaluations: 0,
+        after,
+    })
+}
+
 /// Says what the best of a run is worth.
 ///
 /// - `told`: called before each short search, with how many there are
 /// - returns none before anything was tried
 pub fn closing(judge: &Judge, run: &Run, told: &dyn Fn(usize)) -> Option<Closing> {
-    let after = run.ledger().best()?.clone();
+    let mut closing = brief_closing(judge, run)?;
+    let after = &closing.after;
     let [least, most] = LOCAL_ALL;
     let evaluations = (LOCAL_EACH * after.values.len()).clamp(least, most);
-    let mut closing = Closing {
-        before: judge.before(),
-        slopes: slopes(judge, &after),
-        active: Vec::new(),
-        settled_within: None,
-        local_evaluations: evaluations,
-        after,
-    };
-    let after = &closing.after;
+    closing.local_evaluations = evaluations;
+    closing.slopes = slopes(judge, after);
     if after.is_feasible() {
         let held = held(judge, after);
         let searches = held.len() + 1;
