@@ -15,6 +15,7 @@ mod launches;
 mod new;
 mod people;
 mod size;
+mod table;
 mod terminal;
 mod trace_file;
 mod whole_file;
@@ -84,6 +85,7 @@ fn main() -> ExitCode {
         Command::Check(check) => check::run(check),
         Command::Budget(args) => budget::run(args),
         Command::Size(args) => size::run(args),
+        Command::Table(args) => table::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),
     };

@@ -7,7 +7,8 @@
 //! [`Design::written`] gives a design back as text; reading and writing lose no bit.
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
-//! and radians. Tables that other commands read (`search`, `wiring`) are left alone.
+//! and radians. Tables that other commands read (`search`, `wiring`) are left alone
+//! until they ask ([`Design::wiring`]).
 
 mod body;
 mod carried;
@@ -44,6 +45,7 @@ mod starter;
 mod surroundings;
 mod table;
 mod unit;
+mod wiring;
 mod written;
 
 pub use carried::{Battery, Payload};

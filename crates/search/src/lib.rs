@@ -17,6 +17,7 @@ mod misses;
 mod mixes;
 pub mod optimiser;
 mod sizing;
+mod table_flights;
 mod texts;
 mod want;
 
@@ -24,5 +25,6 @@ pub use bench::Candidate;
 pub use choice::{Choice, Split, driven};
 pub use error::SizingError;
 pub use sizing::{Sized, Step, size};
+pub use table_flights::{TableFlight, fly_gait, fly_table};
 pub use texts::{with_catalogue, with_servos};
 pub use want::Want;
