@@ -7,12 +7,12 @@ use undulift_chain::{AxisOf, joint_axes};
 use undulift_design::{Design, Servo};
 use undulift_gait::firmware::{
     Block, Blocks, Board, Channel, Ends, FirmwareTable, Miss, Preamble, Reach, Scale, Unit,
-    csv_text, misses, whole_frames,
+    c_header, csv_text, json_text, misses, trajectory_text, whole_frames,
 };
-use undulift_gait::{Commands, GaitError};
+use undulift_gait::{Commands, GaitError, Interpolation};
 use undulift_servo::Load;
 
-use crate::args::{Table as Args, TableFormat, TableUnit};
+use crate::args::{Between, Table as Args, TableFormat, TableUnit};
 use crate::{Outcome, Refused, terminal, whole_file};
 
 /// A design, and what its table has to keep to.
@@ -117,6 +117,13 @@ impl<'a> Job<'a> {
         Reach { speed_rad_s, travel_rad }
     }
 
+    fn between(&self) -> Interpolation {
+        match self.args.between {
+            Between::Linear => Interpolation::Linear,
+            Between::Hold => Interpolation::Hold,
+        }
+    }
+
     fn scale(&self) -> Scale {
         let fine = Scale::fine(self.unit());
         Scale { resolution: self.args.resolution.unwrap_or(fine.resolution), ..fine }
@@ -195,7 +202,9 @@ impl<'a> Job<'a> {
                 let file = |block| (beside(out, block), csv_text(table, block));
                 Block::ALL.map(file).to_vec()
             }
-            _ => vec![],
+            TableFormat::C => vec![(out.clone(), c_header(table, self.between())?)],
+            TableFormat::JointTrajectory => vec![(out.clone(), trajectory_text(table)?)],
+            TableFormat::Json => vec![(out.clone(), json_text(table))],
         })
     }
 }

@@ -6,17 +6,27 @@
 //! opened here.
 
 mod blocks;
+mod c_header;
 mod channel;
 mod check;
 mod counts;
 mod csv_text;
+mod json_text;
 mod preamble;
+mod reading;
 mod scale;
+mod timing;
+mod trajectory;
 
 pub use blocks::{Blocks, Ends, whole_frames};
+pub use c_header::{c_header, c_name};
 pub use channel::Channel;
 pub use check::{Block, Board, Miss, Reach, Spot, misses};
 pub use counts::{CType, FirmwareTable};
 pub use csv_text::csv_text;
+pub use json_text::json_text;
 pub use preamble::Preamble;
+pub use reading::{is_table_text, read_table};
 pub use scale::{Scale, Unit};
+pub use timing::Timing;
+pub use trajectory::trajectory_text;
