@@ -1,5 +1,9 @@
 //! `undulift table`.
 
+mod flights;
+mod people;
+mod trade;
+
 use std::path::{Path, PathBuf};
 
 use anyhow::Context;
@@ -12,8 +16,12 @@ use undulift_gait::firmware::{
 use undulift_gait::{Commands, GaitError, Interpolation};
 use undulift_servo::Load;
 
+use undulift_flight::Settings;
+use undulift_search::{Coarsest, Hunt, MOST_ROWS_TRIED};
+
 use crate::args::{Between, Table as Args, TableFormat, TableUnit};
-use crate::{Outcome, Refused, terminal, whole_file};
+use crate::{Outcome, Refused, json, terminal, whole_file};
+use flights::Flights;
 
 /// A design, and what its table has to keep to.
 struct Job<'a> {
@@ -21,6 +29,9 @@ struct Job<'a> {
     design: Design,
     commands: Commands,
     axes: Vec<AxisOf>,
+    /// As the board has them.
+    wiring: Vec<Channel>,
+    /// Of the table's columns.
     channels: Vec<Channel>,
     /// By channel.
     reaches: Vec<Reach>,
@@ -38,11 +49,12 @@ pub fn run(args: &Args) -> anyhow::Result<Outcome> {
     };
     let commands = Commands::new(&design.glider.gait, &design.glider.chain)
         .with_context(|| design.name.clone())?;
+    let pool = rayon::ThreadPoolBuilder::new()
+        .num_threads(args.threads.map_or(0, usize::from))
+        .build()
+        .context("can't start threads")?;
     let job = Job::new(args, design, commands, wiring)?;
-    match job.made() {
-        Ok((blocks, table)) => job.write(&blocks, &table),
-        Err(error) => Ok(job.refuse(&error.to_string())),
-    }
+    pool.install(|| job.run())
 }
 
 impl<'a> Job<'a> {
@@ -53,7 +65,8 @@ impl<'a> Job<'a> {
         wiring: Vec<Channel>,
     ) -> anyhow::Result<Self> {
         let axes = joint_axes(design.glider.chain.joints());
-        let mut job = Self { args, design, commands, axes, channels: vec![], reaches: vec![] };
+        let mut job =
+            Self { args, design, commands, axes, wiring, channels: vec![], reaches: vec![] };
         anyhow::ensure!(
             !job.axes.is_empty(),
             "{}: no joint turns, so there is nothing to write",
@@ -62,7 +75,7 @@ impl<'a> Job<'a> {
         let unit = job.unit();
         job.check_unit(unit)?;
         job.channels = if unit == Unit::Us || args.format == TableFormat::C {
-            wiring
+            job.wiring.clone()
         } else {
             (0..=u8::MAX).zip(&job.axes).map(|(number, &of)| Channel::plain(number, of)).collect()
         };
@@ -137,14 +150,55 @@ impl<'a> Job<'a> {
         match (self.args.rate, self.args.steps) {
             (Some(rate_hz), _) => whole_frames(frequency_hz, rate_hz),
             (None, Some(steps)) => Ok(steps as usize),
-            (None, None) => {
-                Ok(((1e3 / (frequency_hz * self.args.frame_ms) + 1e-9) as usize).clamp(2, 65_535))
-            }
+            (None, None) => Ok(self.most_rows()),
         }
     }
 
-    fn made(&self) -> Result<(Blocks, FirmwareTable), GaitError> {
-        self.table(self.n_rows()?, self.scale())
+    fn run(&self) -> anyhow::Result<Outcome> {
+        let hunted = self.args.tolerance.map(|tolerance| self.hunt(tolerance)).transpose()?;
+        let (n_rows, scale) = match (&hunted, self.args.tolerance) {
+            (Some(hunted), Some(tolerance)) => {
+                if let Some(path) = &self.args.trade {
+                    whole_file::write(path, |file| trade::write(file, hunted, tolerance))?;
+                }
+                let Some(best) = &hunted.best else {
+                    terminal::answer(&trade::answer(hunted, tolerance, self))?;
+                    let why =
+                        format!("no table keeps the glide ratio within {}", percent(tolerance));
+                    return Ok(self.refuse(&why));
+                };
+                (Ok(best.rows), best.scale)
+            }
+            _ => (self.n_rows(), self.scale()),
+        };
+        match n_rows.and_then(|n_rows| self.table(n_rows, scale)) {
+            Ok((blocks, table)) => self.write(&blocks, &table, hunted.as_ref()),
+            Err(error) => Ok(self.refuse(&error.to_string())),
+        }
+    }
+
+    fn hunt(&self, tolerance: f64) -> anyhow::Result<Coarsest> {
+        let make = |n_rows: usize, scale: Scale| {
+            let (blocks, table) = self.table(n_rows, scale).ok()?;
+            table.c_type().ok()?;
+            self.misses(&blocks, &table).is_empty().then_some(table)
+        };
+        let hunt = Hunt {
+            design: &self.design,
+            between: self.between(),
+            tolerance,
+            most_rows: self.most_rows().min(MOST_ROWS_TRIED),
+            finest: self.scale(),
+            make: &make,
+            settings: Settings::default(),
+        };
+        hunt.coarsest().with_context(|| self.design.name.clone())
+    }
+
+    /// As many as pulses come in a period.
+    fn most_rows(&self) -> usize {
+        let frames = 1e3 / (self.commands.clock().frequency_hz * self.args.frame_ms);
+        ((frames + 1e-9) as usize).clamp(2, 65_535)
     }
 
     fn table(&self, n_rows: usize, scale: Scale) -> Result<(Blocks, FirmwareTable), GaitError> {
@@ -182,17 +236,61 @@ impl<'a> Job<'a> {
         Outcome::LimitMissed
     }
 
-    fn write(&self, blocks: &Blocks, table: &FirmwareTable) -> anyhow::Result<Outcome> {
-        let missed: Vec<Miss> = misses(table, blocks, &self.reaches, &self.axes, self.board());
+    fn misses(&self, blocks: &Blocks, table: &FirmwareTable) -> Vec<Miss> {
+        misses(table, blocks, &self.reaches, &self.axes, self.board())
+    }
+
+    fn write(
+        &self,
+        blocks: &Blocks,
+        table: &FirmwareTable,
+        hunted: Option<&Coarsest>,
+    ) -> anyhow::Result<Outcome> {
+        let missed = self.misses(blocks, table);
         if !missed.is_empty() {
-            for miss in &missed {
-                terminal::tell_limit(&format!("{}: {miss}", self.design.name));
-            }
-            terminal::tell_hint(&format!("{} was not written", self.args.out.display()));
+            self.tell_missed(&missed);
             return Ok(Outcome::LimitMissed);
         }
-        whole_file::write_all(&self.files(table)?)?;
+        let files = match self.files(table) {
+            Ok(files) => files,
+            Err(error) => return Ok(self.refuse(&error.to_string())),
+        };
+        let flights = Flights::of(self, table)?;
+        whole_file::write_all(&files)?;
+        let written: Vec<PathBuf> = files.into_iter().map(|(path, _)| path).collect();
+        if self.args.json {
+            json::print(vec![people::object(self, table, &flights, &written, hunted)], 1)?;
+        } else {
+            terminal::answer(&people::answer(self, table, &flights, &written, hunted))?;
+        }
+        self.tell_doubts(table, &flights);
         Ok(Outcome::WithinLimits)
+    }
+
+    /// The worst of each kind, with the number of others.
+    fn tell_missed(&self, missed: &[Miss]) {
+        let mut told: Vec<&Miss> = Vec::new();
+        for miss in missed {
+            if told.iter().all(|other| !other.is_like(miss)) {
+                let others = missed.iter().filter(|other| other.is_like(miss)).count() - 1;
+                terminal::tell_limit(&format!("{}: {miss}{}", self.design.name, more(others)));
+                told.push(miss);
+            }
+        }
+        terminal::tell_hint(&format!("{} was not written", self.args.out.display()));
+    }
+
+    fn tell_doubts(&self, table: &FirmwareTable, flights: &Flights) {
+        if let Some(unflown) = &flights.unflown {
+            terminal::tell_warning(&format!("the table could not be flown: {unflown}"));
+        }
+        let unit = table.preamble.scale.unit;
+        let offset = self.wiring.iter().any(|channel| channel.offset_us != 0.0);
+        if unit != Unit::Us && self.args.format == TableFormat::C && offset {
+            terminal::tell_warning(
+                "the offsets of [wiring] are for pulses and not in these angles; firmware must add them",
+            );
+        }
     }
 
     fn files(&self, table: &FirmwareTable) -> Result<Vec<(PathBuf, String)>, GaitError> {
@@ -207,6 +305,19 @@ impl<'a> Job<'a> {
             TableFormat::Json => vec![(out.clone(), json_text(table))],
         })
     }
+}
+
+fn more(others: usize) -> String {
+    match others {
+        0 => String::new(),
+        1 => "; so is one more channel".into(),
+        others => format!("; so are {others} more channels"),
+    }
+}
+
+/// A share in percent, without zeros at its end.
+fn percent(share: f64) -> String {
+    format!("{} %", (share * 1e6).round() / 1e4)
 }
 
 /// Where a block of a csv goes.

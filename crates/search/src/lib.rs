@@ -11,6 +11,7 @@
 
 mod bench;
 mod choice;
+mod coarsest;
 mod error;
 mod estimate;
 mod misses;
@@ -23,6 +24,7 @@ mod want;
 
 pub use bench::Candidate;
 pub use choice::{Choice, Split, driven};
+pub use coarsest::{Coarsest, Hunt, MOST_ROWS_TRIED, Trial};
 pub use error::SizingError;
 pub use sizing::{Sized, Step, size};
 pub use table_flights::{TableFlight, fly_gait, fly_table};

@@ -126,7 +126,7 @@ fn check_rows(of: &'static str, rows: usize) -> Result<(), GaitError> {
 }
 
 /// The first time at which the phase is whole turns and full speed is reached, s.
-fn steady_from_s(clock: &Clock) -> f64 {
+pub(crate) fn steady_from_s(clock: &Clock) -> f64 {
     let turns = (clock.angle_rad(clock.settled_s()) / TAU - 1e-9).ceil().max(0.0);
     let from_s = clock.time_of_s(turns * TAU).expect("a gait with a period goes on");
     from_s.max(clock.settled_s())

@@ -112,7 +112,28 @@ pub enum Miss {
     },
 }
 
-/// Holds a table against what joints and board can do; of each axis and kind the worst is given.
+impl Miss {
+    /// Whether both miss the same limit.
+    pub fn is_like(&self, other: &Self) -> bool {
+        std::mem::discriminant(self) == std::mem::discriminant(other)
+    }
+
+    /// How far it is over its limit, in a number that grows with it.
+    fn excess(&self) -> f64 {
+        match self {
+            Miss::Open { gap_rad, .. } => gap_rad.abs(),
+            Miss::Speed { speed_rad_s, limit_rad_s, .. } => speed_rad_s / limit_rad_s,
+            Miss::Travel { angle_rad, limit_rad, .. } => angle_rad.abs() / limit_rad,
+            Miss::Pulse { pulse_us, limits_us: [least_us, most_us], .. } => {
+                (pulse_us - most_us).max(least_us - pulse_us)
+            }
+            Miss::Frame { .. } | Miss::Flash { .. } => 0.0,
+        }
+    }
+}
+
+/// Holds a table against what joints and board can do; of each axis and kind the worst is given,
+/// the worst of all first.
 ///
 /// - `reaches`: by channel
 /// - `blocks`: that it was made of
@@ -143,6 +164,7 @@ pub fn misses(
         misses.extend(reach.travel_rad.and_then(|limit| track.too_far(limit)));
         misses.extend(track.out_of_pulses());
     }
+    misses.sort_by(|a, b| b.excess().total_cmp(&a.excess()));
     misses
 }
 

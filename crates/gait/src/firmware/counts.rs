@@ -63,7 +63,8 @@ impl FirmwareTable {
             rows.iter().map(|row| preamble.counts(axes, row)).collect()
         };
         let degrees = |angles_rad: &[f64]| {
-            angles_rad.iter().map(|angle_rad| angle_rad.to_degrees()).collect()
+            // Millionths are far below anything that a flight tells.
+            angles_rad.iter().map(|rad| (rad.to_degrees() * 1e6).round() / 1e6).collect()
         };
         let head_deg = [&blocks.head_heading_rad, &blocks.head_elevation_rad];
         Ok(Self {
