@@ -29,11 +29,10 @@ pub fn answer(
     line(&mut text, "Columns", &columns(&table.preamble.channels, table.preamble.scale.unit));
     line(&mut text, "Off the gait", &off_the_gait(job, table));
     if let Some([own, of_table]) = &flights.whole {
-        line(&mut text, "Flown as computed", &flown(own, None));
-        line(&mut text, "Flown by the table", &flown(of_table, Some(own)));
+        line(&mut text, "As computed", &flown(own, None));
+        line(&mut text, "By the table", &flown(of_table, Some(own)));
         for (words, flight) in &flights.faulty {
-            line(&mut text, &format!("{words}:"), "");
-            line(&mut text, "", &flown(flight, Some(own)));
+            line(&mut text, "With a fault", &format!("{words}: {}", flown(flight, Some(own))));
         }
     }
     let files: Vec<String> = written.iter().map(|path| path.display().to_string()).collect();
