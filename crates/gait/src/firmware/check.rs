@@ -203,7 +203,7 @@ impl Track<'_> {
         let of = self.table.preamble.channels[self.at].of;
         let column = axes.iter().position(|axis| *axis == of)?;
         let gap_rad = blocks.closing[column] - blocks.cycle[0][column];
-        let at = self.spot(Block::Loop, blocks.cycle.len());
+        let at = self.spot(Block::Loop, blocks.cycle.len() - 1);
         (gap_rad.abs() > CLOSED_RAD).then_some(Miss::Open { at, gap_rad })
     }
 
@@ -258,8 +258,8 @@ impl fmt::Display for Miss {
             ),
             Miss::Speed { at, speed_rad_s, limit_rad_s } => write!(
                 f,
-                "{at}: the step to the next takes {:.0} °/s, but its servo turns no faster than \
-                 {:.0} °/s without load",
+                "{at}: the step to the next takes {:.1} °/s, but its servo turns no faster than \
+                 {:.1} °/s without load",
                 speed_rad_s.to_degrees(),
                 limit_rad_s.to_degrees()
             ),
