@@ -236,7 +236,8 @@ pub struct Table {
     pub design: PathBuf,
 
     /// Rows a second, above 0 and at most 10000; a period must be a whole number of them.
-    #[arg(long, value_name = "HZ", group = "rows", value_parser = rate_hz)]
+    #[arg(long, value_name = "HZ", group = "rows", value_parser = rate_hz,
+        allow_negative_numbers = true)]
     pub rate: Option<f64>,
 
     /// Rows a period, 2 to 65535 [default: as many as pulses come in a period].

@@ -112,25 +112,27 @@ fn twin_an_odd_ramp_still_meets_the_loop() {
     }
 }
 
-/// From straight and back to it: no step faster than nine tenths of what joints do, and with one
-/// step less one would be. The wave alone is much slower.
+/// From straight and back to it: no step faster than nine tenths of what joints do or, where the loop
+/// comes near to that itself, than halfway from it to their limit; and with one step less one would
+/// be.
 #[test]
 fn twin_start_and_return_are_as_short_as_speeds_allow() {
     let running = commands(0.5, Start::Running);
     let wave_rad_s = fastest(&Blocks::of(&running, 100, &limits(1e3)).unwrap().cycle, 0.02);
-    for times in [1.2, 1.6, 3.0] {
+    for times in [1.02, 1.2, 1.6, 3.0] {
         let limit_rad_s = times * wave_rad_s;
+        let most_rad_s = (0.9 * limit_rad_s).max(0.5 * (limit_rad_s + wave_rad_s)) * (1.0 + 1e-12);
         let blocks = Blocks::of(&running, 100, &limits(limit_rad_s)).unwrap();
         let start = [&blocks.start[..], &blocks.cycle[..1]].concat();
         let (up, down) = (fastest(&start, 0.02), fastest(&blocks.stop, 0.02));
-        assert!(up.max(down) <= 0.9 * limit_rad_s, "{times}: {up} and {down} of {limit_rad_s}");
+        assert!(up.max(down) <= most_rad_s, "{times}: {up} and {down} of {most_rad_s}");
         assert!(blocks.start[0].iter().chain(blocks.stop.last().unwrap()).all(|a| *a == 0.0));
         assert_eq!(blocks.stop[0], blocks.cycle[0]);
         let shorter_s = 0.02 * (blocks.start.len() - 1) as f64;
         let shorter = Ends { start_s: Some(shorter_s), ..limits(limit_rad_s) };
         let shorter = Blocks::of(&running, 100, &shorter).unwrap();
         let start = [&shorter.start[..], &shorter.cycle[..1]].concat();
-        assert!(fastest(&start, 0.02) > 0.9 * limit_rad_s);
+        assert!(fastest(&start, 0.02) > most_rad_s);
     }
 }
 

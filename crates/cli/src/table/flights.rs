@@ -5,7 +5,7 @@ use undulift_flight::Settings;
 use undulift_gait::firmware::{FirmwareTable, Timing};
 use undulift_search::{TableFlight, fly_gait, fly_table};
 
-use super::Job;
+use super::job::Job;
 
 /// What a table's flights came to.
 pub struct Flights {

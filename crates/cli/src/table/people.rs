@@ -7,7 +7,8 @@ use undulift_gait::firmware::{Channel, FirmwareTable, Scale, Unit};
 use undulift_search::{Coarsest, TableFlight};
 
 use super::flights::Flights;
-use super::{Job, percent, trade};
+use super::job::Job;
+use super::{percent, trade};
 use crate::json;
 use crate::people::line;
 
@@ -168,7 +169,7 @@ pub fn object(
     });
     object.insert("table".into(), of_table);
     let [own, of_table] = match &flights.whole {
-        Some(flights) => flights.each_ref().map(|flight| flight_object(flight)),
+        Some(flights) => flights.each_ref().map(flight_object),
         None => [Value::Null, Value::Null],
     };
     object.insert("computed".into(), own);

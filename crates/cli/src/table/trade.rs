@@ -1,13 +1,13 @@
 //! What coarser tables cost.
 
-use std::fmt::Write as _;
-use std::io::Write;
+use std::fmt::Write;
 
 use serde_json::{Value, json};
 use undulift_search::{Coarsest, Trial};
 
+use super::job::Job;
 use super::people::flight_object;
-use super::{Job, percent};
+use super::percent;
 
 /// A line for each number of rows: its coarsest table within the tolerance, or else its finest.
 pub fn answer(hunted: &Coarsest, tolerance: f64, job: &Job<'_>) -> String {
@@ -47,6 +47,9 @@ pub fn answer(hunted: &Coarsest, tolerance: f64, job: &Job<'_>) -> String {
             None => writeln!(text, "      -   {resolution:>9}   joints or board can't do it"),
         };
     }
+    text.push_str(
+        "  best: the fewest rows × bits of those within it together with every finer table tried\n",
+    );
     text
 }
 
@@ -71,8 +74,8 @@ fn shown(hunted: &Coarsest, tolerance: f64) -> Vec<&Trial> {
 }
 
 /// All tables as CSV.
-pub fn write(file: &mut dyn Write, hunted: &Coarsest, tolerance: f64) -> anyhow::Result<()> {
-    let mut table = csv::Writer::from_writer(file);
+pub fn csv(hunted: &Coarsest, tolerance: f64) -> anyhow::Result<String> {
+    let mut table = csv::Writer::from_writer(Vec::new());
     table.write_record([
         "rows",
         "unit",
@@ -102,8 +105,7 @@ pub fn write(file: &mut dyn Write, hunted: &Coarsest, tolerance: f64) -> anyhow:
             trial.is_within(tolerance).to_string(),
         ])?;
     }
-    table.flush()?;
-    Ok(())
+    Ok(String::from_utf8(table.into_inner()?)?)
 }
 
 pub fn objects(hunted: &Coarsest, tolerance: f64) -> Value {

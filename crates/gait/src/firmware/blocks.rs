@@ -5,7 +5,8 @@ use crate::{Clock, Commands, GaitError, Instant, Start};
 /// Most rows of a block.
 pub(crate) const MOST_ROWS: usize = 65_535;
 
-/// What a start and a return may take of a joint's speed: the rest is left for its load.
+/// What a start and a return may take of a joint's speed: the rest is left for its load. A loop that
+/// takes more itself leaves them half of what it leaves.
 const SPEED_SHARE: f64 = 0.9;
 
 /// Longest start or return that is looked for, in periods.
@@ -194,24 +195,37 @@ impl Swell<'_> {
         }
         let one_period = self.cycle.len();
         let most = (MOST_PERIODS * one_period).min(MOST_ROWS - 1);
-        let whole = [self.cycle, &self.cycle[..1]].concat();
+        let of_loop = self.most_share(&[self.cycle, &self.cycle[..1]].concat(), ends);
         // A loop that is itself too fast is told as such; its ends are then of no interest.
-        let hopeless = !self.keeps(&whole, ends, 1.0);
-        if hopeless || ends.speeds_rad_s.iter().all(Option::is_none) {
+        if of_loop == 0.0 || of_loop > 1.0 {
             return Ok(one_period.min(most));
         }
-        let keeps = |steps: &usize| self.keeps(&swell(self, *steps), ends, SPEED_SHARE);
-        Ok((1..=most).find(keeps).unwrap_or(one_period.min(most)))
+        let share = SPEED_SHARE.max(0.5 * (1.0 + of_loop));
+        let keeps = |steps: usize| self.most_share(&swell(self, steps), ends) <= share;
+        let doubled = std::iter::successors(Some(1), |steps| Some(2 * steps));
+        let tried = doubled.take_while(|&steps| steps < most).chain([most]);
+        let Some(mut enough) = tried.into_iter().find(|&steps| keeps(steps)) else {
+            return Ok(one_period.min(most));
+        };
+        let mut too_few = enough / 2;
+        while enough - too_few > 1 {
+            let middle = (enough + too_few) / 2;
+            if keeps(middle) { enough = middle } else { too_few = middle }
+        }
+        Ok(enough)
     }
 
-    /// Whether no step is faster than a share of what joints do.
-    fn keeps(&self, rows: &[Vec<f64>], ends: &Ends, share: f64) -> bool {
-        rows.windows(2).all(|pair| {
-            let mut steps = pair[0].iter().zip(&pair[1]).zip(&ends.speeds_rad_s);
-            steps.all(|((from, to), speed_rad_s)| {
-                speed_rad_s.is_none_or(|most| (to - from).abs() <= share * most * self.step_s)
-            })
-        })
+    /// Largest share of its joint's speed that a step takes; 0 where no speed is known.
+    fn most_share(&self, rows: &[Vec<f64>], ends: &Ends) -> f64 {
+        let steps = rows.windows(2).flat_map(|pair| {
+            let turns = pair[0].iter().zip(&pair[1]).map(|(from, to)| (to - from).abs());
+            turns.zip(&ends.speeds_rad_s)
+        });
+        let share = |(turn_rad, most_rad_s): (f64, &Option<f64>)| match most_rad_s {
+            Some(most_rad_s) if turn_rad > 0.0 => turn_rad / (most_rad_s * self.step_s),
+            _ => 0.0,
+        };
+        steps.map(share).fold(0.0, f64::max)
     }
 }
 
