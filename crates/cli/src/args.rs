@@ -261,7 +261,7 @@ pub struct Table {
     /// What numbers are in [default: deg in csv and json, rad in joint-trajectory; in c pulses where
     /// every axis has a servo, else cdeg].
     ///
-    /// Pulses, and all of c, are by channel as [wiring] says, signs and offsets in; the rest are
+    /// Pulses, and all of c, are by channel as `[wiring]` says, signs and offsets in; the rest are
     /// angles of joints.
     #[arg(long, value_enum)]
     pub unit: Option<TableUnit>,

@@ -48,7 +48,7 @@ fn frozen_answers() {
 fn frozen_refusals() {
     let folder = tempfile::tempdir().unwrap();
     let out = folder.path().join("t.h");
-    let cases: [(&[&str], i32); 18] = [
+    let cases: [(&[&str], i32); 19] = [
         (&["--set", "gait.frequency_hz=3"], 1),
         (&["--set", "joints.yaw_travel_deg=40"], 1),
         (
@@ -71,6 +71,7 @@ fn frozen_refusals() {
         (&["--steps", "41"], 1),
         (&["--steps", "60", "--frame-ms", "10"], 0),
         (&["--rate", "49"], 1),
+        (&["--rate", "10000", "--frame-ms", "0.1", "--set", "gait.frequency_hz=0.01"], 1),
         (&["--rate", "0"], 2),
         (&["--rate", "-50"], 2),
         (&["--steps", "1"], 2),

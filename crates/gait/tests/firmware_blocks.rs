@@ -357,6 +357,7 @@ fn analytic_blocks_follow_each_other() {
     let start = |ms: u32| table.start_at(0, 1000 * ms);
     assert_eq!([0, 500, 1000, 1010, 1020, 1030].map(start), [0, 0, 0, 5, 10, 15]);
     assert_eq!([1040, 1050, 1100, 1110, 1120].map(start), [20, 25, 30, 25, 20]);
+    assert_eq!(table.loop_from_us(), 1_040_000);
     let stop = |ms: u32| table.stop_at(0, 1000 * ms);
     assert_eq!([0, 5, 10, 20, 30, 4_000_000].map(stop), [20, 15, 10, 0, 0, 0]);
     assert_eq!(Block::ALL.map(Block::word), ["start", "loop", "stop"]);

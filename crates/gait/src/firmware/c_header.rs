@@ -156,6 +156,8 @@ fn sizes(table: &FirmwareTable, prefix: &str, c_type: CType) -> String {
     define("STOP_ROWS", format!("{}u", table.stop.len()), "from the loop's first row to straight");
     define("PERIOD_US", format!("{}u", table.period_us()), "of the loop, microseconds");
     define("DELAY_US", format!("{}u", table.delay_us()), "from the trigger to the first motion");
+    let from_us = format!("{}u", table.loop_from_us());
+    define("LOOP_FROM_US", from_us, "from the trigger to the loop's first row");
     define("BYTES", format!("{}u", table.flash_bytes(c_type)), "of start, loop and stop");
     let crc = format!("0x{:08X}u", table.crc32(c_type));
     define("CRC32", crc, "of start, loop and stop, lowest bytes first");

@@ -135,6 +135,14 @@ impl FirmwareTable {
         micros(self.preamble.delay_s)
     }
 
+    /// From the trigger to the loop's first row, µs.
+    pub fn loop_from_us(&self) -> u32 {
+        let rows = self.start.len() as u64 * u64::from(self.period_us());
+        let n = self.cycle.len() as u64;
+        let start_us = (2 * rows + n) / (2 * n);
+        u32::try_from(start_us + u64::from(self.delay_us())).unwrap_or(u32::MAX)
+    }
+
     /// What goes out on a channel at a time since the loop's first row: in straight lines between
     /// rows, to the nearest count, halves away from zero, in whole numbers only, as the reader in C
     /// has it.
