@@ -17,6 +17,7 @@ mod many;
 mod new;
 mod people;
 mod size;
+mod table;
 mod terminal;
 mod trace_file;
 mod tune;
@@ -100,6 +101,7 @@ fn main() -> ExitCode {
         Command::Budget(args) => budget::run(args),
         Command::Size(args) => size::run(args),
         Command::Tune(args) => tune::run(args),
+        Command::Table(args) => table::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),
     };

@@ -1,15 +1,38 @@
 //! Files that are written whole or not at all.
 
 use std::io::{self, Write};
-use std::path::Path;
+use std::path::{Path, PathBuf};
 
 use anyhow::{Context, anyhow};
+use tempfile::NamedTempFile;
 
 /// Fills a file beside its place and moves it there when it is complete.
 pub fn write(
     path: &Path,
     fill: impl FnOnce(&mut dyn Write) -> anyhow::Result<()>,
 ) -> anyhow::Result<()> {
+    let beside = filled(path, fill)?;
+    put(beside, path)
+}
+
+/// Writes several files, none of them moved to its place before all are complete.
+pub fn write_all(files: &[(PathBuf, String)]) -> anyhow::Result<()> {
+    let mut complete = Vec::new();
+    for (path, text) in files {
+        anyhow::ensure!(!path.is_dir(), "can't write {}: it is a folder", path.display());
+        complete.push(filled(path, |file| Ok(file.write_all(text.as_bytes())?))?);
+    }
+    for (beside, (path, _)) in complete.into_iter().zip(files) {
+        put(beside, path)?;
+    }
+    Ok(())
+}
+
+/// A file beside its place.
+fn filled(
+    path: &Path,
+    fill: impl FnOnce(&mut dyn Write) -> anyhow::Result<()>,
+) -> anyhow::Result<NamedTempFile> {
     let cannot = || format!("can't write {}", path.display());
     let folder = path.parent().filter(|parent| !parent.as_os_str().is_empty());
     let mut builder = tempfile::Builder::new();
@@ -24,8 +47,14 @@ pub fn write(
     fill(&mut buffered).with_context(cannot)?;
     buffered.flush().with_context(cannot)?;
     drop(buffered);
-    beside.persist(path).map_err(|refused| anyhow!("{}: {}", cannot(), why(&refused.error)))?;
-    Ok(())
+    Ok(beside)
+}
+
+fn put(beside: NamedTempFile, path: &Path) -> anyhow::Result<()> {
+    let refused = |refused: tempfile::PersistError| {
+        anyhow!("can't write {}: {}", path.display(), why(&refused.error))
+    };
+    beside.persist(path).map(|_| ()).map_err(refused)
 }
 
 /// Why a file can't be made, without the name of the one beside it.

@@ -93,7 +93,7 @@ fn completions_for_every_shell() {
 #[test]
 fn examples_in_help_work() {
     let folder = folder_with_designs();
-    for command in ["fly", "check", "budget", "size", "new", "completions"] {
+    for command in ["fly", "check", "budget", "size", "table", "new", "completions"] {
         let help = answer(&undulift(&[command, "--help"]));
         let (_, examples) = help.split_once("Examples:").expect("examples");
         for line in examples.lines().map(str::trim).filter(|line| !line.is_empty()) {

@@ -55,7 +55,11 @@ fn read_table(
                       take the other keys out";
         table.refuse_beside(key, "table", why, remedy);
     }
-    let kinds = [("cubic", Interpolation::Cubic), ("linear", Interpolation::Linear)];
+    let kinds = [
+        ("cubic", Interpolation::Cubic),
+        ("linear", Interpolation::Linear),
+        ("hold", Interpolation::Hold),
+    ];
     let interpolation = table.word("interpolation", &kinds).unwrap_or_default();
     let source = files.read_csv(&table.get("table")?)?;
     let joints = joints?;

@@ -1,7 +1,9 @@
-//! Gait tables: joint angles in equal steps of time, one period long.
+//! Gait tables: joint angles in equal steps of time, one period long; also those written for
+//! firmware, as a C header or as CSV in any unit.
 
 use undulift_chain::{Joint, joint_axes};
-use undulift_gait::{GaitTable, Interpolation};
+use undulift_gait::firmware::{is_table_text, read_table};
+use undulift_gait::{GaitError, GaitTable, Interpolation};
 
 use crate::DesignError;
 use crate::columns::{ColumnRule, Columns};
@@ -11,7 +13,7 @@ use crate::range::Range;
 /// How far a time may be off its equal step, as a share of the step: rounding in a file.
 const STEP_SLACK: f64 = 0.01;
 
-/// Builds a gait from a CSV file.
+/// Builds a gait from a CSV file or a C header.
 ///
 /// # Errors
 ///
@@ -21,10 +23,14 @@ pub(crate) fn build_gait_table(
     joints: &[Joint],
     interpolation: Interpolation,
 ) -> Result<GaitTable, Vec<Mistake>> {
-    let names: Vec<String> = joint_axes(joints)
-        .iter()
-        .map(|of| format!("{}_{}_deg", of.axis.word(), of.joint_idx + 1))
-        .collect();
+    let axes = joint_axes(joints);
+    if is_firmware(source.inner()) {
+        let table = read_table(source.inner());
+        let table = table.and_then(|table| table.gait_table(&axes, interpolation));
+        return table.map_err(|error| vec![firmware_mistake(source, error)]);
+    }
+    let names: Vec<String> =
+        axes.iter().map(|of| format!("{}_{}_deg", of.axis.word(), of.joint_idx + 1)).collect();
     let columns = Columns::read(source, &rules(&names))?;
     let step_s = step_s(&columns)?;
     let radians = |name: &str| -> Option<Vec<f64>> {
@@ -34,6 +40,23 @@ pub(crate) fn build_gait_table(
     let (heading_rad, elevation_rad) = (radians("head_heading_deg"), radians("head_elevation_deg"));
     GaitTable::new(step_s, axes_rad, heading_rad, elevation_rad, interpolation)
         .map_err(|error| vec![columns.mistake(0, "time_s", DesignError::Gait(error))])
+}
+
+/// Whether it is a table for firmware with more than plain degrees in its columns.
+fn is_firmware(text: &str) -> bool {
+    let in_degrees = text.lines().any(|line| line.trim() == "# unit: deg");
+    is_table_text(text) && !in_degrees
+}
+
+fn firmware_mistake(source: &Source, error: GaitError) -> Mistake {
+    let text = source.inner();
+    let (line, why) = match error {
+        GaitError::Text { line, why } => (line, why),
+        other => (0, other.to_string()),
+    };
+    let start = text.split_inclusive('\n').take(line.saturating_sub(1)).map(str::len).sum();
+    let remedy = "write the table again with `undulift table`, or name a plain CSV";
+    Mistake::at(source, start..start, String::new(), DesignError::Row { why, remedy })
 }
 
 fn rules(axes: &[String]) -> Vec<ColumnRule> {

@@ -9,6 +9,8 @@
 //! Files hold degrees and the units that their keys name; values are in SI units
 //! and radians. Tables that other commands read are left alone until they ask: [`Tuning`] is what
 //! `[search]` says.
+//! and radians. Tables that other commands read (`search`, `wiring`) are left alone
+//! until they ask ([`Design::wiring`]).
 
 mod body;
 mod carried;
@@ -49,6 +51,7 @@ mod table;
 mod tuning;
 mod tuning_rows;
 mod unit;
+mod wiring;
 mod written;
 
 pub use carried::{Battery, Payload};

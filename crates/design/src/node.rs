@@ -133,6 +133,16 @@ impl<'d> Node<'d> {
         self.document.record(self.path.clone(), Number { value, allowed });
     }
 
+    pub(crate) fn boolean(&self) -> Option<bool> {
+        match self.value.get_ref() {
+            DeValue::Boolean(value) => Some(*value),
+            _ => {
+                self.wrong_kind("true or false");
+                None
+            }
+        }
+    }
+
     pub(crate) fn text(&self) -> Option<&'d str> {
         self.text_as("a text in quotes")
     }

@@ -18,6 +18,9 @@ const STEPS_PER_CYCLE: f64 = 20.0;
 /// Where steps are short, looks are taken this many times as often as longest steps would end.
 const LOOKS_PER_STEP: f64 = 4.0;
 
+/// Breaks nearer to each other than this are one, s.
+const TOGETHER_S: f64 = 1e-9;
+
 /// A flight in the making.
 pub(crate) struct Flying {
     pub(crate) equations: RefCell<Equations>,
@@ -93,7 +96,12 @@ impl Flying {
         let of_commands = self.equations.borrow().commands().next_break_s(time_s);
         let of_drives = self.driving.as_ref().and_then(Driving::next_break_s);
         let later = of_drives.filter(|&break_s| break_s > time_s);
-        [of_commands, later].into_iter().flatten().fold(self.settings.max_time_s, f64::min)
+        let breaks_s = [of_commands, later];
+        let breaks_s = || breaks_s.iter().flatten();
+        let first_s = breaks_s().fold(self.settings.max_time_s, |a, b| a.min(*b));
+        // Rows and frames that fall together but for rounding leave no room for a step between them.
+        let together = breaks_s().filter(|&&break_s| break_s - first_s < TOGETHER_S);
+        together.fold(first_s, |a, b| a.max(*b)).min(self.settings.max_time_s)
     }
 
     /// Integrates one smooth piece; returns what is seen at the ends of its steps.

@@ -104,8 +104,11 @@ impl Drives {
     /// What follows straight lines between rows jumps in rate at each, and would knock at the rest.
     fn refuse_jumps(&self, gait: &Gait) -> Result<(), FlightError> {
         let Pattern::Table(table) = &gait.pattern else { return Ok(()) };
-        let jumps = table.interpolation() == Interpolation::Linear;
         let follows = self.modes.contains(&Mode::Commanded);
-        if jumps && follows && !self.all_commanded() { Err(FlightError::Jumps) } else { Ok(()) }
+        match table.interpolation() {
+            Interpolation::Hold if follows => Err(FlightError::Held),
+            Interpolation::Linear if follows && !self.all_commanded() => Err(FlightError::Jumps),
+            _ => Ok(()),
+        }
     }
 }

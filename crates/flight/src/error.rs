@@ -41,9 +41,9 @@ pub enum FlightError {
         /// Angles needed.
         axes: usize,
     },
-    /// Joint loads need accelerations, which straight lines between rows don't have.
+    /// Joint loads need accelerations, which only a smooth gait has.
     #[error(
-        "joint loads need a smooth gait: with interpolation = \"linear\" accelerations are impulses; use \"cubic\""
+        "joint loads need a smooth gait: with interpolation = \"linear\" or \"hold\" accelerations are impulses; use \"cubic\""
     )]
     Impulses,
     /// A mode for each axis is needed.
@@ -75,6 +75,12 @@ pub enum FlightError {
         "with interpolation = \"linear\" the rates of axes without a servo jump, and would knock at the rest; use \"cubic\", or give every axis a servo"
     )]
     Jumps,
+    /// Rows that are held jump, and only servos follow a jump as well as they can.
+    #[error(
+        "with interpolation = \"hold\" commands jump from row to row, which joints that follow them \
+         exactly can't; use \"linear\" or \"cubic\", or fly with driven joints and a servo on every axis"
+    )]
+    Held,
     /// A setting that can't be used.
     #[error("{quantity} is {value}, but must be {allowed}")]
     Setting {

@@ -93,7 +93,9 @@ impl Look {
 /// out of time are results.
 pub fn fly(glider: &Glider, settings: &Settings) -> Result<Flight, FlightError> {
     let equations = Equations::new(glider)?;
-    let drives = Drives::commanded(equations.commands().axes().len());
+    let n_axes = equations.commands().axes().len();
+    let drives = Drives::commanded(n_axes);
+    drives.check(&glider.gait, n_axes)?;
     fly_from_release(glider, equations, &drives, settings)
 }
 

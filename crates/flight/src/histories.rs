@@ -4,7 +4,7 @@ use nalgebra::Vector3;
 use undulift_aero::STANDARD_GRAVITY_M_S2;
 use undulift_chain::Chain;
 use undulift_dynamics::{Held, JointLoads, JointMotion, Wrench, joint_loads};
-use undulift_gait::{Gait, Instant, Interpolation, Pattern};
+use undulift_gait::{Gait, Instant, Pattern};
 
 use crate::{Flight, FlightError, Glider, State};
 
@@ -124,9 +124,7 @@ pub fn loads_at(
 /// Straight lines between rows jump in rate, so their accelerations are impulses.
 pub(crate) fn refuse_impulses(gait: &Gait) -> Result<(), FlightError> {
     match &gait.pattern {
-        Pattern::Table(table) if table.interpolation() == Interpolation::Linear => {
-            Err(FlightError::Impulses)
-        }
+        Pattern::Table(table) if table.interpolation().jumps() => Err(FlightError::Impulses),
         _ => Ok(()),
     }
 }

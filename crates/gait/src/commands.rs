@@ -5,7 +5,7 @@ use undulift_lanes::{f64x4, sin_cos};
 
 use crate::table::RowMotion;
 use crate::wave::{SpanMotion, SpanWave};
-use crate::{Clock, Gait, GaitError, GaitTable, Interpolation, Pattern, Phase};
+use crate::{Clock, Gait, GaitError, GaitTable, Interpolation, Pattern, Phase, Start};
 
 /// When a gait is asked.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -120,6 +120,27 @@ impl Commands {
 
     pub(crate) fn laid(&self) -> &Laid {
         &self.laid
+    }
+
+    /// Segments of the chain.
+    pub fn n_segments(&self) -> usize {
+        self.length_shares.len()
+    }
+
+    /// The same gait with another start.
+    pub fn starting(&self, start: Start) -> Self {
+        Self { clock: Clock { start, ..self.clock }, ..self.clone() }
+    }
+
+    /// Held rows joined by straight lines; absent where rows aren't held.
+    pub(crate) fn straightened(&self) -> Option<Self> {
+        match &self.laid {
+            Laid::Table(table) if table.interpolation() == Interpolation::Hold => {
+                let laid = Laid::Table(table.running(Interpolation::Linear));
+                Some(Self { laid, ..self.clone() })
+            }
+            _ => None,
+        }
     }
 
     /// Room for one instant's commands.
@@ -241,7 +262,7 @@ impl Commands {
     pub fn next_break_s(&self, time_s: f64) -> Option<f64> {
         let of_ramp = self.clock.next_break_s(time_s);
         let of_table = match &self.laid {
-            Laid::Table(table) if table.interpolation() == Interpolation::Linear => {
+            Laid::Table(table) if table.interpolation().jumps() => {
                 let rows = table.rows_at(self.clock.angle_rad(time_s) - self.phase_rad);
                 // A time that rounds onto a row belongs to the piece after it.
                 let next_rad = |rows: f64| table.angle_at_rows(rows) + self.phase_rad;

@@ -1,14 +1,15 @@
 //! Joint commands in time: a wave down the body, or a table of angles.
 //!
 //! A [`Gait`] is what a design says; [`Commands`] is that gait laid on one chain, ready to be
-//! asked at any time. Rates and accelerations are exact derivatives. Nothing here knows of servos
-//! or air.
+//! asked at any time. Rates and accelerations are exact derivatives. Of servos only [`firmware`]
+//! knows, and of them only their pulses; nothing knows of air.
 //!
 //! Angles are in radians. Heading is positive with the nose to the left, elevation with the nose
 //! up; waves travel from nose to tail.
 
 mod commands;
 mod error;
+pub mod firmware;
 mod peaks;
 mod spline;
 mod start;

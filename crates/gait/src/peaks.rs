@@ -41,7 +41,11 @@ const RATE: Reading = |motion, axis_idx| motion.rates_rad_s[axis_idx].abs();
 impl Commands {
     /// Largest absolute angles and rates of all axes from one time to another, in the order of
     /// [`Commands::axes`]: looked for often enough that no peak is passed over, then closed in on.
+    /// Rows that are held ask for their steps over the time between them.
     pub fn peaks(&self, from_s: f64, to_s: f64) -> Vec<Peak> {
+        if let Some(straight) = self.straightened() {
+            return straight.peaks(from_s, to_s);
+        }
         let looks = self.looks(to_s - from_s);
         let apart_s = (to_s - from_s) / looks as f64;
         let mut room = self.room();

@@ -10,6 +10,15 @@ pub enum Interpolation {
     /// The periodic cubic spline.
     #[default]
     Cubic,
+    /// Each row stands until the next; only what follows commands as well as it can flies it.
+    Hold,
+}
+
+impl Interpolation {
+    /// Whether angles or rates jump at the rows.
+    pub fn jumps(self) -> bool {
+        self != Interpolation::Cubic
+    }
 }
 
 /// A repeating table of joint angles in equal steps.
@@ -68,12 +77,6 @@ impl GaitTable {
         if let Some(&value) = columns.iter().flatten().find(|value| !value.is_finite()) {
             return Err(GaitError::Unusable { quantity: "table angle", value });
         }
-        let bends: Vec<Vec<f64>> = match interpolation {
-            Interpolation::Cubic => {
-                columns.iter().map(|c| periodic_second_derivatives(c)).collect()
-            }
-            Interpolation::Linear => vec![vec![0.0; n_rows]; columns.len()],
-        };
         Ok(Self {
             step_s,
             n_rows,
@@ -82,7 +85,7 @@ impl GaitTable {
             has_heading,
             has_elevation,
             values: by_rows(&columns),
-            bends: by_rows(&bends),
+            bends: by_rows(&bends(&columns, interpolation)),
         })
     }
 
@@ -99,6 +102,16 @@ impl GaitTable {
     /// How it runs between its rows.
     pub fn interpolation(&self) -> Interpolation {
         self.interpolation
+    }
+
+    /// The same rows, run through in another way.
+    pub fn running(&self, interpolation: Interpolation) -> Self {
+        let columns: Vec<Vec<f64>> = (0..self.n_columns())
+            .map(|column| {
+                self.values.iter().skip(column).step_by(self.n_columns()).copied().collect()
+            })
+            .collect();
+        Self { interpolation, bends: by_rows(&bends(&columns, interpolation)), ..self.clone() }
     }
 
     pub(crate) fn n_rows(&self) -> usize {
@@ -133,8 +146,8 @@ impl GaitTable {
     pub(crate) fn fill(&self, phase: Phase, piece_angle_rad: f64, out: RowMotion<'_>) {
         let place = self.rows_at(phase.angle_rad);
         let row = match self.interpolation {
-            Interpolation::Linear => self.rows_at(piece_angle_rad).floor(),
             Interpolation::Cubic => place.floor(),
+            Interpolation::Linear | Interpolation::Hold => self.rows_at(piece_angle_rad).floor(),
         };
         let f = place - row;
         let rows_per_rad = self.n_rows as f64 / TAU;
@@ -142,7 +155,8 @@ impl GaitTable {
         let acceleration = phase.acceleration_rad_s2 * rows_per_rad;
         let columns = self.n_columns();
         let start = row.rem_euclid(self.n_rows as f64) as usize % self.n_rows;
-        let end = (start + 1) % self.n_rows;
+        let holds = self.interpolation == Interpolation::Hold;
+        let end = if holds { start } else { (start + 1) % self.n_rows };
         let g = 1.0 - f;
         for column in 0..columns {
             let [a, b] = [start, end].map(|row| self.values[row * columns + column]);
@@ -155,6 +169,15 @@ impl GaitTable {
             out.accelerations[column] = slope * acceleration + second * rate * rate;
         }
     }
+}
+
+/// Second derivatives of columns, times step²/6.
+fn bends(columns: &[Vec<f64>], interpolation: Interpolation) -> Vec<Vec<f64>> {
+    let of_column = |column: &Vec<f64>| match interpolation {
+        Interpolation::Cubic => periodic_second_derivatives(column),
+        Interpolation::Linear | Interpolation::Hold => vec![0.0; column.len()],
+    };
+    columns.iter().map(of_column).collect()
 }
 
 fn by_rows(columns: &[Vec<f64>]) -> Vec<f64> {

@@ -8,18 +8,21 @@
 //! in the order of the wish ([`size`] says how far). Three kinds on an axis, ends that differ and
 //! another battery aren't tried; nor are servos checked for room in a segment.
 //!
-//! Numbers are set by [`tuning`], which asks the [`optimiser`] what to try next. All is the same on
-//! any number of threads. Nothing here opens a file or prints.
+//! Numbers are set by [`tuning`], which asks the [`optimiser`] what to try next. [`Hunt`] finds the
+//! coarsest gait table that still flies as computed. All is the same on any number of threads. Nothing
+//! here opens a file or prints.
 
 mod asked;
 mod bench;
 mod choice;
+mod coarsest;
 mod error;
 mod estimate;
 mod misses;
 mod mixes;
 pub mod optimiser;
 mod sizing;
+mod table_flights;
 mod texts;
 mod travel;
 pub mod tuning;
@@ -28,8 +31,10 @@ mod want;
 pub use asked::{Asked, Drops, asked_at_rest, asked_in_flight};
 pub use bench::Candidate;
 pub use choice::{Choice, Split, driven};
+pub use coarsest::{Coarsest, Hunt, MOST_ROWS_TRIED, Trial};
 pub use error::SizingError;
 pub use sizing::{Sized, Step, size};
+pub use table_flights::{TableFlight, fly_gait, fly_table};
 pub use texts::with_servos;
 pub use travel::{BeyondTravel, beyond_travel};
 pub use want::Want;
