@@ -130,6 +130,20 @@ fn twin_tables_read_back_as_gaits() {
     }
 }
 
+/// Without a flag, rows come as often as the firmware of the design sends them, as far as a period
+/// is a whole number of frames; else the next slower way: 1.25 Hz at 50, 100 and 33 Hz.
+#[test]
+fn analytic_rows_follow_the_firmware() {
+    let folder = tempfile::tempdir().unwrap();
+    let out = folder.path().join("t.json");
+    for (update_hz, rows) in [("50", 40), ("100", 80), ("33", 26)] {
+        let set = format!("firmware.update_hz={update_hz}");
+        let output = table(REED, &out, &["--format", "json", "--json", "--set", &set]);
+        let told: Value = serde_json::from_str(&answer(&output)).unwrap();
+        assert_eq!(told["table"]["rows"], rows, "{update_hz} Hz");
+    }
+}
+
 /// A header whose numbers were changed is refused with its line; held rows are refused where joints
 /// follow exactly, with what to do.
 #[test]
