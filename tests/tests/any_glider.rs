@@ -6,9 +6,11 @@ use undulift_aero::{Air, Scales, Section, SkinFriction};
 use undulift_chain::{Carried, Chain, Joint, PointMass, Segment};
 use undulift_design::quantities::{Quantity, of_flight};
 use undulift_flight::{
-    FlightError, Glider, Launch, Settings, bands, doubts, doubts_ahead, fly, outlook, summary,
+    Drives, Failure, Fault, FlightError, Glider, Launch, Mode, Settings, bands, doubts,
+    doubts_ahead, fly, fly_driven, histories, outlook, summary, tracking,
 };
 use undulift_gait::{Gait, GaitTable, Interpolation, Pattern, Start, Taper, Wave};
+use undulift_servo::{Endurance, PositionLoop, Pulse, Servo};
 
 /// From a thousandth to a thousand times the middle, evenly in the logarithm.
 fn around(middle: f64, decades: f64) -> impl Strategy<Value = f64> {
@@ -170,6 +172,103 @@ fn glider() -> impl Strategy<Value = Glider> {
             },
         )
     })
+}
+
+fn servo() -> impl Strategy<Value = Servo> {
+    (around(0.5, 1.5), around(10.0, 0.7), around(0.09, 0.7), prop_oneof![Just(0.0), Just(1e-4)])
+        .prop_map(|(stall_torque_nm, no_load_speed_rad_s, full_at_rad, rotor_kg_m2)| Servo {
+            name: "any".into(),
+            mass_kg: 0.0,
+            at_voltage_v: 6.0,
+            stall_torque_nm,
+            no_load_speed_rad_s,
+            stall_current_a: stall_torque_nm * no_load_speed_rad_s,
+            no_load_current_a: 0.01 * stall_torque_nm,
+            idle_current_a: 0.0,
+            gear_efficiency: None,
+            rotor_inertia_at_output_kg_m2: rotor_kg_m2,
+            endurance: Endurance::Unknown,
+            pulse: Pulse::default(),
+            position_loop: PositionLoop { full_at_rad, ..PositionLoop::default() },
+            price: None,
+        })
+}
+
+/// Axes of every kind, some of which fail on the way.
+fn drives(n_axes: usize) -> impl Strategy<Value = Drives> {
+    let mode = prop_oneof![
+        1 => Just(Mode::Commanded),
+        3 => (0..2_usize).prop_map(|servo_idx| Mode::Driven { servo_idx }),
+        1 => Just(Mode::Limp),
+        1 => Just(Mode::Locked),
+    ];
+    let fault =
+        (0..n_axes.max(1), 0.0..0.4_f64, any::<bool>()).prop_map(|(axis_idx, at_s, limp)| Fault {
+            axis_idx,
+            at_s,
+            failure: if limp { Failure::Limp } else { Failure::Locked },
+        });
+    (
+        prop::collection::vec(mode, n_axes),
+        prop::collection::vec(fault, 0..if n_axes > 0 { 3 } else { 1 }),
+        prop::array::uniform2(servo()),
+        prop::option::of(around(50.0, 0.5)),
+    )
+        .prop_map(|(modes, faults, servos, update_hz)| Drives {
+            modes,
+            faults,
+            servos: servos.to_vec(),
+            battery: None,
+            update_hz,
+        })
+}
+
+fn driven_glider() -> impl Strategy<Value = (Glider, Drives)> {
+    glider().prop_flat_map(|glider| {
+        let joints = glider.chain.joints();
+        let n_axes = joints.iter().map(|j| usize::from(j.yaw) + usize::from(j.pitch)).sum();
+        (Just(glider), drives(n_axes))
+    })
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig { cases: 100, ..ProptestConfig::default() })]
+
+    /// The same with joints that servos turn, limp ones, locked ones and faults: finite or refused.
+    #[test]
+    fn any_driven_glider_flies_to_an_end_or_is_refused((glider, drives) in driven_glider()) {
+        let settings = Settings {
+            tolerance: 1e-4,
+            max_time_s: 0.5,
+            through_inversion: true,
+            floor_m: 0.0,
+        };
+        match fly_driven(&glider, &drives, &settings) {
+            Ok(mut flight) => {
+                let flown = summary(&glider, &mut flight);
+                prop_assert!(flown.speed_m_s.is_finite() && flown.landing_energy_j.is_finite());
+                let tracking = tracking(&mut flight);
+                for peak in &tracking.peaks {
+                    prop_assert!(peak.angle_rad.is_finite() && peak.rate_rad_s.is_finite());
+                }
+                for spell in &tracking.saturations {
+                    prop_assert!(spell.from_s <= spell.to_s && spell.to_s <= flight.time_s);
+                }
+                match histories(&glider, &mut flight, 0.1) {
+                    Ok(loads) => prop_assert!(loads.left_at_nose < 1e-6, "{}", loads.left_at_nose),
+                    Err(error) => prop_assert_eq!(error, FlightError::Impulses),
+                }
+            }
+            Err(
+                error @ (FlightError::ReleasedOnFloor { .. }
+                | FlightError::ReleasedInverted { .. }
+                | FlightError::TooManySteps { .. }
+                | FlightError::StepTooSmall { .. }
+                | FlightError::Jumps),
+            ) => prop_assert!(!error.to_string().is_empty()),
+            Err(other) => prop_assert!(false, "{other}"),
+        }
+    }
 }
 
 proptest! {

@@ -339,7 +339,8 @@ fn twin_commanded_axes_follow_beside_driven_ones() {
     let commanded =
         histories(&glider, &mut fly(&glider, &within(1e-8, 0.5)).unwrap(), 0.01).unwrap();
     assert!(loads.left_at_nose < 1e-9);
-    for row in 0..loads.times_s.len() {
+    // Released, all move as commanded; from then on only those that follow.
+    for row in 1..loads.times_s.len() {
         assert_eq!(loads.rates_rad_s[row][11..], commanded.rates_rad_s[row][11..]);
         assert_eq!(
             loads.accelerations_rad_s2[row][11..],

@@ -6,7 +6,7 @@ use serde::Deserialize;
 use undulift_chain::{Chain, Joint, PointMass, Segment, Shape};
 use undulift_dynamics::{Articulated, Drive, Held, JointMotion, Mechanics, Outside, joint_loads};
 use undulift_flight::{Pose, Settings, bench_loads, fly, histories};
-use undulift_gait::Pattern;
+use undulift_gait::{Gait, GaitTable, Interpolation, Pattern, Start};
 use undulift_tests::chains::{Case, cases};
 use undulift_tests::gliders::{in_vacuum, undulating};
 use undulift_tests::{read_json, relative_difference};
@@ -253,7 +253,7 @@ fn analytic_held_out_level() {
 fn twin_held_in_the_release_shape() {
     let glider = undulating();
     let [once, twice] =
-        [1.0, 2.0].map(|factor| bench_loads(&glider, Pose::Release, 4, factor).unwrap());
+        [1.0, 2.0].map(|factor| bench_loads(&glider, Pose::Gait { at_s: 0.0 }, 4, factor).unwrap());
     let weight_n = glider.chain.mass_kg() * undulift_aero::STANDARD_GRAVITY_M_S2;
     assert_relative_eq!(once.left.force_n.norm(), weight_n, epsilon = 1e-12);
     for (one, two) in once.torques_nm.iter().zip(&twice.torques_nm) {
@@ -279,6 +279,46 @@ fn twin_held_in_the_release_shape() {
             epsilon = 1e-8
         );
     }
+}
+
+/// A pose given by its angles bears what the same shape does where a gait table holds it, whose body
+/// frame is found by other code.
+#[test]
+fn twin_a_pose_bears_what_a_table_that_holds_it_does() {
+    let mut glider = undulating();
+    let angles_rad: Vec<f64> = (0..22).map(|k| 0.4 * (1.7 * f64::from(k)).sin() + 0.05).collect();
+    let columns = angles_rad.iter().map(|angle_rad| vec![*angle_rad; 2]).collect();
+    let table = GaitTable::new(1.0, columns, None, None, Interpolation::Cubic).unwrap();
+    let pattern = Pattern::Table(table);
+    glider.gait = Gait { pattern, phase_rad: 0.0, start: Start::Running };
+    (glider.launch.roll_rad, glider.launch.pitch_rad) = (0.3, -0.2);
+    let pose = Pose::Angles { angles_rad, roll_rad: 0.3, pitch_rad: -0.2 };
+    for clamp_idx in [0, 5, 11] {
+        let by_table = bench_loads(&glider, Pose::Gait { at_s: 0.0 }, clamp_idx, 1.5).unwrap();
+        let by_angles = bench_loads(&glider, pose.clone(), clamp_idx, 1.5).unwrap();
+        assert!(by_table.torques_nm.iter().all(|torque_nm| torque_nm.abs() < 10.0));
+        for (one, other) in by_table.torques_nm.iter().zip(&by_angles.torques_nm) {
+            assert_relative_eq!(one, other, epsilon = 1e-11);
+        }
+    }
+    let pose = Pose::Angles { angles_rad: vec![0.0; 3], roll_rad: 0.0, pitch_rad: 0.0 };
+    let refused = bench_loads(&glider, pose, 0, 1.0).unwrap_err().to_string();
+    assert_eq!(refused, "the pose has 3 joint angles, but the chain has 22 axes");
+}
+
+/// The shape at a time t is that of a release whose phase is 2πft further.
+#[test]
+fn twin_a_gait_at_a_time_is_a_release_further_on() {
+    let glider = undulating();
+    let mut further = glider.clone();
+    further.gait.phase_rad -= std::f64::consts::TAU * 1.2 * 0.35;
+    let later = bench_loads(&glider, Pose::Gait { at_s: 0.35 }, 3, 1.0).unwrap();
+    let shifted = bench_loads(&further, Pose::Gait { at_s: 0.0 }, 3, 1.0).unwrap();
+    let first = bench_loads(&glider, Pose::Gait { at_s: 0.0 }, 3, 1.0).unwrap();
+    for (one, other) in later.torques_nm.iter().zip(&shifted.torques_nm) {
+        assert_relative_eq!(one, other, epsilon = 1e-11);
+    }
+    assert!((later.torques_nm[3] - first.torques_nm[3]).abs() > 1e-3);
 }
 
 /// What the chain's energy changes by is the work of its joints and of the air, each far from

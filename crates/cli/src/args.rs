@@ -3,6 +3,8 @@ use std::path::PathBuf;
 use clap::{Parser, Subcommand};
 use undulift_design::Override;
 
+use crate::driven::FaultAsked;
+
 /// Flies snake-inspired gliding robots before anyone builds them.
 ///
 /// A design file describes a chain of segments joined by servos, the wave that runs down it and how
@@ -23,6 +25,7 @@ pub enum Command {
     Check(Check),
     Budget(Budget),
     Size(Size),
+    Tune(Tune),
     Table(Table),
     New(New),
     Completions(Completions),
@@ -30,13 +33,14 @@ pub enum Command {
 
 /// Fly designs from release to the floor, and say how it went.
 ///
-/// Joints follow the gait exactly. Exit status 1 means that a flight did not land, rolled or pitched
+/// Joints follow the gait exactly, unless --joints driven lets their servos turn them. Exit status 1 means that a flight did not land, rolled or pitched
 /// beyond `[limits] tilt_deg`, or asked a joint to go beyond its travel.
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift fly designs/reed-16.toml
   undulift fly designs/reed-16.toml --set gait.frequency_hz=1.0 --json
   undulift fly designs/reed-16.toml --trace reed-16.csv --every-ms 2
+  undulift fly designs/reed-16.toml --joints driven --fault 14:yaw=locked@1.2
   undulift fly designs/reed-16.toml --launches 200 --seed 7 --csv launches.csv")]
 pub struct Fly {
     /// Design files (TOML).
@@ -67,6 +71,18 @@ pub struct Fly {
     #[arg(long)]
     pub through_inversion: bool,
 
+    /// What turns the joints.
+    #[arg(long, value_enum, default_value_t = Joints::Commanded)]
+    pub joints: Joints,
+
+    /// Let an axis fail, such as 5:yaw=limp or 5:yaw=locked@0.8; may be given again.
+    ///
+    /// JOINT counts from 1 at the head, AXIS is yaw or pitch. A limp axis turns freely, a locked one
+    /// stops at once and holds its angle. SECONDS count from release, where it fails if none are
+    /// given. End stops are left out: an axis that turns beyond its travel is told.
+    #[arg(long = "fault", value_name = "JOINT:AXIS=limp|locked[@SECONDS]")]
+    pub faults: Vec<FaultAsked>,
+
     /// Fly it this many times more, each launch a little different.
     ///
     /// What differs stands in the design's `[spread]`; without one, speed, attitude, spin and phase
@@ -94,29 +110,54 @@ pub struct Fly {
     pub sets: Vec<Override>,
 }
 
+/// What turns the joints.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+pub enum Joints {
+    /// They follow the gait exactly, whatever torque that takes.
+    Commanded,
+    /// Their servos do as well as they can, on the battery's voltage, with the commands of
+    /// `[firmware] update_hz`; a joint without a servo follows the gait.
+    Driven,
+}
+
 /// Ask whether the servos can do it: torque, speed, power, heat and battery, joint by joint.
 ///
-/// By default over the flight; on the bench, held out level and straight or in the shape of its
-/// release, at rest. Exit status 1 means that a limit is missed: the torque factor of `[limits]`,
-/// a servo's speed, heat or travel, the battery's or its regulator's current.
+/// By default over the flight; or at rest on the bench: held out level and straight, in the shape
+/// of its release, or in the poses of a file. Exit status 1 means that a limit is missed: the
+/// torque factor of `[limits]`, a servo's speed, heat or travel, the battery's or its regulator's
+/// current. With --launches the single design launch decides it, too.
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift budget designs/reed-16.toml
+  undulift budget designs/reed-16.toml --launches 50 --seed 7
   undulift budget designs/reed-16.toml --case held-out --clamp 8 --load-factor 3
+  undulift budget designs/reed-16.toml --case release --at-s 0.4 --clamp 8
+  undulift fly designs/reed-16.toml --trace poses.csv &&
+    undulift budget designs/reed-16.toml --case poses.csv --clamp 8
   undulift budget designs/reed-16.toml --drops 10 --rest-s 60 --histories torques.csv")]
 pub struct Budget {
     /// A design file (TOML).
     #[arg(value_name = "DESIGN")]
     pub design: PathBuf,
 
-    /// What the joints bear: a flight, or the body at rest on the bench.
-    #[arg(long, value_enum, default_value_t = Case::Flight)]
+    /// What the joints bear: flight, held-out, release, or a CSV file of poses.
+    ///
+    /// flight: the design's flight. held-out: level and straight, held by --clamp. release: the
+    /// shape and attitude of its release, held by the grip or --clamp. A file holds one pose a row,
+    /// each held still by --clamp: columns yaw_1_deg, pitch_1_deg and so on for the axes that there
+    /// are, and if you like roll_deg and pitch_deg of the body, which is level without them. Other
+    /// columns are left unread, so that a trace of `fly` serves, too. At most 100000 rows.
+    #[arg(long, value_name = "CASE", default_value = "flight")]
     pub case: Case,
 
     /// The segment that holds the body on the bench, from 1 at the head; in the shape of its
     /// release it is the grip's unless given.
     #[arg(long, value_name = "SEGMENT", value_parser = clap::value_parser!(u32).range(1..=128))]
     pub clamp: Option<u32>,
+
+    /// With --case release: hold the shape that the gait has this long after release, s.
+    #[arg(long, value_name = "T", value_parser = seconds)]
+    pub at_s: Option<f64>,
 
     /// Weights for each newton of weight on the bench, more than 1 for being caught.
     #[arg(long, value_name = "G", default_value_t = 1.0, value_parser = load_factor)]
@@ -128,10 +169,31 @@ pub struct Budget {
     pub drops: u32,
 
     /// Rest between drops, s.
-    #[arg(long, value_name = "S", default_value_t = 0.0, value_parser = rest_s)]
+    #[arg(long, value_name = "S", default_value_t = 0.0, value_parser = seconds)]
     pub rest_s: f64,
 
-    /// Write joint torques (rotor inertia left out) and speeds of the flight as CSV.
+    /// Make the budget of this many launches more, each a little different.
+    ///
+    /// What differs stands in the design's `[spread]`, as for `undulift fly --launches`. At most
+    /// 100000.
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(1..=100_000))]
+    pub launches: Option<u32>,
+
+    /// Seed of the launches: the same seed gives the same launches.
+    #[arg(long, value_name = "S", default_value_t = 1, requires = "launches")]
+    pub seed: u64,
+
+    /// Threads to fly the launches on [default: all cores]; the result is the same.
+    #[arg(long, value_name = "T", requires = "launches",
+        value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub threads: Option<u16>,
+
+    /// Add a table of what each hinge carries at most.
+    #[arg(long)]
+    pub hinges: bool,
+
+    /// Write joint torques (rotor inertia left out), speeds and what the hinges carry along the
+    /// flight as CSV.
     #[arg(long, value_name = "FILE.csv")]
     pub histories: Option<PathBuf>,
 
@@ -154,7 +216,7 @@ pub struct Budget {
 }
 
 /// What the joints bear.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+#[derive(Debug, Clone, PartialEq, Eq)]
 pub enum Case {
     /// The design's flight.
     Flight,
@@ -162,6 +224,21 @@ pub enum Case {
     HeldOut,
     /// The shape and attitude of its release, held by the grip or --clamp.
     Release,
+    /// Poses of a file, held by --clamp.
+    File(PathBuf),
+}
+
+impl std::str::FromStr for Case {
+    type Err = std::convert::Infallible;
+
+    fn from_str(text: &str) -> Result<Self, Self::Err> {
+        Ok(match text {
+            "flight" => Self::Flight,
+            "held-out" => Self::HeldOut,
+            "release" => Self::Release,
+            file => Self::File(file.into()),
+        })
+    }
 }
 
 /// Choose servos of a catalogue: every joint that the design drives gets one, and what can do it is
@@ -215,6 +292,68 @@ pub enum Wish {
     Furthest,
     /// Least price of all servos; those without a price come last.
     Cheapest,
+}
+
+/// Tune numbers of a design: of all that keep what is required, find those that do best at what is
+/// wanted.
+///
+/// What may vary, what is wanted and what is required stands in the design's `[search]`, or without
+/// that heading in a file of its own. Required without being asked: that it lands, and what `fly`
+/// and `budget` end with status 1 for (tilt, joint travel, torque factor, speed, heat, currents);
+/// a limit of the search's own on the same side of a quantity replaces the design's, and
+/// `limits = "ignored"` leaves all of them out but the landing.
+///
+/// The folder gets best.toml, which flies from where it stands, history.csv with every evaluation,
+/// run.json and what is needed to go on. Ctrl-C ends after the generation under way, with status 130;
+/// what was killed goes on as well, and comes to the same. Exit status 1 means that nothing found
+/// keeps all that is required; best.toml is then what misses least.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift tune designs/reed-16.toml designs/search-reed-16.toml --out tuned
+  undulift tune mine.toml --out tuned --evaluations 20000 --seed 7
+  undulift tune --resume tuned
+  undulift fly tuned/best.toml && undulift budget tuned/best.toml")]
+pub struct Tune {
+    /// A design file (TOML).
+    #[arg(value_name = "DESIGN", required_unless_present = "resume")]
+    pub design: Option<PathBuf>,
+
+    /// What to search for (TOML) [default: the design's own `[search]`].
+    #[arg(value_name = "SEARCH")]
+    pub search: Option<PathBuf>,
+
+    /// The folder for all that is found; it is made, and must not hold anything yet.
+    #[arg(long, value_name = "FOLDER", required_unless_present = "resume")]
+    pub out: Option<PathBuf>,
+
+    /// Go on with the search of this folder where it was ended or killed.
+    #[arg(long, value_name = "FOLDER",
+        conflicts_with_all = ["design", "search", "out", "evaluations", "seed", "sets"])]
+    pub resume: Option<PathBuf>,
+
+    /// How many candidates to try [default: as the search says, else 6000].
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(1..=10_000_000))]
+    pub evaluations: Option<u32>,
+
+    /// Seed of candidates and launches: the same seed comes to the same.
+    #[arg(long, value_name = "S", default_value_t = 1)]
+    pub seed: u64,
+
+    /// Threads to fly on [default: all cores]; the result is the same.
+    #[arg(long, value_name = "T", value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub threads: Option<u16>,
+
+    /// Don't ask how the best moves and what holds it back, which takes some short searches more.
+    #[arg(long)]
+    pub brief: bool,
+
+    /// Print JSON.
+    #[arg(long)]
+    pub json: bool,
+
+    /// Use another value than the file's, such as gait.frequency_hz=1.1; may be given again.
+    #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
+    pub sets: Vec<Override>,
 }
 
 /// Write the gait as a table for firmware: whole numbers at equal steps, checked before anything is
@@ -412,7 +551,7 @@ fn load_factor(text: &str) -> Result<f64, String> {
     within(text, [-1000.0, 1000.0])
 }
 
-fn rest_s(text: &str) -> Result<f64, String> {
+fn seconds(text: &str) -> Result<f64, String> {
     within(text, [0.0, 1e6])
 }
 

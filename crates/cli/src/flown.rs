@@ -3,6 +3,7 @@
 use undulift_design::Design;
 use undulift_flight::{Bands, Doubt, End, Flight, Summary};
 
+use crate::driven::Driven;
 use crate::joints;
 use crate::launches::Launches;
 
@@ -16,6 +17,7 @@ pub struct Flown {
     pub missed: Vec<Missed>,
     pub joints_missed: Vec<joints::Missed>,
     pub launches: Option<Launches>,
+    pub driven: Option<Driven>,
 }
 
 /// A limit that a flight missed.

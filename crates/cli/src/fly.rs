@@ -6,12 +6,14 @@ use rayon::prelude::*;
 use serde_json::Value;
 use undulift_design::Design;
 use undulift_design::quantities::of_flight;
-use undulift_flight::{End, Settings, Summary, bands, doubts, fly, summary};
+use undulift_flight::{End, Settings, Summary, bands, doubts, fly_driven, summary};
 
 use crate::args::Fly;
 use crate::flown::{Flown, Missed};
 use crate::launches;
-use crate::{Outcome, Refused, doubts as words, joints, json, people, terminal, trace_file};
+use crate::{
+    Outcome, Refused, doubts as words, driven, joints, json, people, terminal, trace_file,
+};
 
 pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
     for (flag, given) in [("--trace", args.trace.is_some()), ("--csv", args.csv.is_some())] {
@@ -74,15 +76,21 @@ pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
 
 fn fly_one(path: &Path, args: &Fly, settings: &Settings) -> Result<Flown, Refused> {
     let design = undulift_design::read(path, &args.sets)?;
-    let flight = fly(&design.glider, settings);
+    let drives = driven::drives(args, &design)?;
+    let flight = fly_driven(&design.glider, &drives, settings);
     let mut flight = flight.map_err(|error| Refused::flight(&design.name, error))?;
     let summary = summary(&design.glider, &mut flight);
     let bands = bands(&design.glider, &mut flight);
     let doubts = doubts(&design.glider, &flight, &summary, &bands);
     let peaks = flight.commands().peaks(0.0, flight.time_s);
-    let joints_missed = joints::beyond_travel(&design, &peaks).collect();
+    let driven = driven::Driven::of(args, &design, &drives, &mut flight, settings);
+    let joints_missed = match &driven {
+        Some(driven) => driven.beyond_travel(&design, &peaks),
+        None => joints::beyond_travel(&design, &peaks).collect(),
+    };
     let missed = missed_limits(&design, &summary);
-    Ok(Flown { flight, summary, bands, doubts, missed, joints_missed, launches: None, design })
+    let launches = None;
+    Ok(Flown { flight, summary, bands, doubts, missed, joints_missed, launches, driven, design })
 }
 
 fn missed_limits(design: &Design, summary: &Summary) -> Vec<Missed> {
@@ -112,6 +120,9 @@ fn object(flown: &Flown) -> Value {
     let joints_missed = flown.joints_missed.iter().map(joints::Missed::in_words);
     let missed = missed.chain(joints_missed);
     object.insert("warnings".into(), missed.chain(doubts).collect());
+    if let Some(driven) = &flown.driven {
+        object.insert("driven".into(), driven.object());
+    }
     if let Some(launches) = &flown.launches {
         launches.put_into(&mut object);
     }

@@ -3,6 +3,7 @@
 use undulift_chain::AxisOf;
 use undulift_design::{Design, Servo};
 use undulift_gait::Peak;
+use undulift_search::BeyondTravel;
 
 use crate::terminal;
 
@@ -10,7 +11,11 @@ use crate::terminal;
 #[derive(Debug, Clone)]
 pub enum Missed {
     /// Further than its travel.
-    Travel { peak: Peak, travel_rad: f64 },
+    Travel(BeyondTravel),
+    /// It turned further than that by itself.
+    Turned(BeyondTravel),
+    /// The same in a pose of a file, its row from 1.
+    Pose { of: AxisOf, angle_rad: f64, travel_rad: f64, row: usize },
     /// Faster than its servo turns without load.
     Speed { peak: Peak, servo: String, no_load_rad_s: f64 },
 }
@@ -31,10 +36,7 @@ pub fn beyond_travel<'a>(
     design: &'a Design,
     peaks: &'a [Peak],
 ) -> impl Iterator<Item = Missed> + 'a {
-    peaks.iter().filter_map(|&peak| {
-        let travel_rad = travel_rad(design, &peak)?;
-        (peak.angle_rad > travel_rad).then_some(Missed::Travel { peak, travel_rad })
-    })
+    undulift_search::beyond_travel(&design.glider.chain, peaks).map(Missed::Travel)
 }
 
 /// Joints that are asked to turn faster than their servos do without load.
@@ -76,24 +78,31 @@ impl Missed {
     /// Which axis.
     pub fn of(&self) -> AxisOf {
         match self {
-            Self::Travel { peak, .. } | Self::Speed { peak, .. } => peak.of,
+            Self::Travel(BeyondTravel { peak, .. })
+            | Self::Turned(BeyondTravel { peak, .. })
+            | Self::Speed { peak, .. } => peak.of,
+            Self::Pose { of, .. } => *of,
+        }
+    }
+
+    /// The row of a file, from 1.
+    pub fn row(&self) -> Option<usize> {
+        match self {
+            Self::Pose { row, .. } => Some(*row),
+            Self::Travel(_) | Self::Turned(_) | Self::Speed { .. } => None,
         }
     }
 
     fn is_like(&self, other: &Self) -> bool {
-        match (self, other) {
-            (Self::Travel { peak, .. }, Self::Travel { peak: other, .. })
-            | (Self::Speed { peak, .. }, Self::Speed { peak: other, .. }) => {
-                peak.of.axis == other.of.axis
-            }
-            _ => false,
-        }
+        std::mem::discriminant(self) == std::mem::discriminant(other)
+            && self.of().axis == other.of().axis
     }
 
     /// What is asked over what can be done.
     fn excess(&self) -> f64 {
         match self {
-            Self::Travel { peak, travel_rad } => peak.angle_rad / travel_rad,
+            Self::Travel(beyond) | Self::Turned(beyond) => beyond.times_over(),
+            Self::Pose { angle_rad, travel_rad, .. } => angle_rad / travel_rad,
             Self::Speed { peak, no_load_rad_s, .. } => peak.rate_rad_s / no_load_rad_s,
         }
     }
@@ -101,12 +110,21 @@ impl Missed {
     /// Joint, value, limit.
     pub fn in_words(&self) -> String {
         match self {
-            Self::Travel { peak, travel_rad } => format!(
-                "joint {} is asked for {:.1}° of {} at t = {:.2} s, beyond its travel of {:.1}°",
+            Self::Travel(beyond) => beyond.to_string(),
+            Self::Turned(BeyondTravel { peak, travel_rad }) => format!(
+                "joint {} turns to {:.1}° of {} at t = {:.2} s, beyond its travel of {:.1}°, where \
+                 an end stop, which is left out here, would stop it",
                 peak.of.joint_idx + 1,
                 peak.angle_rad.to_degrees(),
                 peak.of.axis.word(),
                 peak.angle_at_s,
+                travel_rad.to_degrees()
+            ),
+            Self::Pose { of, angle_rad, travel_rad, row } => format!(
+                "joint {} is held at {:.1}° of {} in row {row}, beyond its travel of {:.1}°",
+                of.joint_idx + 1,
+                angle_rad.to_degrees(),
+                of.axis.word(),
                 travel_rad.to_degrees()
             ),
             Self::Speed { peak, servo, no_load_rad_s } => format!(

@@ -2,17 +2,13 @@
 
 use std::path::Path;
 
-use anyhow::Context;
-use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use serde_json::{Map, Value, json};
 use undulift_design::quantities::{Quantity, of_flight};
-use undulift_design::{Design, Knob, Spread as Asked, Vary};
-use undulift_flight::{
-    Bands, Differs, End, FlightError, Glider, Settings, Spread, Summary, draw, fly_launches,
-};
+use undulift_design::{Design, Scatter};
+use undulift_flight::{Bands, End, FlightError, Settings, Spread, Summary, fly_driven, summary};
 
-use crate::args::Fly;
-use crate::{people, trace_file, whole_file};
+use crate::args::{Fly, Joints};
+use crate::{driven, many, people, trace_file, whole_file};
 
 /// Many launches of a design, flown.
 pub struct Launches {
@@ -36,29 +32,6 @@ struct Launched {
     result: Result<Summary, FlightError>,
 }
 
-/// One thing that differs from launch to launch.
-struct Item {
-    what: What,
-    differs: Differs,
-}
-
-impl Item {
-    /// Names of what is drawn.
-    fn columns(&self) -> Vec<String> {
-        match &self.what {
-            What::Knobs(knobs) => knobs.iter().map(|knob| knob.key().to_owned()).collect(),
-            What::Mass => vec!["mass_factor".into()],
-        }
-    }
-}
-
-enum What {
-    /// Numbers of the design that change together.
-    Knobs(Vec<Knob>),
-    /// All masses.
-    Mass,
-}
-
 /// Flies a design as often as was asked.
 pub fn fly_all(
     args: &Fly,
@@ -66,132 +39,23 @@ pub fn fly_all(
     design: &Design,
     settings: &Settings,
 ) -> anyhow::Result<Launches> {
-    let items = items(design);
-    let differs: Vec<Differs> = items.iter().map(|item| item.differs).collect();
-    let glider_of = |launch: usize| make(design, &items, &differs, args.seed, launch).0;
-    let bar = progress(u64::from(n_launches), &design.name);
-    let pool = rayon::ThreadPoolBuilder::new()
-        .num_threads(args.threads.map_or(0, usize::from))
-        .build()
-        .context("can't start threads")?;
-    let results = pool.install(|| {
-        fly_launches(n_launches as usize, settings, glider_of, || {
-            bar.inc(1);
-            true
-        })
-    });
-    bar.finish_and_clear();
-    let flown = results
-        .into_iter()
-        .flatten()
-        .enumerate()
-        .map(|(launch, result)| Launched {
-            drawn: make(design, &items, &differs, args.seed, launch).1,
-            result,
-        })
-        .collect();
-    Ok(Launches::new(design, args.seed, &items, flown))
-}
-
-/// What differs: as the design says, or as launches by hand usually do.
-fn items(design: &Design) -> Vec<Item> {
-    match &design.spread {
-        Asked::None => Vec::new(),
-        Asked::Default => usual(design),
-        Asked::Own(own) => own
-            .iter()
-            .map(|(knob, vary)| Item {
-                what: What::Knobs(vec![knob.clone()]),
-                differs: match *vary {
-                    Vary::Sd(sd) => Differs::Normal { sd },
-                    Vary::Range { low, high } => Differs::Uniform { low, high },
-                    Vary::FactorSd(sd) => Differs::Factor { sd },
-                },
-            })
-            .collect(),
-    }
-}
-
-/// Speed, attitude, spin and phase at release, lift, drag, pressure centre and mass.
-fn usual(design: &Design) -> Vec<Item> {
-    const DEGREES: Differs = Differs::Normal { sd: 3.0 };
-    const SPIN: Differs = Differs::Normal { sd: 10.0 };
-    const TENTH: Differs = Differs::Factor { sd: 0.1 };
-    let keys = [
-        ("launch.speed_m_s", Differs::Factor { sd: 0.05 }),
-        ("launch.climb_deg", DEGREES),
-        ("launch.roll_deg", DEGREES),
-        ("launch.pitch_deg", DEGREES),
-        ("launch.yaw_deg", DEGREES),
-        ("launch.spin_deg_s[0]", SPIN),
-        ("launch.spin_deg_s[1]", SPIN),
-        ("launch.spin_deg_s[2]", SPIN),
-        ("gait.phase_deg", Differs::Uniform { low: -10.0, high: 10.0 }),
-        ("air.lift_scale", TENTH),
-        ("air.drag_scale", TENTH),
-    ];
-    let mut items: Vec<Item> = keys
-        .into_iter()
-        .filter_map(|(key, differs)| {
-            let knob = Knob::find(design, key).ok()?;
-            Some(Item { what: What::Knobs(vec![knob]), differs })
-        })
-        .collect();
-    let centres = design
-        .glider
-        .sections
-        .iter()
-        .filter(|section| section.assumed_pressure_centre().is_some())
-        .filter_map(|section| {
-            Knob::find(design, &format!("section.{}.pressure_centre", section.name)).ok()
-        });
-    items.push(Item {
-        what: What::Knobs(centres.collect()),
-        differs: Differs::Uniform { low: -0.05, high: 0.05 },
-    });
-    items.push(Item { what: What::Mass, differs: Differs::Factor { sd: 0.01 } });
-    items
-}
-
-/// The glider of a launch, with what was drawn for it: a knob's value, a mass's factor.
-fn make(
-    design: &Design,
-    items: &[Item],
-    differs: &[Differs],
-    seed: u64,
-    launch: usize,
-) -> (Glider, Vec<f64>) {
-    let mut changed = design.clone();
-    let mut drawn = Vec::new();
-    for (item, change) in items.iter().zip(draw(differs, seed, launch as u64)) {
-        match &item.what {
-            What::Knobs(knobs) => {
-                for knob in knobs {
-                    // What other numbers of the design don't allow stays as the design has it.
-                    let _ = knob.set_clamped(&mut changed, change.of(knob.value(design)));
-                }
-                drawn.extend(knobs.iter().map(|knob| knob.value(&changed)));
-            }
-            What::Mass => {
-                let factor = change.of(1.0).max(0.01);
-                changed.glider.chain = changed.glider.chain.heavier(factor);
-                drawn.push(factor);
-            }
-        }
-    }
-    (changed.glider, drawn)
-}
-
-fn progress(launches: u64, name: &str) -> ProgressBar {
-    let style = ProgressStyle::with_template("{msg} {wide_bar} {pos}/{len} flights, {eta} left");
-    let bar = ProgressBar::with_draw_target(Some(launches), ProgressDrawTarget::stderr());
-    bar.set_style(style.unwrap_or_else(|_| ProgressStyle::default_bar()));
-    bar.set_message(name.to_owned());
-    bar
+    let scatter = Scatter::of(design);
+    let threads = args.threads.map_or(0, usize::from);
+    // Servos and battery may differ from launch to launch, what fails doesn't.
+    let faults = driven::drives(args, design)?.faults;
+    let driven = args.joints == Joints::Driven;
+    let flown = many::each(n_launches, threads, &design.name, |launch| {
+        let (changed, drawn) = scatter.launch(design, args.seed, launch);
+        let drives = changed.drives(driven, faults.clone());
+        let flight = fly_driven(&changed.glider, &drives, settings);
+        let result = flight.map(|mut flight| summary(&changed.glider, &mut flight));
+        Launched { drawn, result }
+    })?;
+    Ok(Launches::new(design, args.seed, scatter.columns(), flown))
 }
 
 impl Launches {
-    fn new(design: &Design, seed: u64, items: &[Item], flown: Vec<Launched>) -> Self {
+    fn new(design: &Design, seed: u64, names: Vec<String>, flown: Vec<Launched>) -> Self {
         let summaries: Vec<&Summary> =
             flown.iter().filter_map(|flown| flown.result.as_ref().ok()).collect();
         let share = |fits: &dyn Fn(&Summary) -> bool| {
@@ -209,7 +73,7 @@ impl Launches {
             good_share: share(&|summary| upright(summary) && tilt(summary) <= limit_rad),
             refused: flown.len() - summaries.len(),
             spread: spread(&summaries),
-            names: items.iter().flat_map(Item::columns).collect(),
+            names,
             flown,
         }
     }
@@ -298,7 +162,8 @@ impl Launches {
     }
 }
 
-fn counted(launches: usize) -> String {
+/// So many launches.
+pub fn counted(launches: usize) -> String {
     if launches == 1 { "1 launch".into() } else { format!("{launches} launches") }
 }
 

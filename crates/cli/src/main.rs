@@ -1,23 +1,26 @@
 //! The `undulift` command: flags, files, exit codes and the words that people read.
 //!
 //! Answers go to standard output, all else to standard error. Exit status: 0 done and within
-//! limits; 1 done, but a limit is missed; 2 could not run.
+//! limits; 1 done, but a limit is missed; 2 could not run; 130 ended by Ctrl-C with all kept.
 
 mod args;
 mod budget;
 mod check;
 mod doubts;
+mod driven;
 mod flown;
 mod fly;
 mod joints;
 mod json;
 mod launches;
+mod many;
 mod new;
 mod people;
 mod size;
 mod table;
 mod terminal;
 mod trace_file;
+mod tune;
 mod whole_file;
 
 use std::process::ExitCode;
@@ -33,6 +36,8 @@ enum Outcome {
     WithinLimits,
     LimitMissed,
     CouldNotRun,
+    /// Ended by Ctrl-C, with all that was found kept.
+    Interrupted,
 }
 
 fn complete(shell: clap_complete::Shell) -> anyhow::Result<Outcome> {
@@ -46,11 +51,18 @@ fn complete(shell: clap_complete::Shell) -> anyhow::Result<Outcome> {
 enum Refused {
     Design(DesignErrors),
     Flight { name: String, error: FlightError },
+    Asked(anyhow::Error),
 }
 
 impl From<DesignErrors> for Refused {
     fn from(errors: DesignErrors) -> Self {
         Self::Design(errors)
+    }
+}
+
+impl From<anyhow::Error> for Refused {
+    fn from(error: anyhow::Error) -> Self {
+        Self::Asked(error)
     }
 }
 
@@ -63,6 +75,7 @@ impl Refused {
         match self {
             Self::Design(errors) => terminal::tell_diagnostic(errors),
             Self::Flight { name, error } => terminal::tell_error(&format!("{name}: {error}")),
+            Self::Asked(error) => terminal::tell_error(&format!("{error:#}")),
         }
     }
 }
@@ -73,6 +86,8 @@ impl From<Outcome> for ExitCode {
             Outcome::WithinLimits => 0,
             Outcome::LimitMissed => 1,
             Outcome::CouldNotRun => 2,
+            // As shells report a program that Ctrl-C ended.
+            Outcome::Interrupted => 130,
         })
     }
 }
@@ -85,6 +100,7 @@ fn main() -> ExitCode {
         Command::Check(check) => check::run(check),
         Command::Budget(args) => budget::run(args),
         Command::Size(args) => size::run(args),
+        Command::Tune(args) => tune::run(args),
         Command::Table(args) => table::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),

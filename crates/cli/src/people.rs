@@ -24,6 +24,9 @@ pub fn answer(flown: &Flown, args: &Fly) -> String {
     line("On the strips", strips(flown));
     line("Mass", mass(&flown.design));
     line("Wing loading", wing_loading(flown));
+    if let Some(driven) = &flown.driven {
+        driven.answer(&mut text);
+    }
     if let Some(launches) = &flown.launches {
         text.push_str(&launches.answer(flown.design.limits.tilt_rad.to_degrees()));
     }

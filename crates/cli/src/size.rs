@@ -3,37 +3,26 @@
 use std::fmt::Write;
 use std::path::Path;
 
-use anyhow::{Context, anyhow, bail};
-use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
+use anyhow::Context;
 use serde_json::{Value, json};
-use undulift_design::{Design, DesignErrors, Servo};
+use undulift_design::{Catalogue, Design, DesignErrors, read_catalogue};
 use undulift_flight::Settings;
-use undulift_search::{Candidate, Sized, Split, Step, Want, size, with_catalogue, with_servos};
+use undulift_search::{Candidate, Sized, Split, Step, Want, size, with_servos};
 
 use crate::args::{Size as Args, Wish};
-use crate::{Outcome, Refused, json, terminal, whole_file};
+use crate::{Outcome, Refused, json, many, terminal, whole_file};
 
 /// Lines of what the nearest miss misses.
 const MOST_MISSES: usize = 5;
-
-/// A catalogue that was read.
-struct Catalogue {
-    text: String,
-    servos: Vec<Servo>,
-}
 
 pub fn run(args: &Args) -> anyhow::Result<Outcome> {
     let design = match undulift_design::read(&args.design, &args.sets) {
         Ok(design) => design,
         Err(errors) => return Ok(refuse(errors)),
     };
-    let catalogue = match read_catalogue(&design, args)? {
+    let catalogue = match read_catalogue(&args.from) {
         Ok(catalogue) => catalogue,
-        Err(errors) => {
-            let from = args.from.display();
-            terminal::tell_error(&format!("there is nothing to choose from in {from}:"));
-            return Ok(refuse(errors));
-        }
+        Err(errors) => return Ok(refuse(errors)),
     };
     let sized = search(&design, &catalogue, args)?;
     if args.json {
@@ -57,25 +46,8 @@ fn refuse(errors: DesignErrors) -> Outcome {
     Outcome::CouldNotRun
 }
 
-/// Reads the catalogue by way of the design, whose own servos are left out.
-fn read_catalogue(design: &Design, args: &Args) -> anyhow::Result<Result<Catalogue, DesignErrors>> {
-    let path = &args.from;
-    let shown = path.display();
-    // What is wrong with the file as a whole is told without a look at the design's text.
-    let bytes = std::fs::read(path).map_err(|error| anyhow!("can't read {shown}: {error}"))?;
-    let text = String::from_utf8(bytes).map_err(|_| anyhow!("{shown} isn't a text file"))?;
-    if text.trim().is_empty() {
-        bail!("{shown} is empty, but must hold [servo.NAME] tables");
-    }
-    let full = path.canonicalize().with_context(|| format!("can't read {shown}"))?;
-    let full = full.to_str().with_context(|| format!("the path of {shown} isn't text"))?;
-    let naming = with_catalogue(&design.text, full)?;
-    Ok(undulift_design::read_text(&args.design, &naming, &[])
-        .map(|read| Catalogue { text, servos: read.servos.into_values().collect() }))
-}
-
 fn search(design: &Design, catalogue: &Catalogue, args: &Args) -> anyhow::Result<Sized> {
-    let bar = progress(&design.name);
+    let bar = many::bar(0, &design.name);
     let told = |step: Step| match step {
         Step::Planned(more) => bar.inc_length(more as u64),
         Step::Flown => bar.inc(1),
@@ -86,22 +58,11 @@ fn search(design: &Design, catalogue: &Catalogue, args: &Args) -> anyhow::Result
         Wish::Furthest => Want::Furthest,
         Wish::Cheapest => Want::Cheapest,
     };
-    let pool = rayon::ThreadPoolBuilder::new()
-        .num_threads(args.threads.map_or(0, usize::from))
-        .build()
-        .context("can't start threads")?;
+    let pool = many::threads(args.threads.map_or(0, usize::from))?;
     let settings = Settings::default();
     let sized = pool.install(|| size(design, &catalogue.servos, want, settings, &told));
     bar.finish_and_clear();
     sized.with_context(|| design.name.clone())
-}
-
-fn progress(name: &str) -> ProgressBar {
-    let style = ProgressStyle::with_template("{msg} {wide_bar} {pos}/{len} flights, {eta} left");
-    let bar = ProgressBar::with_draw_target(Some(0), ProgressDrawTarget::stderr());
-    bar.set_style(style.unwrap_or_else(|_| ProgressStyle::default_bar()));
-    bar.set_message(name.to_owned());
-    bar
 }
 
 fn answer(design: &Design, catalogue: &Catalogue, sized: &Sized, args: &Args) -> String {
@@ -217,12 +178,12 @@ fn write(
     let text = with_servos(design, &text, &catalogue.text, &catalogue.servos, &best.choice)?;
     let text = format!(
         "# Servos chosen by undulift {} size from {}: {} that pass.\n\
-         # All else, comments too, is of {},\n# input SHA-256 {}.\n\n{}",
+         # All else, comments too, is of {},\n# input SHA-256 with that catalogue {}.\n\n{}",
         env!("CARGO_PKG_VERSION"),
         args.from.display(),
         wish(args.want),
         args.design.display(),
-        design.input_sha256,
+        design.input_sha256_with(&catalogue.text),
         text.trim_start()
     );
     undulift_design::read_text(path, &text, &[])
@@ -236,6 +197,9 @@ fn write(
 
 fn object(design: &Design, catalogue: &Catalogue, sized: &Sized, args: &Args) -> Value {
     let mut object = json::heading(design);
+    // What is chosen hangs on the catalogue, too.
+    let input_sha256 = design.input_sha256_with(&catalogue.text);
+    object.insert("input_sha256".into(), json!(input_sha256));
     let of = |candidate: &Candidate| candidate_object(candidate, catalogue);
     object.insert(
         "want".into(),

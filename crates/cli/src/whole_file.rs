@@ -58,7 +58,7 @@ fn put(beside: NamedTempFile, path: &Path) -> anyhow::Result<()> {
 }
 
 /// Why a file can't be made, without the name of the one beside it.
-fn why(error: &io::Error) -> String {
+pub fn why(error: &io::Error) -> String {
     match error.kind() {
         io::ErrorKind::NotFound => "there is no such folder".into(),
         io::ErrorKind::PermissionDenied => "permission is denied".into(),

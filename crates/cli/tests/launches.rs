@@ -111,3 +111,12 @@ fn frozen_words_for_people() {
     let output = undulift(&["fly", "designs/pair-still.toml", "--launches", "60", "--seed", "2"]);
     insta::assert_snapshot!("launches", format!("{}\n{}", answer(&output), complaint(&output)));
 }
+
+/// The demo that the README flies is no gait for one launch only: of its default spread nearly all
+/// land upright.
+#[test]
+fn frozen_reed_16_stays_upright() {
+    let args = ["fly", "designs/reed-16.toml", "--launches", "400", "--seed", "9", "--json"];
+    let upright_share = json(&args)["upright_share"].as_f64().unwrap();
+    assert!(upright_share > 0.95, "{upright_share}");
+}

@@ -143,10 +143,11 @@ fn what_cannot_be_chosen_from_is_refused() {
     let broken = file("broken.toml", "[servo.a]\nmass_kg = -1.0\n");
     let garbled = file("garbled.toml", "[servo.a\n");
     let fixed = ["--set", "joints.axes=[\"fixed\"]"];
-    let wrong: [(&[&str], &str); 9] = [
+    let wrong: [(&[&str], &str); 10] = [
         (&["size", REED, "--from", &empty], "empty"),
         (&["size", REED, "--from", &none], "no servo"),
         (&["size", REED, "--from", &broken], "mass_kg"),
+        (&["size", REED, "--from", &broken], "broken.toml:2:11"),
         (&["size", REED, "--from", &garbled], "garbled.toml"),
         (&["size", REED, "--from", "designs/nowhere.toml"], "nowhere.toml"),
         (&["size", REED, "--from", REED], "design"),
@@ -177,6 +178,26 @@ fn designs_without_anything_to_drive_are_refused() {
         assert_eq!(output.status.code(), Some(2), "{}", complaint(&output));
         assert!(complaint(&output).contains(told), "{}", complaint(&output));
     }
+}
+
+/// What is chosen hangs on the catalogue, so the hash does.
+#[test]
+fn twin_the_hash_covers_the_catalogue() {
+    let folder = tempfile::tempdir().unwrap();
+    let three = few(folder.path());
+    let of = |from: &str| {
+        json(&["size", SEDGE, "--from", from, "--json"])["input_sha256"]
+            .as_str()
+            .unwrap()
+            .to_owned()
+    };
+    let once = of(&three);
+    assert_eq!(once, of(&three));
+    assert_ne!(once, json(&["budget", SEDGE, "--json"])["input_sha256"].as_str().unwrap());
+    let other = folder.path().join("other.toml");
+    let text = std::fs::read_to_string(&three).unwrap();
+    std::fs::write(&other, format!("{text}# a word more\n")).unwrap();
+    assert_ne!(once, of(other.to_str().unwrap()));
 }
 
 #[test]

@@ -1,16 +1,19 @@
 //! Servos by name: the design's own, and those of the catalogue that it names.
 
 use std::collections::BTreeMap;
+use std::path::Path;
 
 use undulift_servo::Servo;
 
-use crate::DesignError;
-use crate::document::{Document, Mark};
+use crate::design::unusable;
+use crate::document::{Document, Mark, source_of};
+use crate::files::{MOST_TOML_BYTES, read_file};
 use crate::key_path::KeyPath;
 use crate::named_files::NamedFiles;
 use crate::node::Node;
 use crate::servo::read_servos;
 use crate::table::Table;
+use crate::{DesignError, DesignErrors};
 
 /// Servos that a design may name.
 #[derive(Debug, Default)]
@@ -39,7 +42,7 @@ pub(crate) fn read_all_servos(top: &Table<'_>, files: &mut NamedFiles) -> Servos
     let mut servos = Servos::default();
     let own = read_servos(top);
     if let Some(node) = top.get("servos") {
-        match read_catalogue(&node, files, top.document(), &own) {
+        match read_named(&node, files, top.document(), &own) {
             Some(by_name) => servos.by_name = by_name,
             None => servos.lacks_catalogue = true,
         }
@@ -48,8 +51,37 @@ pub(crate) fn read_all_servos(top: &Table<'_>, files: &mut NamedFiles) -> Servos
     servos
 }
 
+/// A file of servos, read on its own.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Catalogue {
+    /// As it stands.
+    pub text: String,
+    /// In the order of their names; none may be in it.
+    pub servos: Vec<Servo>,
+}
+
+/// Reads a file of `[servo.NAME]` tables.
+///
+/// # Errors
+///
+/// All mistakes in it, each with its place.
+pub fn read_catalogue(path: &Path) -> Result<Catalogue, DesignErrors> {
+    let text = read_file(path, MOST_TOML_BYTES).map_err(|error| unusable(path, error))?;
+    let fail = |mistakes| DesignErrors::new(path.display().to_string(), mistakes);
+    let source = source_of(path, text);
+    let document = Document::parse(&source).map_err(fail)?;
+    document.check_changeable();
+    let servos = servos_in(&document).unwrap_or_default();
+    let mistakes = document.into_mistakes();
+    if !mistakes.is_empty() {
+        return Err(fail(mistakes));
+    }
+    let text = source.inner().clone();
+    Ok(Catalogue { text, servos: servos.into_values().flatten().collect() })
+}
+
 /// - `own`: servos of the design itself
-fn read_catalogue(
+fn read_named(
     node: &Node<'_>,
     files: &mut NamedFiles,
     design: &Document<'_>,
@@ -63,7 +95,22 @@ fn read_catalogue(
             return None;
         }
     };
-    let top = Table::top(&document);
+    let Some(servos) = servos_in(&document) else {
+        design.note_all(document.into_mistakes());
+        return None;
+    };
+    for (path, number) in document.take_numbers() {
+        if !own.keys().any(|name| path.is_within(&KeyPath::of(["servo", name]))) {
+            design.record(path, number);
+        }
+    }
+    design.note_all(document.into_mistakes());
+    Some(servos)
+}
+
+/// Servos of a file that holds nothing else; absent where it is another kind of file.
+fn servos_in(document: &Document<'_>) -> Option<BTreeMap<String, Option<Servo>>> {
+    let top = Table::top(document);
     if top.get("servos").is_some() {
         let path = KeyPath::of(["servos"]);
         document.note(&path, Mark::Key, &[], DesignError::NestedCatalogue);
@@ -73,16 +120,9 @@ fn read_catalogue(
         document.note(&KeyPath::of(["body"]), Mark::Key, &[], what);
     }
     if !document.is_sound() {
-        design.note_all(document.into_mistakes());
         return None;
     }
     let servos = read_servos(&top);
     top.finish();
-    for (path, number) in document.take_numbers() {
-        if !own.keys().any(|name| path.is_within(&KeyPath::of(["servo", name]))) {
-            design.record(path, number);
-        }
-    }
-    design.note_all(document.into_mistakes());
     Some(servos)
 }

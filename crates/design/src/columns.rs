@@ -36,6 +36,21 @@ impl<'s> Columns<'s> {
     ///
     /// All mistakes in header and numbers.
     pub(crate) fn read(source: &'s Source, rules: &[ColumnRule]) -> Result<Self, Vec<Mistake>> {
+        Self::read_among(source, rules, |_| false)
+    }
+
+    /// The same of a file that has other columns, too.
+    ///
+    /// - `is_left`: whether a column without a rule is left unread; else it is a mistake
+    ///
+    /// # Errors
+    ///
+    /// As for [`Self::read`].
+    pub(crate) fn read_among(
+        source: &'s Source,
+        rules: &[ColumnRule],
+        is_left: impl Fn(&str) -> bool,
+    ) -> Result<Self, Vec<Mistake>> {
         let text = source.inner().as_str();
         let mut reader = csv::ReaderBuilder::new()
             .flexible(true)
@@ -51,7 +66,7 @@ impl<'s> Columns<'s> {
         };
         let names: Vec<String> =
             header.iter().map(|name| name.trim_start_matches('\u{feff}').to_owned()).collect();
-        check_header(source, &header, &names, rules)?;
+        check_header(source, &header, &names, rules, is_left)?;
         let by_column: Vec<Option<&ColumnRule>> =
             names.iter().map(|name| rules.iter().find(|rule| rule.name == *name)).collect();
         let mut columns = Self { source, values: vec![vec![]; names.len()], names, starts: vec![] };
@@ -87,7 +102,7 @@ impl<'s> Columns<'s> {
             return;
         }
         for (column, (field, rule)) in record.iter().zip(rules).enumerate() {
-            let range = rule.map_or(Range::within(f64::MAX), |rule| rule.range);
+            let Some(&ColumnRule { range, .. }) = *rule else { continue };
             match field.parse::<f64>().ok().filter(|&value| range.contains(value)) {
                 Some(value) => self.values[column].push(value),
                 None => {
@@ -109,7 +124,7 @@ impl<'s> Columns<'s> {
         self.starts.len()
     }
 
-    /// A column's numbers, where the file has it.
+    /// A column's numbers, where the file has it; empty for one that was left unread.
     pub(crate) fn get(&self, name: &str) -> Option<&[f64]> {
         let column = self.names.iter().position(|own| own == name)?;
         Some(&self.values[column])
@@ -129,6 +144,7 @@ fn check_header(
     header: &csv::StringRecord,
     names: &[String],
     rules: &[ColumnRule],
+    is_left: impl Fn(&str) -> bool,
 ) -> Result<(), Vec<Mistake>> {
     let start = header.position().map_or(0, start_of);
     if let [name] = names
@@ -164,7 +180,7 @@ fn check_header(
     for (place, name) in names.iter().enumerate() {
         let why = if names[..place].contains(name) {
             "is there twice".to_owned()
-        } else if unknown(&name) {
+        } else if unknown(&name) && !is_left(name) {
             "isn't one that is read".to_owned()
         } else {
             continue;

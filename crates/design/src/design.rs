@@ -17,7 +17,7 @@ use crate::gait::read_gait;
 use crate::joints::{ServoNames, read_joints};
 use crate::key_path::KeyPath;
 use crate::mistake::{Mistake, Source};
-use crate::named_files::NamedFiles;
+use crate::named_files::{NamedFiles, sha256_of};
 use crate::origin::Origin;
 use crate::overrides::apply;
 use crate::sections::{read_sections, sections_of_body};
@@ -53,6 +53,15 @@ pub struct Design {
     /// The file's text with the overrides in it; numbers that a [`crate::Knob`] set later are not.
     pub text: String,
     pub(crate) origin: Origin,
+}
+
+impl Design {
+    /// SHA-256, in hexadecimal, of a design and a file that it doesn't name: of its
+    /// [`Self::input_sha256`] and then of the file's length (eight bytes, the lowest first) and
+    /// bytes.
+    pub fn input_sha256_with(&self, file: &str) -> String {
+        sha256_of(&self.input_sha256, std::iter::once(file))
+    }
 }
 
 /// Reads a design file, with values set from outside.

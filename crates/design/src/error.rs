@@ -173,6 +173,16 @@ pub enum DesignError {
         /// The key that was probably meant.
         nearest: Option<String>,
     },
+    /// A key of nothing that is printed as a number.
+    #[error("`{key}` isn't a number that is printed: {why}{}", meant(nearest))]
+    NoQuantity {
+        /// As given.
+        key: String,
+        /// What is in the way.
+        why: String,
+        /// The key that was probably meant.
+        nearest: Option<String>,
+    },
     /// A table of numbers without a column.
     #[error("the column `{column}` is missing{}", meant(nearest))]
     MissingColumn {
@@ -261,6 +271,11 @@ impl DesignError {
             Self::NoNumber { .. } => {
                 "numbers are named as in the file, such as gait.frequency_hz or \
                  body.length_m[3] (items count from 0)"
+                    .into()
+            }
+            Self::NoQuantity { .. } => {
+                "any number of `fly --json`, or of `budget --json` with `budget.` before it, such as \
+                 glide_ratio or budget.least_margin"
                     .into()
             }
             Self::MissingColumn { wanted, .. } | Self::ExtraColumn { wanted, .. } => {

@@ -7,8 +7,8 @@
 //! [`Design::written`] gives a design back as text; reading and writing lose no bit.
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
-//! and radians. Tables that other commands read (`search`, `wiring`) are left alone
-//! until they ask ([`Design::wiring`]).
+//! and radians. Tables that other commands read are left alone until they ask: [`Tuning`] is what
+//! `[search]` says, [`Design::wiring`] what `[wiring]` does.
 
 mod body;
 mod carried;
@@ -35,8 +35,10 @@ mod numbers;
 mod order;
 mod origin;
 mod overrides;
+mod poses;
 pub mod quantities;
 mod range;
+mod scatter;
 mod section_table;
 mod sections;
 mod servo;
@@ -44,11 +46,14 @@ mod spread;
 mod starter;
 mod surroundings;
 mod table;
+mod tuning;
+mod tuning_rows;
 mod unit;
 mod wiring;
 mod written;
 
 pub use carried::{Battery, Payload};
+pub use catalogue::{Catalogue, read_catalogue};
 pub use design::{Design, read, read_text};
 pub use error::DesignError;
 pub use joints::ServoNames;
@@ -56,7 +61,11 @@ pub use knob::{Knob, set_all};
 pub use mistake::{DesignErrors, Mistake};
 pub use moved::copy_for;
 pub use overrides::Override;
+pub use poses::{PoseRow, read_poses};
+pub use scatter::Scatter;
 pub use spread::{Spread, Vary};
 pub use starter::starter;
 pub use surroundings::Limits;
+pub use tuning::{Robust, Take, Tuning, Wish};
+pub use tuning_rows::{Required, Varied};
 pub use undulift_servo::{Endurance, PositionLoop, Pulse, Regulator, Servo};

@@ -75,11 +75,17 @@ impl NamedFiles {
     /// each file's length (eight bytes, the lowest first) and bytes.
     pub(crate) fn sha256(&mut self, text: &str) -> String {
         self.read.sort_by_key(|(start, _)| *start);
-        let mut hash = Sha256::new_with_prefix(text);
-        for (_, source) in &self.read {
-            hash.update((source.inner().len() as u64).to_le_bytes());
-            hash.update(source.inner());
-        }
-        hash.finalize().iter().map(|byte| format!("{byte:02x}")).collect()
+        sha256_of(text, self.read.iter().map(|(_, source)| source.inner().as_str()))
     }
+}
+
+/// SHA-256 in hexadecimal: of a text, then of each file's length (eight bytes, the lowest first)
+/// and bytes.
+pub(crate) fn sha256_of<'f>(text: &str, files: impl Iterator<Item = &'f str>) -> String {
+    let mut hash = Sha256::new_with_prefix(text);
+    for file in files {
+        hash.update((file.len() as u64).to_le_bytes());
+        hash.update(file);
+    }
+    hash.finalize().iter().map(|byte| format!("{byte:02x}")).collect()
 }

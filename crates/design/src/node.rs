@@ -70,6 +70,11 @@ impl<'d> Node<'d> {
         self.document.note(&self.path, Mark::Value, &[], what);
     }
 
+    /// Puts down a mistake about it, or about its key.
+    pub(crate) fn note_at(&self, mark: Mark, what: DesignError) {
+        self.document.note(&self.path, mark, &[], what);
+    }
+
     /// Puts down a mistake about it that another entry has a part in.
     pub(crate) fn note_beside(&self, other: KeyPath, what: DesignError) {
         self.document.note(&self.path, Mark::Value, &[other], what);

@@ -1,6 +1,39 @@
 //! Names of what a flight comes to, as every output prints them.
 
 use undulift_flight::{Bands, End, Summary};
+use undulift_servo::Budget;
+
+/// Names of what [`of_flight`] gives as numbers.
+pub const FLIGHT_NUMBERS: [&str; 17] = [
+    "time_s",
+    "drop_m",
+    "distance_m",
+    "glide_ratio",
+    "last_cycle_glide_ratio",
+    "glide_angle_deg",
+    "speed_m_s",
+    "sink_m_s",
+    "side_drift_m",
+    "forward_airspeed_m_s",
+    "peak_roll_deg",
+    "peak_pitch_deg",
+    "landing_energy_j",
+    "mass_kg",
+    "planform_m2",
+    "wing_loading_pa",
+    "reduced_frequency",
+];
+
+/// Names of what [`of_budget`] gives; all are numbers.
+pub const BUDGET_NUMBERS: [&str; 7] = [
+    "budget.least_margin",
+    "budget.passes",
+    "budget.battery.peak_current_a",
+    "budget.battery.least_voltage_v",
+    "budget.battery.energy_j_per_drop",
+    "budget.battery.drops_per_charge",
+    "budget.battery.regulator_peak_current_a",
+];
 
 /// A printed value.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -65,4 +98,23 @@ pub fn of_flight(summary: &Summary, bands: &Bands) -> Vec<(&'static str, Quantit
         ("reynolds", Quantity::band(bands.reynolds)),
         ("reduced_frequency", Quantity::or_none(summary.reduced_frequency)),
     ]
+}
+
+/// What a budget comes to, in the order of [`BUDGET_NUMBERS`]; what passes is 1, what doesn't 0.
+///
+/// - `passes`: whether the budget and the joints' travel hold
+pub fn of_budget(budget: &Budget, passes: bool) -> Vec<(&'static str, Quantity)> {
+    let battery = budget.battery.as_ref();
+    let of_battery = [
+        battery.and_then(|battery| battery.peak_current_a),
+        battery.and_then(|battery| battery.least_voltage_v),
+        battery.and_then(|battery| battery.energy_j_per_drop),
+        battery.and_then(|battery| battery.drops_per_charge),
+        battery.and_then(|battery| battery.regulator_peak_current_a),
+    ];
+    let own = [budget.least_margin, Some(f64::from(u8::from(passes)))];
+    BUDGET_NUMBERS
+        .into_iter()
+        .zip(own.into_iter().chain(of_battery).map(Quantity::or_none))
+        .collect()
 }

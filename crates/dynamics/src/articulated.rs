@@ -31,10 +31,20 @@ pub struct Articulated {
     inertials: Vec<FourInertials>,
     /// Places of each joint's axes in a list by axis: yaw, pitch.
     joints: Vec<[Option<usize>; 2]>,
+    carried: Vec<FourCarried>,
     own: Vec<FourOwn>,
-    places: Vec<Place>,
+    /// From each segment's front end to the next one's.
+    arms_m: Vec<Triple<f64>>,
     turns: Vec<[Option<Turn>; 2]>,
     accelerations_rad_s2: Vec<f64>,
+}
+
+/// How four neighbouring segments accelerate while the head and all rates hold.
+#[derive(Debug, Clone, Copy, Default)]
+struct FourCarried {
+    angular_rad_s2: Triple<f64x4>,
+    /// Of the front ends.
+    linear_m_s2: Triple<f64x4>,
 }
 
 /// Inertia and bias of four neighbouring segments alone, at their front ends.
@@ -47,21 +57,11 @@ struct FourOwn {
     force_n: Triple<f64x4>,
 }
 
-/// The way from a segment's front end to the next one's.
-#[derive(Debug, Clone, Copy)]
-struct Place {
-    arm_m: Triple<f64>,
-    /// ω × (ω × arm), m/s².
-    swing_m_s2: Triple<f64>,
-}
-
 /// One axis on the way down.
 #[derive(Debug, Clone, Copy)]
 struct Turn {
     slot: usize,
     axis: Triple<f64>,
-    /// (ω × axis)·rate: what the turning axis adds to the angular acceleration.
-    carried: Triple<f64>,
     answer: Answer,
 }
 
@@ -84,10 +84,11 @@ impl Articulated {
         let n_joints = chain.n_segments() - 1;
         let inertials: Vec<_> = chain.inertials().chunks(LANES).map(FourInertials::new).collect();
         Self {
+            carried: vec![FourCarried::default(); inertials.len()],
             own: Vec::with_capacity(inertials.len()),
             inertials,
             joints: (0..n_joints).map(|j| Axis::BOTH.map(|axis| slot(j, axis))).collect(),
-            places: Vec::with_capacity(n_joints),
+            arms_m: Vec::with_capacity(n_joints),
             turns: Vec::with_capacity(n_joints),
             accelerations_rad_s2: vec![0.0; axes.len()],
         }
@@ -120,18 +121,18 @@ impl Articulated {
     ) -> HeadAcceleration {
         let head_rad_s = head_rad_s.into();
         let gravity_m_s2 = Triple::from(gravity_m_s2).in_lanes();
-        self.own.clear();
-        let fours = self.inertials.iter().zip(&frames.fours);
-        self.own.extend(fours.map(|(of, at)| of.own(at, head_rad_s, gravity_m_s2)));
         self.go_down(frames, rates_rad_s, head_rad_s);
+        self.own.clear();
+        let fours = self.inertials.iter().zip(&frames.fours).zip(&self.carried);
+        self.own
+            .extend(fours.map(|((of, at), carried)| of.own(at, head_rad_s, carried, gravity_m_s2)));
         let mut body = self.alone(self.joints.len(), outside);
         for joint_idx in (0..self.joints.len()).rev() {
             // The pitch axis is the one nearer to the segment behind.
             for turn in self.turns[joint_idx].iter_mut().rev().flatten() {
-                turn.answer = body.through(turn.axis, turn.carried, drives[turn.slot]);
+                turn.answer = body.through(turn.axis, drives[turn.slot]);
             }
-            let place = self.places[joint_idx];
-            body.move_to(place.arm_m, place.swing_m_s2);
+            body.move_to(self.arms_m[joint_idx]);
             body.add(&self.alone(joint_idx, outside));
         }
         let (angular, linear) = body.accelerations();
@@ -139,28 +140,32 @@ impl Articulated {
         HeadAcceleration { linear_m_s2: linear.into(), angular_rad_s2: angular.into() }
     }
 
-    /// Arms and axes from the head to the tail.
+    /// Arms, axes and what the rates carry along, from the head to the tail.
     fn go_down(&mut self, frames: &Frames, rates_rad_s: &[f64], head_rad_s: Triple<f64>) {
-        self.places.clear();
+        self.arms_m.clear();
         self.turns.clear();
+        let (mut angular, mut linear) = (Triple::zero(), Triple::zero());
         for (joint_idx, slots) in self.joints.iter().enumerate() {
             let (ahead, lane) = (&frames.fours[joint_idx / LANES], joint_idx % LANES);
             let behind_idx = joint_idx + 1;
             let (behind, behind_lane) = (&frames.fours[behind_idx / LANES], behind_idx % LANES);
             let arm_m = behind.front_m.lane(behind_lane) - ahead.front_m.lane(lane);
             let mut spin_rad_s = head_rad_s + ahead.angular_velocity_rad_s.lane(lane);
-            let swing_m_s2 = spin_rad_s.cross(spin_rad_s.cross(arm_m));
-            self.places.push(Place { arm_m, swing_m_s2 });
+            self.arms_m.push(arm_m);
+            linear = linear + angular.cross(arm_m) + spin_rad_s.cross(spin_rad_s.cross(arm_m));
             let axes = [ahead.z.lane(lane), Triple::zero() - behind.y.lane(behind_lane)];
             let mut turn = |which: usize| {
                 let (slot, axis) = (slots[which]?, axes[which]);
                 let turning = axis.times(rates_rad_s[slot]);
-                let carried = spin_rad_s.cross(turning);
+                angular = angular + spin_rad_s.cross(turning);
                 spin_rad_s = spin_rad_s + turning;
-                Some(Turn { slot, axis, carried, answer: Answer::Given(0.0) })
+                Some(Turn { slot, axis, answer: Answer::Given(0.0) })
             };
             let turns = [turn(0), turn(1)];
             self.turns.push(turns);
+            let carried = &mut self.carried[behind_idx / LANES];
+            carried.angular_rad_s2.set_lane(behind_lane, angular);
+            carried.linear_m_s2.set_lane(behind_lane, linear);
         }
     }
 
@@ -177,14 +182,15 @@ impl Articulated {
         )
     }
 
-    /// From the head to the tail: what every axis does.
+    /// From the head to the tail: what every axis does. What the rates carry along is in the biases
+    /// already, and left out here.
     fn pass_down(&mut self, head_angular: Triple<f64>, head_linear: Triple<f64>) {
         let (mut angular, mut linear) = (head_angular, head_linear);
-        for (place, turns) in self.places.iter().zip(&self.turns) {
-            linear = linear + angular.cross(place.arm_m) + place.swing_m_s2;
+        for (&arm_m, turns) in self.arms_m.iter().zip(&self.turns) {
+            linear = linear + angular.cross(arm_m);
             for turn in turns.iter().flatten() {
                 let acceleration = turn.answer.to(angular, linear);
-                angular = angular + turn.carried + turn.axis.times(acceleration);
+                angular = angular + turn.axis.times(acceleration);
                 self.accelerations_rad_s2[turn.slot] = acceleration;
             }
         }
@@ -197,19 +203,25 @@ impl FourInertials {
         &self,
         at: &crate::FourFrames,
         head_rad_s: Triple<f64>,
+        carried: &FourCarried,
         gravity_m_s2: Triple<f64x4>,
     ) -> FourOwn {
         let arm_m = self.arm_m(at);
         let moment_kg_m = arm_m.times(self.mass_kg);
         let inertia_kg_m2 = self.about_front(at, arm_m).moments_of_inertia();
         let spin = head_rad_s.in_lanes() + at.angular_velocity_rad_s;
-        let swing = spin.cross(spin.cross(moment_kg_m));
+        let angular = carried.angular_rad_s2;
+        let linear = carried.linear_m_s2 - gravity_m_s2;
         FourOwn {
             inertia_kg_m2,
             moment_kg_m,
             mass_kg: self.mass_kg,
-            moment_nm: spin.cross(inertia_kg_m2.times(spin)) - moment_kg_m.cross(gravity_m_s2),
-            force_n: swing - gravity_m_s2.times(self.mass_kg),
+            moment_nm: inertia_kg_m2.times(angular)
+                + spin.cross(inertia_kg_m2.times(spin))
+                + moment_kg_m.cross(linear),
+            force_n: linear.times(self.mass_kg)
+                + angular.cross(moment_kg_m)
+                + spin.cross(spin.cross(moment_kg_m)),
         }
     }
 }

@@ -77,18 +77,11 @@ impl Reduced {
     }
 
     /// Becomes what is seen from the other side of an axis; returns how the axis answers.
-    ///
-    /// - `carried`: angular acceleration that the axis adds by being turned itself
     #[inline(always)]
-    pub(crate) fn through(
-        &mut self,
-        axis: Triple<f64>,
-        carried: Triple<f64>,
-        drive: Drive,
-    ) -> Answer {
+    pub(crate) fn through(&mut self, axis: Triple<f64>, drive: Drive) -> Answer {
         match drive {
             Drive::Motion(acceleration) => {
-                let angular = carried + axis.times(acceleration);
+                let angular = axis.times(acceleration);
                 self.moment_nm = self.moment_nm + self.a.times(angular);
                 self.force_n = self.force_n + self.b_across(angular);
                 Answer::Given(acceleration)
@@ -96,10 +89,10 @@ impl Reduced {
             Drive::Torque { torque_nm, rotor_kg_m2 } => {
                 let (moment, force) = (self.a.times(axis), self.b_across(axis));
                 let per_inertia = 1.0 / (axis.dot(moment) + rotor_kg_m2);
-                let constant = torque_nm - axis.dot(self.moment_nm) - moment.dot(carried);
+                let constant = torque_nm - axis.dot(self.moment_nm);
                 let share = constant * per_inertia;
-                self.moment_nm = self.moment_nm + self.a.times(carried) + moment.times(share);
-                self.force_n = self.force_n + self.b_across(carried) + force.times(share);
+                self.moment_nm = self.moment_nm + moment.times(share);
+                self.force_n = self.force_n + force.times(share);
                 self.give_way(moment, force, per_inertia);
                 Answer::Free { moment, force, constant, per_inertia }
             }
@@ -117,12 +110,9 @@ impl Reduced {
         self.b[2] = self.b[2] - force.times(by_moment.z);
     }
 
-    /// Becomes the same at another point, from which this one lies at `arm_m` and has `swing_m_s2`
-    /// as its centripetal acceleration.
+    /// Becomes the same at another point, from which this one lies at `arm_m`.
     #[inline(always)]
-    pub(crate) fn move_to(&mut self, arm_m: Triple<f64>, swing_m_s2: Triple<f64>) {
-        self.moment_nm = self.moment_nm + self.b_times(swing_m_s2);
-        self.force_n = self.force_n + self.m.times(swing_m_s2);
+    pub(crate) fn move_to(&mut self, arm_m: Triple<f64>) {
         self.moment_nm = self.moment_nm + arm_m.cross(self.force_n);
         // B' = B + r̃ M and A' = A − B r̃ − (B' r̃)ᵀ; a row of B r̃ is that row × r.
         let m = &self.m;

@@ -3,7 +3,7 @@
 use undulift_aero::Section;
 
 use crate::bands::Stretched;
-use crate::overlaps::overlaps;
+use crate::overlaps::{overlaps, overlaps_on_the_way};
 use crate::{Bands, Flight, Glider, LastCycle, Outlook, Summary};
 
 /// Reduced frequency above which quasi-steady loads lag what a wing would do. 0.1 is often quoted;
@@ -206,7 +206,10 @@ pub(crate) fn added_mass_ratio(glider: &Glider) -> f64 {
 fn overlap(glider: &Glider, flight: &Flight) -> Option<Doubt> {
     let commands = flight.equations.commands();
     let span_s = commands.steady_cycle_s().map_or(0.0, |cycle| cycle[1].min(flight.time_s));
-    let found = overlaps(&glider.chain, commands, [0.0, span_s]);
+    let found = match flight.hybrid {
+        None => overlaps(&glider.chain, commands, [0.0, span_s]),
+        Some(_) => overlaps_on_the_way(&glider.chain, flight),
+    };
     let first = found.iter().min_by(|a, b| a.first_at_s.total_cmp(&b.first_at_s))?;
     Some(Doubt::Overlap {
         segments: (first.ahead_idx + 1, first.behind_idx + 1),

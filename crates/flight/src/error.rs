@@ -33,6 +33,14 @@ pub enum FlightError {
         /// Segments in the chain.
         segments: usize,
     },
+    /// A pose with other axes than the chain's.
+    #[error("the pose has {found} joint angles, but the chain has {axes} axes")]
+    PoseAngles {
+        /// Angles given.
+        found: usize,
+        /// Angles needed.
+        axes: usize,
+    },
     /// Joint loads need accelerations, which only a smooth gait has.
     #[error(
         "joint loads need a smooth gait: with interpolation = \"linear\" or \"hold\" accelerations are impulses; use \"cubic\""

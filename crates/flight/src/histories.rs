@@ -23,20 +23,48 @@ pub struct Histories {
     pub air_power_w: Vec<f64>,
     /// Kinetic energy and weight's, against a centre of mass on the floor, J: shape (times).
     pub energy_j: Vec<f64>,
-    /// Largest force and moment that each hinge carries, torque of its servos taken off.
-    pub hinges: Vec<HingePeak>,
+    /// What each hinge carries, torque of its servos taken off: shape (times, joints).
+    pub hinge_loads: Vec<Vec<HingeLoad>>,
     /// Largest wrench left at the nose, N or N·m, over the largest in any joint: a measure of how
     /// exactly the loads balance.
     pub left_at_nose: f64,
 }
 
-/// Extremes of what one hinge carries.
+/// Sizes of what one hinge carries.
 #[derive(Debug, Clone, Copy, PartialEq, Default)]
-pub struct HingePeak {
+pub struct HingeLoad {
     /// N.
     pub force_n: f64,
     /// N·m.
     pub moment_nm: f64,
+}
+
+impl HingeLoad {
+    /// In every hinge.
+    pub fn of(loads: &JointLoads) -> Vec<Self> {
+        let size = |hinge: &Wrench| Self {
+            force_n: hinge.force_n.norm(),
+            moment_nm: hinge.moment_nm.norm(),
+        };
+        loads.hinges.iter().map(size).collect()
+    }
+
+    /// The larger force and the larger moment, which may be of different instants.
+    pub fn most(self, other: Self) -> Self {
+        Self {
+            force_n: self.force_n.max(other.force_n),
+            moment_nm: self.moment_nm.max(other.moment_nm),
+        }
+    }
+
+    /// Largest of each hinge over rows: shape (joints), empty without rows.
+    pub fn peaks(rows: &[Vec<Self>]) -> Vec<Self> {
+        let mut peaks = rows.first().cloned().unwrap_or_default();
+        for row in rows {
+            peaks.iter_mut().zip(row).for_each(|(peak, load)| *peak = peak.most(*load));
+        }
+        peaks
+    }
 }
 
 /// Joint loads along a flight.
@@ -62,7 +90,7 @@ pub fn histories(
         accelerations_rad_s2: Vec::new(),
         air_power_w: Vec::new(),
         energy_j: Vec::new(),
-        hinges: vec![HingePeak::default(); glider.chain.joints().len()],
+        hinge_loads: Vec::new(),
         left_at_nose: 0.0,
     };
     for time_s in times_s {
@@ -114,10 +142,7 @@ impl Histories {
         self.times_s.push(time_s);
         self.rates_rad_s.push(loaded.rates_rad_s);
         self.accelerations_rad_s2.push(loaded.accelerations_rad_s2);
-        for (peak, hinge) in self.hinges.iter_mut().zip(&loads.hinges) {
-            peak.force_n = peak.force_n.max(hinge.force_n.norm());
-            peak.moment_nm = peak.moment_nm.max(hinge.moment_nm.norm());
-        }
+        self.hinge_loads.push(HingeLoad::of(&loads));
         let size = |wrench: &Wrench| wrench.force_n.norm().max(wrench.moment_nm.norm());
         let largest = loads.joints.iter().map(size).fold(f64::MIN_POSITIVE, f64::max);
         self.left_at_nose = self.left_at_nose.max(size(&loads.left) / largest);

@@ -40,14 +40,14 @@ mod weighted;
 
 pub use attitude::Attitude;
 pub use bands::{Bands, Stretched, bands};
-pub use bench_loads::{Pose, bench_loads};
+pub use bench_loads::{Clamped, Pose, bench_loads};
 pub use doubts::{Doubt, doubts, doubts_ahead};
 pub use drives::{Drives, Failure, Fault, Mode};
 pub use equations::Equations;
 pub use error::FlightError;
 pub use flying::{End, Flight, Settings, fly, fly_driven};
 pub use glider::{Glider, Launch};
-pub use histories::{HingePeak, Histories, histories, loads_at};
+pub use histories::{HingeLoad, Histories, histories, loads_at};
 pub use launches::fly_launches;
 pub use loads::Wrench;
 pub use outlook::{Outlook, outlook};

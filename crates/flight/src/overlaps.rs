@@ -5,8 +5,13 @@ use std::collections::BTreeMap;
 use undulift_chain::{Axis, Chain, Shape, overlapping_segments};
 use undulift_gait::{Commands, Instant};
 
+use crate::Flight;
+
 /// Instants of a cycle at which overlaps are looked for.
 const LOOKS_PER_CYCLE: f64 = 96.0;
+
+/// Between looks at a flight whose joints don't follow their commands, s.
+const LOOK_S: f64 = 5e-3;
 
 /// Keeps a long flight of a fast gait affordable.
 const MOST_LOOKS: f64 = 2000.0;
@@ -29,11 +34,36 @@ pub fn overlaps(chain: &Chain, commands: &Commands, [from_s, to_s]: [f64; 2]) ->
     let cycles = commands.cycle_s().map_or(0.0, |cycle_s| (to_s - from_s) / cycle_s);
     let looks = (cycles * LOOKS_PER_CYCLE).ceil().clamp(1.0, MOST_LOOKS) as usize;
     let mut motion = commands.room();
-    let mut seen: BTreeMap<(usize, usize), (f64, usize)> = BTreeMap::new();
-    for look in 0..looks {
+    let shapes = (0..looks).map(|look| {
         let time_s = from_s + (to_s - from_s) * look as f64 / looks as f64;
         commands.rates(Instant::at(time_s), &mut motion);
-        let shape = shape_of(chain, commands, &motion.angles_rad);
+        (time_s, shape_of(chain, commands, &motion.angles_rad))
+    });
+    overlaps_of(chain, shapes)
+}
+
+/// The same over a whole flight, of joints as they were and not as they were told.
+pub(crate) fn overlaps_on_the_way(chain: &Chain, flight: &Flight) -> Vec<Overlap> {
+    let commands = flight.commands();
+    let looks = (flight.time_s / LOOK_S).ceil().clamp(1.0, MOST_LOOKS) as usize;
+    let mut motion = commands.room();
+    let shapes = (0..=looks).map(|look| {
+        let time_s = flight.time_s * look as f64 / looks as f64;
+        commands.rates(flight.trajectory.instant(time_s), &mut motion);
+        for axis in flight.trajectory.state(time_s).loose {
+            motion.angles_rad[axis.axis_idx] = axis.angle_rad;
+        }
+        (time_s, shape_of(chain, commands, &motion.angles_rad))
+    });
+    overlaps_of(chain, shapes)
+}
+
+/// - `shapes`: at equal steps of time
+fn overlaps_of(chain: &Chain, shapes: impl Iterator<Item = (f64, Shape)>) -> Vec<Overlap> {
+    let mut looks = 0;
+    let mut seen: BTreeMap<(usize, usize), (f64, usize)> = BTreeMap::new();
+    for (time_s, shape) in shapes {
+        looks += 1;
         for pair in overlapping_segments(chain.segments(), &shape) {
             seen.entry(pair).or_insert((time_s, 0)).1 += 1;
         }

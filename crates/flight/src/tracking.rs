@@ -1,5 +1,7 @@
 //! How well servos followed their commands.
 
+use undulift_gait::Peak;
+
 use crate::Flight;
 use crate::turning::By;
 
@@ -16,6 +18,8 @@ pub struct Tracking {
     pub saturations: Vec<Saturation>,
     /// Furthest from a command; absent without driven axes.
     pub largest: Option<TrackingError>,
+    /// Of every axis that didn't follow its command: how far and how fast it turned.
+    pub peaks: Vec<Peak>,
 }
 
 /// A stretch over which one servo gave all it had.
@@ -50,6 +54,7 @@ pub fn tracking(flight: &mut Flight) -> Tracking {
     for look in 0..=looks {
         let time_s = time_of(look, flight.time_s);
         let mut saturated = vec![false; n_axes];
+        found.raise_peaks(flight, time_s);
         for (axis_idx, error_rad, all) in follow(flight, time_s) {
             saturated[axis_idx] = all;
             if found.largest.is_none_or(|most| error_rad.abs() > most.error_rad.abs()) {
@@ -76,6 +81,34 @@ pub fn tracking(flight: &mut Flight) -> Tracking {
     let order = |s: &Saturation| (s.axis_idx, s.from_s);
     found.saturations.sort_by(|a, b| order(a).partial_cmp(&order(b)).expect("finite times"));
     found
+}
+
+impl Tracking {
+    fn raise_peaks(&mut self, flight: &Flight, time_s: f64) {
+        for axis in flight.trajectory.state(time_s).loose {
+            let of = flight.commands().axes()[axis.axis_idx];
+            let known = self.peaks.iter().position(|peak| peak.of == of);
+            let place = known.unwrap_or_else(|| {
+                let none = -1.0;
+                let (angle_rad, rate_rad_s) = (none, none);
+                self.peaks.push(Peak {
+                    of,
+                    angle_rad,
+                    angle_at_s: 0.0,
+                    rate_rad_s,
+                    rate_at_s: 0.0,
+                });
+                self.peaks.len() - 1
+            });
+            let peak = &mut self.peaks[place];
+            if axis.angle_rad.abs() > peak.angle_rad {
+                (peak.angle_rad, peak.angle_at_s) = (axis.angle_rad.abs(), time_s);
+            }
+            if axis.rate_rad_s.abs() > peak.rate_rad_s {
+                (peak.rate_rad_s, peak.rate_at_s) = (axis.rate_rad_s.abs(), time_s);
+            }
+        }
+    }
 }
 
 /// Of every driven axis: which, command less angle in rad, and whether its servo gives all it has.

@@ -1,13 +1,14 @@
 //! One candidate: servos put into the design, flown, and asked whether they can do it.
 
 use nalgebra::Vector3;
-use undulift_chain::{Axis, Carried, Chain, PointMass, joint_axes};
+use undulift_chain::{Axis, AxisOf, Carried, Chain, PointMass};
 use undulift_design::Design;
 use undulift_flight::{
     Flight, FlightError, Glider, Settings, Summary, fly, histories as joint_histories, summary,
 };
-use undulift_servo::{Assumption, AxisHistory, Conditions, Histories, Place, Servo, budget};
+use undulift_servo::{Assumption, AxisHistory, Conditions, Histories, Servo, budget};
 
+use crate::asked::{Drops, conditions, servo_histories};
 use crate::misses::{Missed, of_flight, of_travel};
 use crate::{Choice, SizingError, Split, driven};
 
@@ -58,12 +59,7 @@ impl<'a> Bench<'a> {
         shelf: &'a [Servo],
         settings: Settings,
     ) -> Result<Self, SizingError> {
-        let conditions = Conditions {
-            battery: design.battery.as_ref().map(|battery| battery.supply.clone()),
-            air_temperature_k: design.glider.air.temperature_k,
-            torque_factor: design.limits.torque_factor,
-            ..Conditions::default()
-        };
+        let conditions = conditions(design, Drops::default());
         Ok(Self { design, shelf, driven: driven(design)?, conditions, settings })
     }
 
@@ -192,18 +188,8 @@ impl<'a> Bench<'a> {
         every_s: f64,
     ) -> Result<Histories, FlightError> {
         let found = joint_histories(glider, flight, every_s)?;
-        let axes = joint_axes(glider.chain.joints()).into_iter().enumerate();
-        let axes = axes.map(|(axis_idx, of)| {
-            let column = |rows: &[Vec<f64>]| rows.iter().map(|row| row[axis_idx]).collect();
-            AxisHistory {
-                place: Place { joint: of.joint_idx + 1, axis: of.axis.word() },
-                servo_idx: choice.servo_of(&self.driven, of.joint_idx, of.axis),
-                joint_torque_nm: column(&found.torques_nm),
-                rate_rad_s: column(&found.rates_rad_s),
-                acceleration_rad_s2: column(&found.accelerations_rad_s2),
-            }
-        });
-        Ok(Histories { axes: axes.collect(), times_s: found.times_s })
+        let servo_of = |of: &AxisOf| choice.servo_of(&self.driven, of.joint_idx, of.axis);
+        Ok(servo_histories(&glider.chain, found, servo_of))
     }
 }
 

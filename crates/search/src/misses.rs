@@ -3,6 +3,8 @@
 use undulift_design::Design;
 use undulift_flight::{End, Flight, Summary};
 
+use crate::travel::beyond_travel;
+
 /// A last cycle flatter than this, flown forward, is called a glide.
 const GLIDE: f64 = 0.5;
 
@@ -45,17 +47,6 @@ pub(crate) fn of_flight(design: &Design, summary: &Summary) -> Vec<Missed> {
 /// Joints that are asked to go further than their travel.
 pub(crate) fn of_travel(design: &Design, flight: &Flight) -> Vec<Missed> {
     let peaks = flight.commands().peaks(0.0, flight.time_s);
-    let missed = |peak: &undulift_gait::Peak| {
-        let joint = &design.glider.chain.joints()[peak.of.joint_idx];
-        let travel_rad = joint.travel_rad(peak.of.axis)?;
-        let [angle_deg, travel_deg] = [peak.angle_rad, travel_rad].map(f64::to_degrees);
-        (peak.angle_rad > travel_rad).then(|| {
-            let (number, axis) = (peak.of.joint_idx + 1, peak.of.axis.word());
-            let text = format!(
-                "{angle_deg:.1}° at joint {number} {axis}, beyond its travel of {travel_deg:.1}°"
-            );
-            (text, peak.angle_rad / travel_rad)
-        })
-    };
-    peaks.iter().filter_map(missed).collect()
+    let missed = beyond_travel(&design.glider.chain, &peaks);
+    missed.map(|missed| (missed.to_string(), missed.times_over())).collect()
 }

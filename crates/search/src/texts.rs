@@ -10,28 +10,6 @@ use crate::{Choice, driven};
 /// Keys of `[joints]` that name servos, in the order of the axes.
 const KEYS: [&str; 2] = ["yaw_servo", "pitch_servo"];
 
-/// A design's text without servos of its own, naming a catalogue instead: reading it reads the
-/// catalogue's servos and no others.
-///
-/// - `catalogue`: as the text names it
-///
-/// # Errors
-///
-/// Where the text isn't TOML.
-pub fn with_catalogue(text: &str, catalogue: &str) -> Result<String, TomlError> {
-    let mut document: DocumentMut = text.parse()?;
-    for others in ["servo", "spread", "search", "wiring"] {
-        document.remove(others);
-    }
-    if let Some(joints) = document.get_mut("joints").and_then(Item::as_table_like_mut) {
-        KEYS.into_iter().for_each(|key| {
-            joints.remove(key);
-        });
-    }
-    document.insert("servos", Item::Value(catalogue.into()));
-    Ok(document.to_string())
-}
-
 /// A design's text with servos of a catalogue written into it, and no others; what differed from
 /// launch to launch in servos that are gone is left out, all other comments and tables stay.
 ///

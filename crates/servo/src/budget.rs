@@ -71,6 +71,8 @@ pub struct AxisBudget {
     pub least_margin: Option<f64>,
     /// When that is, by the history's clock, s.
     pub least_margin_at_s: Option<f64>,
+    /// The same as a place in the history, from 0.
+    pub least_margin_idx: Option<usize>,
     /// Into motor and electronics, W; absent without a servo.
     pub peak_power_w: Option<f64>,
     /// The same over a drop, mean of all drops, J; absent without a servo or where the battery
@@ -172,7 +174,7 @@ fn go_through(
         battery.start();
     }
     for (idx, &at_s) in times_s.iter().enumerate() {
-        let when = When { at_s, drop };
+        let when = When { at_s, drop, instant_idx: idx };
         let seconds = if idx == 0 { 0.0 } else { at_s - times_s[idx - 1] };
         axes.iter_mut().for_each(|axis| axis.go_on(idx, seconds, when));
         let share = match battery {
@@ -234,6 +236,7 @@ fn axis_budget(times_s: &[f64], run: &AxisRun<'_>, drops: u32, collapsed: bool) 
         peak_speed_rad_s: largest(&run.history.rate_rad_s),
         least_margin: least.map(|(margin, _)| margin),
         least_margin_at_s: least.map(|(_, when)| when.at_s),
+        least_margin_idx: least.map(|(_, when)| when.instant_idx),
         peak_power_w: with_servo(run.peak_power_w),
         energy_j_per_drop: with_servo(run.energy_j / f64::from(drops)).filter(|_| !collapsed),
         heat: match run.servo.map(|servo| servo.endurance) {

@@ -43,6 +43,8 @@ pub struct When {
     pub at_s: f64,
     /// In which of the drops, from 1.
     pub drop: u32,
+    /// Its place in the history, from 0.
+    pub instant_idx: usize,
 }
 
 impl Histories {

@@ -60,38 +60,45 @@ impl MissKind {
     }
 }
 
-impl fmt::Display for Miss {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+impl Miss {
+    /// What is missed by how much, and where, without the time.
+    pub fn limit_and_place(&self) -> String {
+        let place = self.place.map(|Place { joint, axis }| format!(" at joint {joint} {axis}"));
+        format!("{}{}", self.figure_and_limit(), place.unwrap_or_default())
+    }
+
+    fn figure_and_limit(&self) -> String {
         let Miss { found, limit, .. } = *self;
         match self.kind {
             MissKind::BatteryCollapse => {
-                write!(f, "the battery collapses under {found:.1} W; it has {limit:.1} W at most")?;
+                format!("the battery collapses under {found:.1} W; it has {limit:.1} W at most")
             }
-            MissKind::Torque => write!(f, "torque margin {found:.2}, below {limit:.2}")?,
+            MissKind::Torque => format!("torque margin {found:.2}, below {limit:.2}"),
             MissKind::Speed => {
                 let [found, limit] = [found, limit].map(f64::to_degrees);
-                write!(f, "{found:.0}°/s, above the {limit:.0}°/s reached without load")?;
+                format!("{found:.0}°/s, above the {limit:.0}°/s reached without load")
             }
             MissKind::WindingHeat => {
                 let [found, limit] = [found, limit].map(|kelvin| kelvin - 273.15);
-                write!(f, "winding at {found:.0} °C, above {limit:.0} °C")?;
+                format!("winding at {found:.0} °C, above {limit:.0} °C")
             }
             MissKind::ContinuousTorque => {
-                write!(f, "RMS torque {found:.3} N·m, above the continuous {limit:.3} N·m")?;
+                format!("RMS torque {found:.3} N·m, above the continuous {limit:.3} N·m")
             }
-            MissKind::BatteryCurrent => {
-                write!(f, "battery gives {found:.1} A, above {limit:.1} A")?
-            }
+            MissKind::BatteryCurrent => format!("battery gives {found:.1} A, above {limit:.1} A"),
             MissKind::RegulatorCurrent => {
-                write!(f, "regulator gives {found:.1} A, above {limit:.1} A")?;
+                format!("regulator gives {found:.1} A, above {limit:.1} A")
             }
             MissKind::BatteryEmpty => {
-                write!(f, "the drop takes {found:.0} C of the {limit:.0} C in the battery")?;
+                format!("the drop takes {found:.0} C of the {limit:.0} C in the battery")
             }
         }
-        if let Some(Place { joint, axis }) = self.place {
-            write!(f, " at joint {joint} {axis}")?;
-        }
+    }
+}
+
+impl fmt::Display for Miss {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(&self.limit_and_place())?;
         self.when.map_or(Ok(()), |when| write!(f, ", t = {:.2} s", when.at_s))
     }
 }

@@ -87,7 +87,7 @@ fn analytic_peaks_and_margins() {
     assert_relative_eq!(axis.peak_torque_nm, 0.3, max_relative = 1e-14);
     assert_eq!(axis.peak_speed_rad_s, 4.0);
     assert_relative_eq!(axis.least_margin.unwrap(), 2.0, max_relative = 1e-12);
-    assert_eq!(axis.least_margin_at_s, Some(1.0));
+    assert_eq!((axis.least_margin_at_s, axis.least_margin_idx), (Some(1.0), Some(0)));
     assert_eq!(found.least_margin, axis.least_margin);
     assert!(found.passes && found.battery.is_none());
     // 0.3 level for half the time, then straight to −0.3, whose mean square is a third.
@@ -213,6 +213,8 @@ fn analytic_misses_and_their_remedies() {
     assert_eq!([speed.found, speed.when.unwrap().at_s], [12.0, 1.0]);
     assert_relative_eq!(speed.remedies.faster.unwrap(), 1.2, max_relative = 1e-12);
     assert_eq!(torque.to_string(), "torque margin 0.67, below 1.50 at joint 1 yaw, t = 1.00 s");
+    assert_eq!(torque.limit_and_place(), "torque margin 0.67, below 1.50 at joint 1 yaw");
+    assert_eq!(torque.when.unwrap().instant_idx, 1);
 }
 
 /// With the remedies in place the budget passes, and with a little less it doesn't.
@@ -317,4 +319,21 @@ fn twin_histories_that_do_not_fit_are_refused() {
     let conditions = Conditions { drops: 0, ..Conditions::default() };
     let found = budget(&[servo()], &held(0.1, 1.0), &conditions);
     assert!(matches!(found, Err(ServoError::Figure { quantity: "drops", .. })), "{found:?}");
+}
+
+/// Instants at one time are poses of their own: by hand at 6 V and at rest 1 N·m is left, and the
+/// least margin is that of the largest torque, told by its place; nothing warms between them.
+#[test]
+fn analytic_poses_without_time_between_them() {
+    let torques_nm = [0.2, -0.8, 0.4, 0.8];
+    let histories =
+        Histories { times_s: vec![0.0; 4], axes: vec![axis(1, &torques_nm, &[0.0; 4])] };
+    let found = found(thermal(), &histories, &Conditions::default());
+    let axis = &found.axes[0];
+    assert_relative_eq!(axis.least_margin.unwrap(), 1.25, max_relative = 1e-12);
+    // Of two equal ones the first.
+    assert_eq!(axis.least_margin_idx, Some(1));
+    assert_eq!(axis.rms_torque_nm, 0.8);
+    let Heat::Winding { peak_k, .. } = axis.heat else { unreachable!() };
+    assert_eq!(peak_k, 293.15);
 }

@@ -1,0 +1,49 @@
+//! The budget of a design that has flown, from no more than it needs: hinges, energies and joint
+//! travel, which take as long as the flight, are left out.
+
+use undulift_chain::{AxisOf, joint_axes};
+use undulift_design::Design;
+use undulift_flight::{Flight, FlightError, loads_at};
+use undulift_servo::{AxisHistory, Budget, Histories, Servo, budget};
+
+use crate::asked::{Drops, conditions, place, servo_idx};
+
+/// - `every_s`: between the instants that it is made from
+/// - returns none where a servo, the battery or the motion can't be reckoned with
+pub(crate) fn budget_of(
+    design: &Design,
+    flight: &mut Flight,
+    every_s: f64,
+) -> Result<Option<Budget>, FlightError> {
+    let mut histories = Histories { times_s: times_s(flight.time_s, every_s), axes: axes(design) };
+    let mut motion = flight.commands().room();
+    for &time_s in &histories.times_s {
+        let torques_nm = loads_at(&design.glider, flight, time_s)?.torques_nm;
+        flight.commands().accelerations(flight.trajectory.instant(time_s), &mut motion);
+        for (axis_idx, axis) in histories.axes.iter_mut().enumerate() {
+            axis.joint_torque_nm.push(torques_nm[axis_idx]);
+            axis.rate_rad_s.push(motion.rates_rad_s[axis_idx]);
+            axis.acceleration_rad_s2.push(motion.accelerations_rad_s2[axis_idx]);
+        }
+    }
+    let servos: Vec<Servo> = design.servos.values().cloned().collect();
+    Ok(budget(&servos, &histories, &conditions(design, Drops::default())).ok())
+}
+
+/// Equal steps, and the end.
+fn times_s(end_s: f64, every_s: f64) -> Vec<f64> {
+    let whole = (end_s / every_s - 1e-9).floor() as u64;
+    (0..=whole).map(|row| row as f64 * every_s).chain([end_s]).collect()
+}
+
+/// Without anything in their columns yet.
+fn axes(design: &Design) -> Vec<AxisHistory> {
+    let axis = |of: &AxisOf| AxisHistory {
+        place: place(of),
+        servo_idx: servo_idx(design, of),
+        joint_torque_nm: Vec::new(),
+        rate_rad_s: Vec::new(),
+        acceleration_rad_s2: Vec::new(),
+    };
+    joint_axes(design.glider.chain.joints()).iter().map(axis).collect()
+}
