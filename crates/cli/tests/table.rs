@@ -166,6 +166,21 @@ fn twin_spoilt_and_held_tables_are_refused() {
     assert!(complaint(&output).contains("checksum"), "{}", complaint(&output));
 }
 
+/// Held rows at the firmware's rate, read back and flown with servos: frames send what rows hold.
+#[test]
+fn twin_held_tables_fly_with_servos() {
+    let folder = tempfile::tempdir().unwrap();
+    let out = folder.path().join("t.h");
+    let output = table(REED, &out, &["--format", "c", "--between", "hold", "--json"]);
+    let told: Value = serde_json::from_str(&answer(&output)).expect("JSON");
+    let gait = format!("gait={{table={:?},interpolation=\"hold\"}}", out.to_str().unwrap());
+    let back = json(&["fly", REED, "--json", "--joints", "driven", "--set", &gait]);
+    for key in ["glide_ratio", "distance_m", "peak_roll_deg", "peak_pitch_deg"] {
+        let number = |value: &Value| value[key].as_f64().unwrap();
+        assert_relative_eq!(number(&told["flown"]), number(&back), max_relative = 1e-4);
+    }
+}
+
 /// The trade's file has the table that was chosen, within the tolerance, and one for every table
 /// tried; the answer's numbers are those.
 #[test]
