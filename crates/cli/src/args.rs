@@ -426,9 +426,9 @@ pub struct Table {
     #[arg(long, value_name = "K", value_parser = flash_kb)]
     pub flash_kb: Option<f64>,
 
-    /// Between a servo's pulses, ms: rows can't be closer.
-    #[arg(long, value_name = "MS", default_value_t = 20.0, value_parser = frame_ms)]
-    pub frame_ms: f64,
+    /// Between a servo's pulses, ms: rows can't be closer [default: `[firmware] update_hz`, or 20].
+    #[arg(long, value_name = "MS", value_parser = frame_ms)]
+    pub frame_ms: Option<f64>,
 
     /// With --tolerance: write what every table tried comes to, as CSV.
     #[arg(long, value_name = "FILE.csv", requires = "tolerance")]

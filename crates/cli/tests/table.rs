@@ -130,6 +130,20 @@ fn twin_tables_read_back_as_gaits() {
     }
 }
 
+/// Without a flag, rows come as often as the firmware of the design sends them, as far as a period
+/// is a whole number of frames; else the next slower way: 1.25 Hz at 50, 100 and 33 Hz.
+#[test]
+fn analytic_rows_follow_the_firmware() {
+    let folder = tempfile::tempdir().unwrap();
+    let out = folder.path().join("t.json");
+    for (update_hz, rows) in [("50", 40), ("100", 80), ("33", 26)] {
+        let set = format!("firmware.update_hz={update_hz}");
+        let output = table(REED, &out, &["--format", "json", "--json", "--set", &set]);
+        let told: Value = serde_json::from_str(&answer(&output)).unwrap();
+        assert_eq!(told["table"]["rows"], rows, "{update_hz} Hz");
+    }
+}
+
 /// A header whose numbers were changed is refused with its line; held rows are refused where joints
 /// follow exactly, with what to do.
 #[test]
@@ -150,6 +164,21 @@ fn twin_spoilt_and_held_tables_are_refused() {
     let output = undulift(&["fly", SEDGE, "--set", &gait("linear")]);
     assert_eq!(output.status.code(), Some(2));
     assert!(complaint(&output).contains("checksum"), "{}", complaint(&output));
+}
+
+/// Held rows at the firmware's rate, read back and flown with servos: frames send what rows hold.
+#[test]
+fn twin_held_tables_fly_with_servos() {
+    let folder = tempfile::tempdir().unwrap();
+    let out = folder.path().join("t.h");
+    let output = table(REED, &out, &["--format", "c", "--between", "hold", "--json"]);
+    let told: Value = serde_json::from_str(&answer(&output)).expect("JSON");
+    let gait = format!("gait={{table={:?},interpolation=\"hold\"}}", out.to_str().unwrap());
+    let back = json(&["fly", REED, "--json", "--joints", "driven", "--set", &gait]);
+    for key in ["glide_ratio", "distance_m", "peak_roll_deg", "peak_pitch_deg"] {
+        let number = |value: &Value| value[key].as_f64().unwrap();
+        assert_relative_eq!(number(&told["flown"]), number(&back), max_relative = 1e-4);
+    }
 }
 
 /// The trade's file has the table that was chosen, within the tolerance, and one for every table

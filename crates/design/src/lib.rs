@@ -8,9 +8,7 @@
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
 //! and radians. Tables that other commands read are left alone until they ask: [`Tuning`] is what
-//! `[search]` says.
-//! and radians. Tables that other commands read (`search`, `wiring`) are left alone
-//! until they ask ([`Design::wiring`]).
+//! `[search]` says, [`Design::wiring`] what `[wiring]` does.
 
 mod body;
 mod carried;

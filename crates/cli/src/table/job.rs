@@ -13,6 +13,9 @@ use undulift_servo::Load;
 
 use crate::args::{Between, Table as Args, TableFormat, TableUnit};
 
+/// Between the pulses of model servos, s (common practice; no source).
+const USUAL_FRAME_S: f64 = 0.02;
+
 /// A design, and what its table has to keep to.
 pub struct Job<'a> {
     pub args: &'a Args,
@@ -124,9 +127,15 @@ impl<'a> Job<'a> {
         }
     }
 
+    /// Between pulses, s.
+    fn frame_s(&self) -> f64 {
+        let own_s = self.design.update_hz.map(|update_hz| 1.0 / update_hz);
+        self.args.frame_ms.map(|ms| ms * 1e-3).or(own_s).unwrap_or(USUAL_FRAME_S)
+    }
+
     /// As many as pulses come in a period.
     pub fn most_rows(&self) -> usize {
-        let frames = 1e3 / (self.commands.clock().frequency_hz * self.args.frame_ms);
+        let frames = 1.0 / (self.commands.clock().frequency_hz * self.frame_s());
         ((frames + 1e-9) as usize).clamp(2, 65_535)
     }
 
@@ -154,7 +163,7 @@ impl<'a> Job<'a> {
     fn board(&self) -> Board {
         let driven = self.axes.iter().any(|&of| self.servo(of).is_some());
         Board {
-            pulse_frame_s: driven.then_some(self.args.frame_ms * 1e-3),
+            pulse_frame_s: driven.then_some(self.frame_s()),
             flash_bytes: self.args.flash_kb.map(|kb| (kb * 1024.0) as usize),
         }
     }
