@@ -8,16 +8,28 @@
 //! Places are in the world frame of a flight: x along the launch, y left, z up, origin on the floor
 //! under the point of release. SI units and radians.
 
+mod clearances;
+mod drops;
 mod error;
 mod falling;
+mod fault;
+mod fit;
+mod measuring;
+mod plan;
 mod region;
 mod sample_size;
 mod tolerance;
 
+pub use clearances::{Around, Clearances};
+pub use drops::{DRAG_DOUBT, Drop, Dropping, LIFT_DOUBT, Outcome, WEAKEST_WAVE};
 pub use error::DropError;
 pub use falling::{
     REACTION_TIME_S, catch_height_needed_m, fall_speed_m_s, fall_time_s, mean_load_factor,
 };
+pub use fault::FaultKind;
+pub use fit::{Misfit, ladder, misfits};
+pub use measuring::Measuring;
+pub use plan::{Bands, FaultRow, Furthest, KeepOut, Least, Plan, Sound};
 pub use region::{Ellipse, Scaled, normal_region_scale, region};
 pub use sample_size::{drops_for_mean, drops_to_tell_apart, most_failing_share};
 pub use tolerance::{
