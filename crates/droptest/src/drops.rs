@@ -169,8 +169,7 @@ impl<'h> Dropping<'h> {
             flight = fly_driven(&design.glider, &drives, &self.settings(false))?;
         }
         let summary = summary(&design.glider, &mut flight);
-        let longest_s = LONGEST_S;
-        let last = trace(&mut flight, longest_s).last().expect("a trace has an end");
+        let last = trace(&mut flight, LONGEST_S).last().expect("a trace has an end");
         Ok(Outcome {
             place_m: [last.state.place_m.x, last.state.place_m.y],
             summary,
@@ -178,5 +177,69 @@ impl<'h> Dropping<'h> {
             caught,
             clearances: self.around.of(&mut flight),
         })
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+    use std::path::Path;
+
+    const BAR: &str = "[body]\nsegments = 2\nlength_m = 0.5\nwidth_m = 0.02\nthickness_m = 0.005\n\
+        structure_kg = 0.5\nsection = \"plate\"\n[joints]\naxes = \"yaw\"\n[gait]\n\
+        frequency_hz = 1.0\nlateral_amplitude_deg = 50.0\nlateral_waves = 1.0\n[launch]\n\
+        height_m = 3.0\nspeed_m_s = 4.0\n";
+
+    fn hall() -> Hall {
+        let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../designs/hall-gantry.toml");
+        Hall::read(&path).unwrap()
+    }
+
+    /// An abstract in J. Exp. Biol.: 35 % too little lift, 1/0.65 = 1.54, and 40 % too much drag,
+    /// 1/1.4 = 0.71; both ends and their opposites are reached, and no more.
+    #[test]
+    fn published_doubt_reaches_both_ways() {
+        let (hall, path) = (hall(), Path::new("bar.toml"));
+        let design = undulift_design::read_text(path, BAR, &[]).unwrap();
+        let dropping = Dropping::new(&design, &hall, 3);
+        let mut random = Xoshiro256PlusPlus::seed_from_u64(5);
+        let drawn: Vec<Design> = (0..2000)
+            .map(|_| {
+                let mut changed = design.clone();
+                dropping.widen(&mut changed, &mut random);
+                changed
+            })
+            .collect();
+        let ends = |of: fn(&Design) -> f64| {
+            let values = drawn.iter().map(of);
+            [values.clone().fold(f64::INFINITY, f64::min), values.fold(0.0, f64::max)]
+        };
+        let [low, high] = ends(|design| design.glider.scales.lift);
+        assert_relative_eq!(low, 0.65, max_relative = 0.01);
+        assert_relative_eq!(high, 1.0 / 0.65, max_relative = 0.01);
+        let [low, high] = ends(|design| design.glider.scales.drag);
+        assert_relative_eq!(low, 1.0 / 1.4, max_relative = 0.01);
+        assert_relative_eq!(high, 1.4, max_relative = 0.01);
+        let wind = ends(|design| design.glider.wind_world_m_s.norm());
+        assert!(wind[0] < 0.01 && wind[1] > 0.29 && wind[1] <= 0.3, "{wind:?}");
+        let better = drawn.iter().find(|design| design.glider.scales.lift > 1.5).unwrap();
+        assert!(better.glider.scales.drag < 0.75);
+    }
+
+    /// Kinds come as often as their weights say: of 20 000 drops the standard error of a share of
+    /// 0.1 is 0.002, and four of those are allowed.
+    #[test]
+    fn analytic_faults_come_as_often_as_asked() {
+        let shares =
+            undulift_design::FaultShares { share: 0.4, weights: [1.0, 0.0, 2.0, 0.0, 0.0, 1.0] };
+        let mut random = Xoshiro256PlusPlus::seed_from_u64(9);
+        let drawn: Vec<Option<FaultKind>> =
+            (0..20_000).map(|_| FaultKind::draw(&shares, &mut random)).collect();
+        let of = |kind| drawn.iter().filter(|drawn| **drawn == kind).count() as f64 / 20_000.0;
+        assert_relative_eq!(of(None), 0.6, epsilon = 0.014);
+        for (kind, share) in FaultKind::ALL.into_iter().zip([0.1, 0.0, 0.2, 0.0, 0.0, 0.1]) {
+            assert_relative_eq!(of(Some(kind)), share, epsilon = 0.012);
+        }
     }
 }

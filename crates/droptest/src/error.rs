@@ -22,9 +22,6 @@ pub enum DropError {
         /// Needed.
         needed: usize,
     },
-    /// The flights all end on one line or point.
-    #[error("all flights end on one line, so no ellipse holds them; let the launch differ more")]
-    NoArea,
     /// No sound flight could be flown; this is why the first couldn't.
     #[error("no drop could be flown: {0}")]
     Flight(#[from] FlightError),

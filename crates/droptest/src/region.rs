@@ -83,7 +83,7 @@ impl Ellipse {
 ///
 /// # Errors
 ///
-/// [`DropError::TooFew`] for less than five, [`DropError::NoArea`] where they lie on one line.
+/// [`DropError::TooFew`] for less than five.
 pub fn region(places_m: &[[f64; 2]]) -> Result<(Ellipse, Scaled), DropError> {
     let n = places_m.len();
     if n < FEWEST {
@@ -99,10 +99,18 @@ fn region_of(places_m: &[[f64; 2]], normal: f64) -> Result<(Ellipse, Scaled), Dr
     let centre = places().sum::<Vector2<f64>>() / n as f64;
     let squares = places().map(|place| (place - centre) * (place - centre).transpose());
     let covariance = squares.sum::<Matrix2<f64>>() / (n - 1) as f64;
-    let inverse = covariance.try_inverse().filter(|inverse| inverse.iter().all(|i| i.is_finite()));
-    let inverse = inverse.ok_or(DropError::NoArea)?;
-    let mut apart: Vec<f64> =
-        places().map(|place| (place - centre).dot(&(inverse * (place - centre)))).collect();
+    let own = SymmetricEigen::new(covariance);
+    // Landings on one line, or at one point, have no width to be measured by.
+    let least = 1e-12 * own.eigenvalues.max();
+    let apart_of = |place: Vector2<f64>| {
+        let along = own.eigenvectors.transpose() * (place - centre);
+        let of = |which: usize| match own.eigenvalues[which] {
+            variance if variance > least => along[which] * along[which] / variance,
+            _ => 0.0,
+        };
+        of(0) + of(1)
+    };
+    let mut apart: Vec<f64> = places().map(apart_of).collect();
     apart.sort_unstable_by(f64::total_cmp);
     let by_ranks = rank_that_holds(n, SHARE, CONFIDENCE).map_or(0.0, |rank| apart[rank - 1]);
     let scaled = if by_ranks > normal { Scaled::Ranks } else { Scaled::Normal };
@@ -271,7 +279,9 @@ mod tests {
         }
         assert_relative_eq!(found.reach_m(found.angle_rad), found.semi_axes_m[0]);
         let line = [[0.0, 0.0], [1.0, 1.0], [2.0, 2.0], [3.0, 3.0], [4.0, 4.0]];
-        assert!(matches!(region(&line), Err(DropError::NoArea)));
+        let (flat, _) = region(&line).unwrap();
+        assert_relative_eq!(flat.angle_rad, std::f64::consts::FRAC_PI_4, epsilon = 1e-9);
+        assert!(flat.semi_axes_m[1] < 1e-6 && flat.semi_axes_m[0] > 2.0 * 2.0_f64.sqrt());
         assert!(matches!(region(&line[..4]), Err(DropError::TooFew { .. })));
     }
 }

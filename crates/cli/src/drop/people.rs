@@ -197,7 +197,7 @@ fn ladder(told: &Told<'_>, text: &mut String) {
     line(
         text,
         "Release ladder",
-        "go on only when all drops of a rung lay within its bands (5 % to 95 %):",
+        "go higher only when drops lie within these bands (nine in ten should) and none surprises you:",
     );
     let header = format!(
         "{:>6}{:>16}{:>16}{:>16}{:>12}",
