@@ -18,6 +18,9 @@ use crate::{Outcome, json, many, terminal};
 /// Drops from each lower rung of the ladder, at most.
 const DROPS_A_RUNG: usize = 200;
 
+/// Faults whose outermost holds 95 % of all, at 95 % confidence.
+const FAULTS_WANTED: usize = 59;
+
 /// The cautions in short.
 const CAUTIONS: &str = "a plan is no permission: local rules, the hall's owner and competent, licensed \
     people decide. Keep everyone out of the keep-out area and from under the release; eye protection; \
@@ -121,6 +124,14 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
         terminal::tell_warning(&format!(
             "the design is let go at {launch_m:.1} m, but the hall's highest release is {highest_m:.1} m, \
              which is what was flown"
+        ));
+    }
+    let faults = told.plan.furthest.map_or(0, |furthest| furthest.of);
+    if told.hall.faults.share > 0.0 && faults < FAULTS_WANTED {
+        let flights = (FAULTS_WANTED as f64 / told.hall.faults.share * 1.3).ceil();
+        terminal::tell_warning(&format!(
+            "{faults} faults say little of where all of them end: {FAULTS_WANTED} hold 95 % at 95 % \
+             confidence; --flights {flights:.0} gives about as many"
         ));
     }
     for misfit in &told.misfits {

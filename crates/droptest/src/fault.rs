@@ -61,15 +61,18 @@ impl FaultKind {
     /// Whether a drop fails, and how; what is drawn here doesn't depend on the design.
     pub(crate) fn draw(shares: &FaultShares, random: &mut impl Rng) -> Option<Self> {
         let (which, kind): (f64, f64) = (random.random(), random.random());
+        if which >= shares.share {
+            return None;
+        }
         let mut left = kind * shares.weights.iter().sum::<f64>();
-        let fails = which < shares.share;
-        fails.then_some(())?;
-        let weighed = Self::ALL.iter().zip(shares.weights).filter(|(_, weight)| *weight > 0.0);
-        let found = weighed.clone().find(|(_, weight)| {
+        let mut last = None;
+        for (kind, weight) in Self::ALL.into_iter().zip(shares.weights) {
+            if weight > 0.0 && left >= 0.0 {
+                last = Some(kind);
+            }
             left -= weight;
-            left < 0.0
-        });
-        found.or(weighed.last()).map(|(kind, _)| *kind)
+        }
+        last
     }
 
     /// Changes a design that is about to fly, and says which axes fail when.
