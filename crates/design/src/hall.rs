@@ -14,7 +14,6 @@ use crate::table::Table;
 use crate::{DesignError, DesignErrors};
 
 const LENGTH_M: Range = Range::above_0_to(1000.0);
-const PLACE_M: Range = Range::from_to(0.0, 1000.0);
 /// Most heights of a release ladder.
 const MOST_HEIGHTS: usize = 20;
 
@@ -152,7 +151,8 @@ fn read_hall(top: Table<'_>) -> Option<Hall> {
         ["length_m", "width_m", "height_m"].map(|key| size.need_number(key, LENGTH_M));
     size.finish();
     let release = read_release(top.need_table("release"), [length_m, width_m]);
-    let people: Vec<_> = top.tables("people").into_iter().map(read_person).collect();
+    let people = top.tables("people").into_iter();
+    let people: Vec<_> = people.map(|table| read_person(table, [length_m, width_m])).collect();
     let catch = read_catch(top.need_table("catch"));
     let air = top.table("air");
     let temperature_c = air.number("temperature_c", Range::within(80.0));
@@ -178,10 +178,14 @@ fn read_hall(top: Table<'_>) -> Option<Hall> {
     })
 }
 
+/// A place within the hall, where its size is known.
+fn up_to(most_m: Option<f64>) -> Range {
+    Range::from_to(0.0, most_m.unwrap_or(1000.0))
+}
+
 fn read_release(table: Table<'_>, [length_m, width_m]: [Option<f64>; 2]) -> Option<Release> {
-    let within = |most_m: Option<f64>| Range::from_to(0.0, most_m.unwrap_or(1000.0));
-    let from_wall_m = table.need_number("from_wall_m", within(length_m));
-    let across_m = table.need_number("across_m", within(width_m));
+    let from_wall_m = table.need_number("from_wall_m", up_to(length_m));
+    let across_m = table.need_number("across_m", up_to(width_m));
     let direction_deg = table.number("direction_deg", Range::within(180.0)).unwrap_or(0.0);
     let heights_m = read_heights(&table);
     table.finish();
@@ -212,9 +216,10 @@ fn read_heights(table: &Table<'_>) -> Option<Vec<f64>> {
     Some(heights_m)
 }
 
-fn read_person(table: Table<'_>) -> Option<Person> {
+fn read_person(table: Table<'_>, [length_m, width_m]: [Option<f64>; 2]) -> Option<Person> {
     let name = table.need("name", "a text in quotes").and_then(|node| node.text());
-    let [x_m, y_m] = ["x_m", "y_m"].map(|key| table.need_number(key, PLACE_M));
+    let x_m = table.need_number("x_m", up_to(length_m));
+    let y_m = table.need_number("y_m", up_to(width_m));
     let radius_m = table.need_number("radius_m", Range::from_to(0.0, 100.0));
     table.finish();
     Some(Person { name: name?.to_owned(), x_m: x_m?, y_m: y_m?, radius_m: radius_m? })

@@ -15,8 +15,17 @@ pub struct Clearances {
     pub people_m: f64,
     /// To the ceiling.
     pub ceiling_m: f64,
+    /// From where to where the centre of mass went along the launch.
+    pub along_m: [f64; 2],
+    /// From its right to its left.
+    pub across_m: [f64; 2],
+}
+
+impl Clearances {
     /// How far the centre of mass came back behind the point of release.
-    pub behind_release_m: f64,
+    pub fn behind_release_m(&self) -> f64 {
+        (-self.along_m[0]).max(0.0)
+    }
 }
 
 /// A hall about its point of release.
@@ -55,6 +64,9 @@ impl Around<'_> {
     /// How far a place lies within the edges of the catch, m; below 0 outside.
     pub fn within_catch_m(&self, [x, y]: [f64; 2]) -> f64 {
         let catch = &self.hall.catch;
+        if !self.has_catch() {
+            return f64::INFINITY;
+        }
         let along = catch.length_m.map_or(f64::INFINITY, |length_m| {
             let from = x - catch.from_release_m;
             from.min(length_m - from)
@@ -71,14 +83,21 @@ impl Around<'_> {
     /// Of a whole flight.
     pub(crate) fn of(&self, flight: &mut Flight) -> Clearances {
         let none = f64::INFINITY;
-        let mut least =
-            Clearances { walls_m: none, people_m: none, ceiling_m: none, behind_release_m: 0.0 };
+        let mut least = Clearances {
+            walls_m: none,
+            people_m: none,
+            ceiling_m: none,
+            along_m: [0.0; 2],
+            across_m: [0.0; 2],
+        };
+        let widen = |[from, to]: [f64; 2], at: f64| [from.min(at), to.max(at)];
         for row in trace(flight, EVERY_S) {
             let [x, y, z]: [f64; 3] = row.state.place_m.into();
             least.walls_m = least.walls_m.min(self.to_walls_m([x, y]));
             least.people_m = least.people_m.min(self.to_people_m([x, y]));
             least.ceiling_m = least.ceiling_m.min(self.hall.height_m - z - self.reach_m);
-            least.behind_release_m = least.behind_release_m.max(-x);
+            least.along_m = widen(least.along_m, x);
+            least.across_m = widen(least.across_m, y);
         }
         least
     }

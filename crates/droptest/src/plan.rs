@@ -2,7 +2,7 @@
 
 use undulift_flight::Spread;
 
-use crate::{Around, Drop, DropError, Ellipse, FaultKind, Outcome, Scaled, region};
+use crate::{Around, Clearances, Drop, DropError, Ellipse, FaultKind, Outcome, Scaled, region};
 
 /// What the drops from one height come to.
 #[derive(Debug, Clone)]
@@ -204,12 +204,13 @@ fn furthest(drops: &[Drop]) -> Option<Furthest> {
 
 impl KeepOut {
     fn of(drops: &[Drop], region: &Ellipse, around: &Around<'_>) -> Self {
-        let edge_m: Vec<[f64; 2]> = region.edge_m(180).collect();
-        let ends_m = flown(drops).map(|(_, outcome)| outcome.place_m);
-        let backs_m = flown(drops).map(|(_, o)| [-o.clearances.behind_release_m, 0.0]);
-        let all = ends_m.chain(backs_m).chain(edge_m).chain([[0.0, 0.0]]);
+        // Opposite corners of what holds each way, which the point of release is on.
+        let corners_m = flown(drops).flat_map(|(_, outcome)| {
+            let Clearances { along_m, across_m, .. } = outcome.clearances;
+            [[along_m[0], across_m[0]], [along_m[1], across_m[1]]]
+        });
         let mut keep_out = Self { along_m: [0.0; 2], across_m: [0.0; 2] };
-        for [x, y] in all {
+        for [x, y] in corners_m.chain(region.edge_m(180)) {
             let reach_m = around.reach_m;
             keep_out.along_m[0] = keep_out.along_m[0].min(x - reach_m);
             keep_out.along_m[1] = keep_out.along_m[1].max(x + reach_m);
@@ -240,6 +241,6 @@ fn least(drops: &[Drop]) -> Least {
         touching: clearances().filter(|c| c.walls_m < 0.0).count(),
         people_m: least(&mut clearances().map(|c| c.people_m)),
         ceiling_m: least(&mut clearances().map(|c| c.ceiling_m)),
-        behind_m: clearances().map(|c| c.behind_release_m).fold(0.0, f64::max),
+        behind_m: clearances().map(|c| c.behind_release_m()).fold(0.0, f64::max),
     }
 }

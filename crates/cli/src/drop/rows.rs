@@ -74,6 +74,6 @@ fn cells(outcome: &Outcome) -> [String; 17] {
         number(clearances.walls_m),
         if person_m.is_finite() { number(person_m) } else { String::new() },
         number(clearances.ceiling_m),
-        number(clearances.behind_release_m),
+        number(clearances.behind_release_m()),
     ]
 }
