@@ -102,3 +102,30 @@ impl Around<'_> {
         least
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+    use std::path::Path;
+
+    /// By hand, in a hall of 60 × 40 m with the release at (6, 20): turned a quarter to the left, 2 m
+    /// ahead and 1 m left lie at (5, 22). A wall is 5 m from there, and the operator's place at
+    /// (1.5, 20) √(3.5² + 2²) − 0.8 = 3.2311 m; both less the body's reach of 0.5 m.
+    #[test]
+    fn analytic_places_in_a_turned_hall() {
+        let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../designs/hall-gantry.toml");
+        let mut hall = Hall::read(&path).unwrap();
+        hall.release.direction_rad = std::f64::consts::FRAC_PI_2;
+        let around = Around { hall: &hall, reach_m: 0.5 };
+        let [x, y] = around.in_hall([2.0, 1.0]);
+        assert_relative_eq!(x, 5.0, epsilon = 1e-12);
+        assert_relative_eq!(y, 22.0, epsilon = 1e-12);
+        assert_relative_eq!(around.to_walls_m([2.0, 1.0]), 4.5, epsilon = 1e-12);
+        assert_relative_eq!(around.to_people_m([2.0, 1.0]), 2.7311, epsilon = 1e-4);
+        // The mat begins 2 m behind the release, is 34 m long and 16 m wide, along the launch.
+        assert_relative_eq!(around.within_catch_m([2.0, 1.0]), 4.0, epsilon = 1e-12);
+        assert_relative_eq!(around.within_catch_m([33.0, 1.0]), -1.0, epsilon = 1e-12);
+        assert_relative_eq!(around.within_catch_m([9.0, -8.5]), -0.5, epsilon = 1e-12);
+    }
+}

@@ -15,7 +15,9 @@ pub enum DropError {
         allowed: &'static str,
     },
     /// Too few to say anything.
-    #[error("only {found} sound flights were flown, but a region needs {needed}; fly more")]
+    #[error(
+        "only {found} sound flights were flown, but a region needs {needed}; fly more, or lower [faults] share"
+    )]
     TooFew {
         /// Flown.
         found: usize,

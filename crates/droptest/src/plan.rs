@@ -244,3 +244,21 @@ fn least(drops: &[Drop]) -> Least {
         behind_m: clearances().map(|c| c.behind_release_m()).fold(0.0, f64::max),
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+
+    /// By hand: beside an edge, off a corner (3, 4, 5), and within.
+    #[test]
+    fn analytic_way_to_a_keep_out_area() {
+        let keep_out = KeepOut { along_m: [-1.0, 10.0], across_m: [-2.0, 3.0] };
+        for (place_m, to_m) in
+            [([12.0, 0.0], 2.0), ([13.0, 7.0], 5.0), ([4.0, 2.0], -1.0), ([-1.5, -2.0], 0.5)]
+        {
+            assert_relative_eq!(keep_out.to_m(place_m), to_m, epsilon = 1e-12);
+        }
+        assert_eq!(keep_out.size_m(), [11.0, 5.0]);
+    }
+}
