@@ -23,7 +23,7 @@ const HALVINGS: usize = 45;
 ///
 /// # Source
 ///
-/// Krishnamoorthy & Mathew, *Statistical Tolerance Regions*, Wiley 2009, eq. 1.2.12.
+/// Krishnamoorthy & Mathew, *Statistical Tolerance Regions*, Wiley 2009.
 pub fn two_sided_factor(drops: usize, share: f64, confidence: f64) -> Result<f64, DropError> {
     check_all(drops, share, confidence)?;
     let n = drops as f64;
@@ -51,7 +51,7 @@ pub fn two_sided_factor(drops: usize, share: f64, confidence: f64) -> Result<f64
 ///
 /// # Source
 ///
-/// Krishnamoorthy & Mathew, *Statistical Tolerance Regions*, Wiley 2009, eq. 1.2.4.
+/// Krishnamoorthy & Mathew, *Statistical Tolerance Regions*, Wiley 2009.
 pub fn one_sided_factor(drops: usize, share: f64, confidence: f64) -> Result<f64, DropError> {
     check_all(drops, share, confidence)?;
     let n = drops as f64;
