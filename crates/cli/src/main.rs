@@ -8,6 +8,7 @@ mod budget;
 mod check;
 mod doubts;
 mod driven;
+mod drop;
 mod flown;
 mod fly;
 mod joints;
@@ -101,6 +102,7 @@ fn main() -> ExitCode {
         Command::Budget(args) => budget::run(args),
         Command::Size(args) => size::run(args),
         Command::Tune(args) => tune::run(args),
+        Command::Drop(args) => drop::run(args),
         Command::Table(args) => table::run(args),
         Command::New(new) => new::run(new),
         Command::Completions(completions) => complete(completions.shell),

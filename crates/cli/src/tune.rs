@@ -155,8 +155,8 @@ fn search(set: Set, args: &Args) -> anyhow::Result<Outcome> {
     tell(&Told { judge: &judge, run: &run, record: &record, closing, folder }, args.json)
 }
 
-/// The first ends the search when it may, the second at once.
-fn watch_for_ctrl_c(stopped: &Arc<AtomicBool>) -> anyhow::Result<()> {
+/// The first Ctrl-C asks for an end, the second ends at once.
+pub fn watch_for_ctrl_c(stopped: &Arc<AtomicBool>) -> anyhow::Result<()> {
     let stopped = Arc::clone(stopped);
     ctrlc::set_handler(move || {
         if stopped.swap(true, Ordering::Relaxed) {

@@ -8,7 +8,8 @@
 //!
 //! Files hold degrees and the units that their keys name; values are in SI units
 //! and radians. Tables that other commands read are left alone until they ask: [`Tuning`] is what
-//! `[search]` says, [`Design::wiring`] what `[wiring]` does.
+//! `[search]` says, [`Design::wiring`] what `[wiring]` does. A [`Hall`] is a
+//! file of its own.
 
 mod body;
 mod carried;
@@ -22,6 +23,7 @@ mod fast;
 mod files;
 mod gait;
 mod gait_table;
+mod hall;
 mod joints;
 mod key_path;
 mod knob;
@@ -56,6 +58,7 @@ pub use carried::{Battery, Payload};
 pub use catalogue::{Catalogue, read_catalogue};
 pub use design::{Design, read, read_text};
 pub use error::DesignError;
+pub use hall::{Camera, Catch, CatchKind, FaultShares, Hall, Person, Release};
 pub use joints::ServoNames;
 pub use knob::{Knob, set_all};
 pub use mistake::{DesignErrors, Mistake};

@@ -1,0 +1,235 @@
+//! Whether a hall holds what was computed: what doesn't fit, by how much, and what to do.
+
+use undulift_design::{CatchKind, Hall};
+
+use crate::{Around, Plan, catch_height_needed_m};
+
+/// Something that doesn't fit.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+#[non_exhaustive]
+pub enum Misfit {
+    /// The region reaches through a wall.
+    #[error(
+        "hall too small: the 95 % region, with the body, reaches {by_m:.1} m beyond a wall; let it go \
+         lower, move or turn the release, or find a larger hall"
+    )]
+    Region {
+        /// How far, m.
+        by_m: f64,
+    },
+    /// Drops touch a wall.
+    #[error(
+        "hall too small: {drops} of {of} drops touch a wall, by up to {by_m:.1} m; let it go lower, \
+         move or turn the release, hang nets before the walls, or find a larger hall"
+    )]
+    Walls {
+        /// How many.
+        drops: usize,
+        /// Of all flown.
+        of: usize,
+        /// How far, m.
+        by_m: f64,
+    },
+    /// A rung of the ladder is too close to the ceiling.
+    #[error(
+        "ladder above the ceiling: {height_m:.1} m and half the body's length make {top_m:.1} m, but \
+         the hall is {hall_m:.1} m high; let it go from {most_m:.1} m at most"
+    )]
+    Ceiling {
+        /// Release height, m.
+        height_m: f64,
+        /// With the body, m.
+        top_m: f64,
+        /// Of the hall, m.
+        hall_m: f64,
+        /// Highest that fits, m.
+        most_m: f64,
+    },
+    /// A drop rises to the ceiling.
+    #[error(
+        "a drop rises to the ceiling, {by_m:.1} m too far; let it go lower, or with less climb"
+    )]
+    Rise {
+        /// How far, m.
+        by_m: f64,
+    },
+    /// A rung isn't above the catch.
+    #[error(
+        "ladder too low: {height_m:.1} m isn't above the catch at {catch_m:.1} m and the body's reach \
+         of {reach_m:.1} m; begin at {least_m:.1} m or more, or lower the catch"
+    )]
+    Low {
+        /// Release height, m.
+        height_m: f64,
+        /// Of the catch, m.
+        catch_m: f64,
+        /// Of the body, m.
+        reach_m: f64,
+        /// Lowest that would do, m.
+        least_m: f64,
+    },
+    /// The net would let it through to the floor.
+    #[error(
+        "net too low: it hangs at {catch_m:.2} m and gives {stopping_m:.2} m; hang it at {least_m:.2} m \
+         or more"
+    )]
+    Net {
+        /// Of the net, m.
+        catch_m: f64,
+        /// How far it gives, m.
+        stopping_m: f64,
+        /// Lowest that would do, m.
+        least_m: f64,
+    },
+    /// The region reaches over the catch's edges.
+    #[error(
+        "catch too small: the 95 % region reaches {by_m:.1} m over its edge; it must lie from {:.1} to \
+         {:.1} m along the launch and {width_m:.1} m wide, or let it go lower",
+        along_m[0], along_m[1]
+    )]
+    Catch {
+        /// How far, m.
+        by_m: f64,
+        /// From where to where it is needed, m.
+        along_m: [f64; 2],
+        /// How wide, m.
+        width_m: f64,
+    },
+    /// Someone stands in the keep-out area, or a drop comes by.
+    #[error(
+        "`{name}` stands {by_m:.1} m inside the keep-out area, from {:.1} to {:.1} m along the launch and \
+         {:.1} m to its right to {:.1} m to its left; move them out, and behind something that stops it",
+        along_m[0], along_m[1], -across_m[0], across_m[1]
+    )]
+    Person {
+        /// Who.
+        name: String,
+        /// How far, m.
+        by_m: f64,
+        /// The area, m.
+        along_m: [f64; 2],
+        /// The area, m.
+        across_m: [f64; 2],
+    },
+    /// What isn't flown isn't known.
+    #[error(
+        "{refused} of {of} drops couldn't be flown, so where they end isn't known ({why}); look at the \
+         release, the spread and the gait's table"
+    )]
+    Unknown {
+        /// How many.
+        refused: usize,
+        /// Of how many.
+        of: usize,
+        /// Why the first couldn't.
+        why: String,
+    },
+}
+
+/// All that doesn't fit; empty where the hall holds it.
+///
+/// - `why_refused`: of the first drop that couldn't be flown
+/// - `thickness_m`: of the body
+pub fn misfits(
+    plan: &Plan,
+    around: &Around<'_>,
+    thickness_m: f64,
+    why_refused: Option<String>,
+) -> Vec<Misfit> {
+    let hall = around.hall;
+    let mut misfits = Vec::new();
+    misfits.extend(ladder(hall, around.reach_m));
+    misfits.extend(walls(plan, around));
+    misfits.extend(catch(plan, around, thickness_m));
+    misfits.extend(people(plan, around));
+    if let Some(why) = why_refused {
+        let refused = plan.sound.refused + plan.faults.iter().map(|row| row.refused).sum::<usize>();
+        misfits.push(Misfit::Unknown { refused, of: plan.drops, why });
+    }
+    misfits
+}
+
+/// What of a ladder doesn't fit between catch and ceiling, before anything is flown.
+///
+/// - `reach_m`: of the body from its centre
+pub fn ladder(hall: &Hall, reach_m: f64) -> Vec<Misfit> {
+    let heights_m = &hall.release.heights_m;
+    let (lowest_m, highest_m) = (heights_m[0], heights_m[heights_m.len() - 1]);
+    let (catch_m, hall_m) = (hall.catch.height_m, hall.height_m);
+    let top_m = highest_m + reach_m;
+    let low = Misfit::Low { height_m: lowest_m, catch_m, reach_m, least_m: catch_m + reach_m };
+    let high = Misfit::Ceiling { height_m: highest_m, top_m, hall_m, most_m: hall_m - reach_m };
+    let low = (lowest_m <= catch_m + reach_m).then_some(low);
+    low.into_iter().chain((top_m > hall_m).then_some(high)).collect()
+}
+
+fn walls(plan: &Plan, around: &Around<'_>) -> Vec<Misfit> {
+    let edge_m = plan.sound.region.edge_m(180).map(|place_m| around.to_walls_m(place_m));
+    let region_m = edge_m.fold(f64::INFINITY, f64::min);
+    let least = &plan.least;
+    let mut misfits = Vec::new();
+    if region_m < 0.0 {
+        misfits.push(Misfit::Region { by_m: -region_m });
+    }
+    if least.walls_m < 0.0 {
+        let faults = plan.faults.iter().map(|row| row.flown).sum::<usize>();
+        let of = plan.sound.flown + faults;
+        misfits.push(Misfit::Walls { drops: least.touching, of, by_m: -least.walls_m });
+    }
+    let above_m = around
+        .hall
+        .release
+        .heights_m
+        .last()
+        .map_or(0.0, |height_m| around.hall.height_m - height_m - around.reach_m);
+    // What begins at the ceiling is told of the ladder.
+    if least.ceiling_m < 0.0 && above_m >= 0.0 {
+        misfits.push(Misfit::Rise { by_m: -least.ceiling_m });
+    }
+    misfits
+}
+
+fn catch(plan: &Plan, around: &Around<'_>, thickness_m: f64) -> Vec<Misfit> {
+    let catch = &around.hall.catch;
+    let mut misfits = Vec::new();
+    let least_m = catch_height_needed_m(catch.stopping_m, thickness_m);
+    if catch.kind == CatchKind::Net && catch.height_m < least_m {
+        let (catch_m, stopping_m) = (catch.height_m, catch.stopping_m);
+        misfits.push(Misfit::Net { catch_m, stopping_m, least_m });
+    }
+    if !around.has_catch() {
+        return misfits;
+    }
+    let region = &plan.sound.region;
+    let reach_m = around.reach_m;
+    let within = |place_m| around.within_catch_m(place_m) - reach_m;
+    let least_within_m = region.edge_m(180).map(within).fold(f64::INFINITY, f64::min);
+    if least_within_m < 0.0 {
+        let [x, y] = region.centre_m;
+        let long_m = region.reach_m(0.0) + reach_m;
+        let wide_m = region.reach_m(std::f64::consts::FRAC_PI_2) + reach_m;
+        misfits.push(Misfit::Catch {
+            by_m: -least_within_m,
+            along_m: [x - long_m, x + long_m],
+            width_m: 2.0 * (y.abs() + wide_m),
+        });
+    }
+    misfits
+}
+
+fn people(plan: &Plan, around: &Around<'_>) -> Vec<Misfit> {
+    let release = &around.hall.release;
+    let (sin, cos) = release.direction_rad.sin_cos();
+    let keep_out = plan.keep_out;
+    let one = |person: &undulift_design::Person| {
+        let (x, y) = (person.x_m - release.from_wall_m, person.y_m - release.across_m);
+        let to_m = keep_out.to_m([x * cos + y * sin, y * cos - x * sin]) - person.radius_m;
+        (to_m < 0.0).then(|| Misfit::Person {
+            name: person.name.clone(),
+            by_m: -to_m,
+            along_m: keep_out.along_m,
+            across_m: keep_out.across_m,
+        })
+    };
+    around.hall.people.iter().filter_map(one).collect()
+}
