@@ -188,7 +188,7 @@ fn analytic_limits_of_design_and_search() {
     let left = ["peak_pitch_deg", "joint_travel_share", "budget.times_over"];
     assert_eq!(keys(judge.limits(), Origin::Design), left);
     let bounds: Vec<Bound> = judge.limits()[4..].iter().map(|limit| limit.bound).collect();
-    assert_eq!(bounds, [Bound::AtLeast(1.2), Bound::AtMost(9.0), Bound::AtMost(70.0)]);
+    assert_eq!(bounds, [Bound::Least(1.2), Bound::Most(9.0), Bound::Most(70.0)]);
     let columns = Limit::columns(judge.limits());
     assert_eq!(columns[4..6], ["budget.least_margin.at_least", "budget.least_margin.at_most"]);
     let ignored = judge_of(&format!("limits = \"ignored\"\n{GLIDE}")).unwrap();

@@ -58,8 +58,8 @@ fn by_limit(told: &Told<'_>, values: &[Option<f64>]) -> Value {
 
 fn limit(limit: &Limit) -> Value {
     let side = match limit.bound {
-        Bound::AtLeast(_) => "at_least",
-        Bound::AtMost(_) => "at_most",
+        Bound::Least(_) => "at_least",
+        Bound::Most(_) => "at_most",
     };
     let origin = match limit.origin {
         Origin::Always => "always",

@@ -114,8 +114,8 @@ fn table(judge: &Judge, closing: &Closing) -> String {
 
 fn limit_in_words(limit: &Limit) -> String {
     let bound = match limit.bound {
-        Bound::AtLeast(value) => format!("at least {value}"),
-        Bound::AtMost(value) => format!("at most {value}"),
+        Bound::Least(value) => format!("at least {value}"),
+        Bound::Most(value) => format!("at most {value}"),
     };
     match (limit.origin, limit.key.as_str()) {
         (Origin::Always, _) => "0: it must land".into(),
@@ -200,8 +200,8 @@ pub fn held_in_words(judge: &Judge, active: &Active) -> String {
         Held::Limit(idx) => {
             let limit = &judge.limits()[idx];
             match limit.bound {
-                Bound::AtLeast(value) => format!("{} at least {value}", limit.key),
-                Bound::AtMost(value) => format!("{} at most {value}", limit.key),
+                Bound::Least(value) => format!("{} at least {value}", limit.key),
+                Bound::Most(value) => format!("{} at most {value}", limit.key),
             }
         }
     }

@@ -206,7 +206,7 @@ impl Judge {
             .limits
             .iter()
             .map(|limit| {
-                let high_is_good = matches!(limit.bound, Bound::AtLeast(_));
+                let high_is_good = matches!(limit.bound, Bound::Least(_));
                 self.taken(&launches, &limit.key, high_is_good)
             })
             .collect();

@@ -21,9 +21,9 @@ pub struct Limit {
 #[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
 pub enum Bound {
     /// The value must not be below.
-    AtLeast(f64),
+    Least(f64),
     /// The value must not be above.
-    AtMost(f64),
+    Most(f64),
 }
 
 /// Who asks for a limit.
@@ -41,7 +41,7 @@ impl Bound {
     /// The number itself.
     pub fn value(self) -> f64 {
         match self {
-            Self::AtLeast(value) | Self::AtMost(value) => value,
+            Self::Least(value) | Self::Most(value) => value,
         }
     }
 
@@ -54,16 +54,16 @@ impl Bound {
     pub fn eased(self, share: f64) -> Self {
         let by = share * self.scale();
         match self {
-            Self::AtLeast(value) => Self::AtLeast(value - by),
-            Self::AtMost(value) => Self::AtMost(value + by),
+            Self::Least(value) => Self::Least(value - by),
+            Self::Most(value) => Self::Most(value + by),
         }
     }
 
     /// How far a value is on the wrong side, in scales; below 0 on the right one.
     pub fn relative_miss(self, value: f64) -> f64 {
         match self {
-            Self::AtLeast(least) => (least - value) / self.scale(),
-            Self::AtMost(most) => (value - most) / self.scale(),
+            Self::Least(least) => (least - value) / self.scale(),
+            Self::Most(most) => (value - most) / self.scale(),
         }
     }
 }
@@ -91,7 +91,7 @@ impl Limit {
 
     /// All of a search, those that nobody asked for first.
     pub fn all(design: &Design, tuning: &Tuning) -> Vec<Self> {
-        let mut limits = vec![Self::new(HEIGHT_LEFT, Bound::AtMost(0.0), Origin::Always)];
+        let mut limits = vec![Self::new(HEIGHT_LEFT, Bound::Most(0.0), Origin::Always)];
         if tuning.limits_kept {
             limits.extend(of_design(design, &tuning.require));
         }
@@ -105,8 +105,8 @@ impl Limit {
             let alike = limits.iter().filter(|other| other.key == limit.key).count();
             match limit.bound {
                 _ if alike == 1 => limit.key.clone(),
-                Bound::AtLeast(_) => format!("{}.at_least", limit.key),
-                Bound::AtMost(_) => format!("{}.at_most", limit.key),
+                Bound::Least(_) => format!("{}.at_least", limit.key),
+                Bound::Most(_) => format!("{}.at_most", limit.key),
             }
         };
         limits.iter().map(name).collect()
@@ -116,8 +116,8 @@ impl Limit {
 /// What `fly` and `budget` end with status 1 for; where the search has its own limit on that side
 /// of a quantity, that one holds alone.
 fn of_design(design: &Design, own: &[Required]) -> Vec<Limit> {
-    let tilt = Bound::AtMost(number(design, "limits.tilt_deg"));
-    let margin = Bound::AtLeast(number(design, "limits.torque_factor"));
+    let tilt = Bound::Most(number(design, "limits.tilt_deg"));
+    let margin = Bound::Least(number(design, "limits.torque_factor"));
     let axes = joint_axes(design.glider.chain.joints());
     let joints = design.glider.chain.joints();
     let stops = axes.iter().any(|of| joints[of.joint_idx].travel_rad(of.axis).is_some());
@@ -125,14 +125,14 @@ fn of_design(design: &Design, own: &[Required]) -> Vec<Limit> {
     let all = [
         (true, "peak_roll_deg", tilt),
         (true, "peak_pitch_deg", tilt),
-        (stops, TRAVEL_SHARE, Bound::AtMost(1.0)),
+        (stops, TRAVEL_SHARE, Bound::Most(1.0)),
         (driven, "budget.least_margin", margin),
-        (driven, TIMES_OVER, Bound::AtMost(1.0)),
+        (driven, TIMES_OVER, Bound::Most(1.0)),
     ];
     let replaced = |key: &str, bound: Bound| {
         own.iter().any(|own| match bound {
-            Bound::AtLeast(_) => own.key == key && own.at_least.is_some(),
-            Bound::AtMost(_) => own.key == key && own.at_most.is_some(),
+            Bound::Least(_) => own.key == key && own.at_least.is_some(),
+            Bound::Most(_) => own.key == key && own.at_most.is_some(),
         })
     };
     let asked = all.into_iter().filter(|(given, key, bound)| *given && !replaced(key, *bound));
@@ -145,8 +145,8 @@ fn number(design: &Design, key: &str) -> f64 {
 }
 
 fn of_search(required: &Required) -> Vec<Limit> {
-    let least = required.at_least.map(Bound::AtLeast);
-    let most = required.at_most.map(Bound::AtMost);
+    let least = required.at_least.map(Bound::Least);
+    let most = required.at_most.map(Bound::Most);
     let bounds = least.into_iter().chain(most);
     bounds.map(|bound| Limit::new(&required.key, bound, Origin::Search)).collect()
 }
@@ -165,22 +165,22 @@ mod tests {
     /// allowed is a half over, and counts 1/3; against 0 the unit itself is the scale.
     #[test]
     fn analytic_relative_misses() {
-        assert_relative_eq!(limit(Bound::AtLeast(1.5)).miss(Some(1.2)), 1.0 / 6.0, epsilon = 1e-12);
-        assert_relative_eq!(limit(Bound::AtMost(60.0)).miss(Some(90.0)), 1.0 / 3.0);
-        assert_relative_eq!(limit(Bound::AtLeast(0.0)).miss(Some(-3.0)), 0.75);
-        assert_relative_eq!(limit(Bound::AtMost(-2.0)).miss(Some(-1.0)), 1.0 / 3.0);
-        assert_eq!(limit(Bound::AtMost(1.0)).miss(Some(f64::INFINITY)), 1.0);
-        assert_eq!(limit(Bound::AtMost(1.0)).miss(None), 1.0);
-        assert_eq!(limit(Bound::AtMost(1.0)).miss(Some(1.0)), 0.0);
-        assert_eq!(limit(Bound::AtLeast(1.0)).miss(Some(7.0)), 0.0);
+        assert_relative_eq!(limit(Bound::Least(1.5)).miss(Some(1.2)), 1.0 / 6.0, epsilon = 1e-12);
+        assert_relative_eq!(limit(Bound::Most(60.0)).miss(Some(90.0)), 1.0 / 3.0);
+        assert_relative_eq!(limit(Bound::Least(0.0)).miss(Some(-3.0)), 0.75);
+        assert_relative_eq!(limit(Bound::Most(-2.0)).miss(Some(-1.0)), 1.0 / 3.0);
+        assert_eq!(limit(Bound::Most(1.0)).miss(Some(f64::INFINITY)), 1.0);
+        assert_eq!(limit(Bound::Most(1.0)).miss(None), 1.0);
+        assert_eq!(limit(Bound::Most(1.0)).miss(Some(1.0)), 0.0);
+        assert_eq!(limit(Bound::Least(1.0)).miss(Some(7.0)), 0.0);
     }
 
     /// A tenth easier: 1.5 becomes 1.35 from below, −2 becomes −1.8 from above, 0 gives 0.1.
     #[test]
     fn analytic_eased_bounds() {
-        assert_relative_eq!(Bound::AtLeast(1.5).eased(0.1).value(), 1.35);
-        assert_relative_eq!(Bound::AtMost(-2.0).eased(0.1).value(), -1.8);
-        assert_relative_eq!(Bound::AtMost(0.0).eased(0.1).value(), 0.1);
-        assert_relative_eq!(Bound::AtLeast(1.5).eased(-0.01).value(), 1.515);
+        assert_relative_eq!(Bound::Least(1.5).eased(0.1).value(), 1.35);
+        assert_relative_eq!(Bound::Most(-2.0).eased(0.1).value(), -1.8);
+        assert_relative_eq!(Bound::Most(0.0).eased(0.1).value(), 0.1);
+        assert_relative_eq!(Bound::Least(1.5).eased(-0.01).value(), 1.515);
     }
 }
