@@ -1,0 +1,50 @@
+//! `undulift drop`: its arguments.
+
+use std::path::PathBuf;
+
+use undulift_design::Override;
+
+/// Plan drop tests in a hall: where drops and faults end, whether the hall holds them, and a ladder of
+/// release heights.
+///
+/// Thousands of drops from the hall's highest release, each a little different, some of them with
+/// faults. Exit status 1 means that something doesn't fit: hall, catch, ladder or people; the reason
+/// and a remedy are told. A plan is no permission: read safety/README.md first.
+#[derive(Debug, clap::Args)]
+#[command(after_long_help = "Examples:
+  undulift drop designs/reed-16.toml designs/hall-gantry.toml
+  undulift drop designs/reed-16.toml designs/hall-gantry.toml --flights 5000 --csv drops.csv")]
+pub struct Drop {
+    /// A design file (TOML).
+    #[arg(value_name = "DESIGN")]
+    pub design: PathBuf,
+
+    /// A hall file (TOML), such as designs/hall-gantry.toml.
+    #[arg(value_name = "HALL")]
+    pub hall: PathBuf,
+
+    /// How many drops from the highest release, faults included.
+    #[arg(long, value_name = "N", default_value_t = 2000,
+        value_parser = clap::value_parser!(u32).range(10..=1_000_000))]
+    pub flights: u32,
+
+    /// Seed of the drops: the same seed gives the same drops.
+    #[arg(long, value_name = "S", default_value_t = 1)]
+    pub seed: u64,
+
+    /// Threads to fly on [default: all cores]; the result is the same.
+    #[arg(long, value_name = "T", value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub threads: Option<u16>,
+
+    /// Write every drop from the highest release as a row of CSV.
+    #[arg(long, value_name = "FILE.csv")]
+    pub csv: Option<PathBuf>,
+
+    /// Print JSON.
+    #[arg(long)]
+    pub json: bool,
+
+    /// Use another value than the design's, such as gait.frequency_hz=1.1; may be given again.
+    #[arg(long = "set", value_name = "KEY=VALUE", value_parser = Override::parse)]
+    pub sets: Vec<Override>,
+}
