@@ -3,6 +3,7 @@
 use serde_json::{Map, Value, json};
 use undulift_design::Design;
 use undulift_design::quantities::Quantity;
+use undulift_flight::Spread;
 
 use crate::terminal;
 
@@ -33,4 +34,10 @@ pub fn print(mut objects: Vec<Value>, asked: usize) -> anyhow::Result<()> {
         _ => Value::Array(objects),
     };
     terminal::answer(&format!("{value:#}\n"))
+}
+
+/// What many launches come to.
+pub fn percentiles(spread: &Spread) -> Value {
+    let Spread { p05, p50, p95 } = spread;
+    json!({ "p05": p05, "p50": p50, "p95": p95 })
 }

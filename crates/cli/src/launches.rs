@@ -8,7 +8,7 @@ use undulift_design::{Design, Scatter};
 use undulift_flight::{Bands, End, FlightError, Settings, Spread, Summary, fly_driven, summary};
 
 use crate::args::{Fly, Joints};
-use crate::{driven, many, people, trace_file, whole_file};
+use crate::{driven, json, many, people, trace_file, whole_file};
 
 /// Many launches of a design, flown.
 pub struct Launches {
@@ -85,9 +85,8 @@ impl Launches {
 
     /// The two keys that JSON gains.
     pub fn put_into(&self, object: &mut Map<String, Value>) {
-        let spread = self.spread.iter().map(|(key, spread)| {
-            ((*key).to_owned(), json!({ "p05": spread.p05, "p50": spread.p50, "p95": spread.p95 }))
-        });
+        let spread =
+            self.spread.iter().map(|(key, spread)| ((*key).to_owned(), json::percentiles(spread)));
         object.insert("launches".into(), json!(self.flown.len()));
         object.insert("seed".into(), json!(self.seed));
         object.insert("spread".into(), Value::Object(spread.collect()));
@@ -130,10 +129,10 @@ impl Launches {
             ("Largest roll", "peak_roll_deg", "°", 1),
             ("Largest pitch", "peak_pitch_deg", "°", 1),
         ];
-        line("", format!("{:>9}{:>9}{:>9}", "5 %", "median", "95 %"));
+        line("", people::percentile_names());
         for (label, key, unit, digits) in rows {
-            if let Some(Spread { p05, p50, p95 }) = self.of(key) {
-                line(label, format!("{p05:>9.digits$}{p50:>9.digits$}{p95:>9.digits$}{unit}"));
+            if let Some(spread) = self.of(key) {
+                line(label, people::percentiles(spread, digits, unit));
             }
         }
         text

@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use undulift_design::Design;
-use undulift_flight::End;
+use undulift_flight::{End, Spread};
 
 use crate::args::Fly;
 use crate::doubts::thousands;
@@ -40,6 +40,17 @@ pub fn answer(flown: &Flown, args: &Fly) -> String {
 pub fn line(text: &mut String, label: &str, value: &str) {
     // Writing to a string can't fail.
     let _ = writeln!(text, "  {label:<18}{value}");
+}
+
+/// Names over columns of [`percentiles`].
+pub fn percentile_names() -> String {
+    format!("{:>9}{:>9}{:>9}", "5 %", "median", "95 %")
+}
+
+/// What many launches come to.
+pub fn percentiles(spread: &Spread, digits: usize, unit: &str) -> String {
+    let Spread { p05, p50, p95 } = spread;
+    format!("{p05:>9.digits$}{p50:>9.digits$}{p95:>9.digits$}{unit}")
 }
 
 fn heading(flown: &Flown) -> String {

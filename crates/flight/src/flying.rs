@@ -67,6 +67,15 @@ impl Flight {
     pub fn commands(&self) -> &Commands {
         self.equations.commands()
     }
+
+    /// Equal steps from release, and the end: when a table of the flight has its rows, s.
+    ///
+    /// - `every_s`: between rows; above 0
+    pub fn row_times_s(&self, every_s: f64) -> impl Iterator<Item = f64> + use<> {
+        // A last whole step that falls on the end, but for rounding, is the end.
+        let whole = (self.time_s / every_s - 1e-9).floor() as u64;
+        (0..=whole).map(move |row| row as f64 * every_s).chain([self.time_s])
+    }
 }
 
 /// What was seen at one time.

@@ -80,9 +80,6 @@ pub fn histories(
     every_s: f64,
 ) -> Result<Histories, FlightError> {
     refuse_impulses(&glider.gait)?;
-    let end_s = flight.time_s;
-    let whole = (end_s / every_s - 1e-9).floor() as u64;
-    let times_s: Vec<f64> = (0..=whole).map(|row| row as f64 * every_s).chain([end_s]).collect();
     let mut found = Histories {
         times_s: Vec::new(),
         torques_nm: Vec::new(),
@@ -93,7 +90,7 @@ pub fn histories(
         hinge_loads: Vec::new(),
         left_at_nose: 0.0,
     };
-    for time_s in times_s {
+    for time_s in flight.row_times_s(every_s) {
         let state = flight.trajectory.state(time_s);
         let at = flight.trajectory.instant(time_s);
         found.push(time_s, flight.joint_loads(&glider.chain, at, &state));

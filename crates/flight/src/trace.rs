@@ -17,11 +17,7 @@ pub struct TraceRow {
 ///
 /// - `every_s`: between rows; above 0
 pub fn trace(flight: &mut Flight, every_s: f64) -> impl Iterator<Item = TraceRow> + '_ {
-    // A last whole step that falls on the end, but for rounding, is the end.
-    let whole = (flight.time_s / every_s - 1e-9).floor() as u64;
-    let end_s = flight.time_s;
-    let times_s = (0..=whole).map(move |row| row as f64 * every_s).chain([end_s]);
-    times_s.map(move |time_s| {
+    flight.row_times_s(every_s).map(move |time_s| {
         let state = flight.trajectory.state(time_s);
         let at = flight.trajectory.instant(time_s);
         let attitude = flight.equations.attitude(at, &state);

@@ -8,7 +8,7 @@ use undulift_flight::{End, Spread};
 
 use super::asking::{Judged, in_flight};
 use crate::args::Budget as Args;
-use crate::{launches::counted, many, people};
+use crate::{json, launches::counted, many, people};
 
 /// What is told of a launch, with label, unit and digits; without a label only scripts get it.
 const FIGURES: [(&str, &str, &str, usize); 8] = [
@@ -76,8 +76,7 @@ impl Launches {
     pub fn put_into(&self, object: &mut Map<String, Value>) {
         let known = FIGURES.iter().zip(&self.spread);
         let spread = known.filter_map(|((key, ..), spread)| {
-            let Spread { p05, p50, p95 } = (*spread)?;
-            Some(((*key).to_owned(), json!({ "p05": p05, "p50": p50, "p95": p95 })))
+            Some(((*key).to_owned(), json::percentiles(&(*spread)?)))
         });
         object.insert("launches".into(), json!(self.number));
         object.insert("seed".into(), json!(self.seed));
@@ -98,10 +97,10 @@ impl Launches {
             let why = "on the floor or inverted at release, or too fast to follow";
             line("Not let go", format!("{}: {why}", counted(self.refused)));
         }
-        line("", format!("{:>9}{:>9}{:>9}", "5 %", "median", "95 %"));
+        line("", people::percentile_names());
         for ((_, label, unit, digits), spread) in FIGURES.iter().zip(&self.spread) {
-            if let Some(Spread { p05, p50, p95 }) = spread {
-                line(label, format!("{p05:>9.digits$}{p50:>9.digits$}{p95:>9.digits$}{unit}"));
+            if let Some(spread) = spread {
+                line(label, people::percentiles(spread, *digits, unit));
             }
         }
         text

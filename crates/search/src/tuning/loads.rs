@@ -15,7 +15,8 @@ pub(crate) fn budget_of(
     flight: &mut Flight,
     every_s: f64,
 ) -> Result<Option<Budget>, FlightError> {
-    let mut histories = Histories { times_s: times_s(flight.time_s, every_s), axes: axes(design) };
+    let times_s = flight.row_times_s(every_s).collect();
+    let mut histories = Histories { times_s, axes: axes(design) };
     let mut motion = flight.commands().room();
     for &time_s in &histories.times_s {
         let torques_nm = loads_at(&design.glider, flight, time_s)?.torques_nm;
@@ -28,12 +29,6 @@ pub(crate) fn budget_of(
     }
     let servos: Vec<Servo> = design.servos.values().cloned().collect();
     Ok(budget(&servos, &histories, &conditions(design, Drops::default())).ok())
-}
-
-/// Equal steps, and the end.
-fn times_s(end_s: f64, every_s: f64) -> Vec<f64> {
-    let whole = (end_s / every_s - 1e-9).floor() as u64;
-    (0..=whole).map(|row| row as f64 * every_s).chain([end_s]).collect()
 }
 
 /// Without anything in their columns yet.
