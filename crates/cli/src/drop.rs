@@ -9,7 +9,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 
 use anyhow::Context;
 use undulift_design::{Design, DesignErrors, Hall};
-use undulift_droptest::{Bands, Drop, Dropping, Measuring, Misfit, Plan, misfits};
+use undulift_droptest::{Drop, Dropping, Measuring, Misfit, Plan, Rung, misfits};
 
 use crate::args;
 use crate::tune::watch_for_ctrl_c;
@@ -39,13 +39,6 @@ pub struct Told<'a> {
     /// Whether all drops that were asked for were flown.
     complete: bool,
     reach_m: f64,
-}
-
-/// Drops from one height of the ladder.
-struct Rung {
-    height_m: f64,
-    drops: usize,
-    bands: Option<Bands>,
 }
 
 pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
@@ -82,6 +75,7 @@ fn plan<'a>(
     let dropping = Dropping::new(&design, hall, args.seed);
     let (highest_m, lower_m) =
         hall.release.heights_m.split_last().context("a hall has a release height")?;
+    let around = dropping.around();
     let flights = args.flights as usize;
     let a_rung = flights.min(DROPS_A_RUNG);
     let bar = many::bar((flights + a_rung * lower_m.len()) as u64, &design.name);
@@ -93,15 +87,13 @@ fn plan<'a>(
         let drops = dropping.fly(*highest_m, flights, true, each);
         let lower = lower_m.iter().map(|&height_m| {
             let drops = dropping.fly(height_m, a_rung, false, each);
-            Rung { height_m, drops: drops.len(), bands: Bands::of_sound(&drops) }
+            Rung::of(height_m, &drops, &around)
         });
         (drops, lower.collect::<Vec<Rung>>())
     });
     bar.finish_and_clear();
-    let around = dropping.around();
     let plan = Plan::of(&drops, &around).with_context(|| design.name.clone())?;
-    let (of_highest, bands) = (plan.sound.flown, Some(plan.sound.bands));
-    rungs.push(Rung { height_m: *highest_m, drops: of_highest, bands });
+    rungs.push(Rung::of(*highest_m, &drops, &around));
     let refused = drops.iter().find_map(|drop| drop.result.as_ref().err());
     let thick = design.glider.chain.segments().iter().map(|segment| segment.thickness_m);
     let thickness_m = thick.fold(0.0, f64::max);

@@ -3,6 +3,8 @@
 use undulift_design::{CatchKind, Hall};
 use undulift_flight::{Flight, trace};
 
+use crate::Area;
+
 /// Between looks at a flight, s.
 const EVERY_S: f64 = 0.02;
 
@@ -15,16 +17,16 @@ pub struct Clearances {
     pub people_m: f64,
     /// To the ceiling.
     pub ceiling_m: f64,
-    /// From where to where the centre of mass went along the launch.
-    pub along_m: [f64; 2],
-    /// From its right to its left.
-    pub across_m: [f64; 2],
+    /// The least area that holds the point of release and the way of the centre of mass.
+    pub way: Area,
+    /// The same of the first of the way, one body length down.
+    pub at_rig: Area,
 }
 
 impl Clearances {
     /// How far the centre of mass came back behind the point of release.
     pub fn behind_release_m(&self) -> f64 {
-        (-self.along_m[0]).max(0.0)
+        (-self.way.along_m[0]).max(0.0)
     }
 }
 
@@ -87,17 +89,19 @@ impl Around<'_> {
             walls_m: none,
             people_m: none,
             ceiling_m: none,
-            along_m: [0.0; 2],
-            across_m: [0.0; 2],
+            way: Area::POINT,
+            at_rig: Area::POINT,
         };
-        let widen = |[from, to]: [f64; 2], at: f64| [from.min(at), to.max(at)];
+        let mut top_m = None;
         for row in trace(flight, EVERY_S) {
             let [x, y, z]: [f64; 3] = row.state.place_m.into();
             least.walls_m = least.walls_m.min(self.to_walls_m([x, y]));
             least.people_m = least.people_m.min(self.to_people_m([x, y]));
             least.ceiling_m = least.ceiling_m.min(self.hall.height_m - z - self.reach_m);
-            least.along_m = widen(least.along_m, x);
-            least.across_m = widen(least.across_m, y);
+            least.way = least.way.with([x, y], 0.0);
+            if z > *top_m.get_or_insert(z) - 2.0 * self.reach_m {
+                least.at_rig = least.at_rig.with([x, y], 0.0);
+            }
         }
         least
     }

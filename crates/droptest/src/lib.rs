@@ -8,6 +8,7 @@
 //! Places are in the world frame of a flight: x along the launch, y left, z up, origin on the floor
 //! under the point of release. SI units and radians.
 
+mod area;
 mod clearances;
 mod drops;
 mod error;
@@ -17,9 +18,11 @@ mod fit;
 mod measuring;
 mod plan;
 mod region;
+mod rung;
 mod sample_size;
 mod tolerance;
 
+pub use area::Area;
 pub use clearances::{Around, Clearances};
 pub use drops::{DRAG_DOUBT, Drop, Dropping, LIFT_DOUBT, Outcome, WEAKEST_WAVE};
 pub use error::DropError;
@@ -29,8 +32,9 @@ pub use falling::{
 pub use fault::FaultKind;
 pub use fit::{Misfit, ladder, misfits};
 pub use measuring::Measuring;
-pub use plan::{Bands, FaultRow, Furthest, KeepOut, Least, Plan, Sound};
+pub use plan::{Bands, FaultRow, Furthest, Least, Plan, Sound};
 pub use region::{Ellipse, Scaled, normal_region_scale, region};
+pub use rung::Rung;
 pub use sample_size::{drops_for_mean, drops_to_tell_apart, most_failing_share};
 pub use tolerance::{
     confidence_of_outermost, drops_for_outermost, held_by_outermost, one_sided_factor,

@@ -2,7 +2,7 @@
 
 use undulift_flight::Spread;
 
-use crate::{Around, Clearances, Drop, DropError, Ellipse, FaultKind, Outcome, Scaled, region};
+use crate::{Area, Around, Drop, DropError, Ellipse, FaultKind, Outcome, Scaled, region};
 
 /// What the drops from one height come to.
 #[derive(Debug, Clone)]
@@ -16,7 +16,7 @@ pub struct Plan {
     /// The fault that ended furthest from the point of release.
     pub furthest: Option<Furthest>,
     /// Where nobody may be.
-    pub keep_out: KeepOut,
+    pub keep_out: Area,
     /// Least clearances of all drops, faults included.
     pub least: Least,
 }
@@ -87,15 +87,6 @@ pub struct Furthest {
     pub of: usize,
 }
 
-/// A rectangle along the launch that holds the region and all ends and ways, body included, m.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct KeepOut {
-    /// From behind to ahead of the point of release.
-    pub along_m: [f64; 2],
-    /// From its right to its left.
-    pub across_m: [f64; 2],
-}
-
 /// Least clearances, m.
 #[derive(Debug, Clone, Copy)]
 pub struct Least {
@@ -107,6 +98,8 @@ pub struct Least {
     pub people_m: f64,
     /// To the ceiling.
     pub ceiling_m: f64,
+    /// What the first body length of the fall takes, body included: a rig must be out of it.
+    pub at_rig: Area,
     /// Furthest back behind the point of release.
     pub behind_m: f64,
 }
@@ -121,8 +114,8 @@ impl Plan {
         let sound = Sound::of(drops)?;
         let faults: Vec<FaultRow> =
             FaultKind::ALL.into_iter().filter_map(|kind| fault_row(drops, kind)).collect();
-        let keep_out = KeepOut::of(drops, &sound.region, around);
-        let least = least(drops);
+        let keep_out = keep_out(drops, &sound.region, around);
+        let least = least(drops, around);
         let furthest = furthest(drops);
         Ok(Self { drops: drops.len(), sound, faults, furthest, keep_out, least })
     }
@@ -202,38 +195,15 @@ fn furthest(drops: &[Drop]) -> Option<Furthest> {
     Some(Furthest { kind, distance_m: far(outcome), place_m: outcome.place_m, of })
 }
 
-impl KeepOut {
-    fn of(drops: &[Drop], region: &Ellipse, around: &Around<'_>) -> Self {
-        // Opposite corners of what holds each way, which the point of release is on.
-        let corners_m = flown(drops).flat_map(|(_, outcome)| {
-            let Clearances { along_m, across_m, .. } = outcome.clearances;
-            [[along_m[0], across_m[0]], [along_m[1], across_m[1]]]
-        });
-        let mut keep_out = Self { along_m: [0.0; 2], across_m: [0.0; 2] };
-        for [x, y] in corners_m.chain(region.edge_m(180)) {
-            let reach_m = around.reach_m;
-            keep_out.along_m[0] = keep_out.along_m[0].min(x - reach_m);
-            keep_out.along_m[1] = keep_out.along_m[1].max(x + reach_m);
-            keep_out.across_m[0] = keep_out.across_m[0].min(y - reach_m);
-            keep_out.across_m[1] = keep_out.across_m[1].max(y + reach_m);
-        }
-        keep_out
-    }
-
-    /// Length along and width across the launch, m.
-    pub fn size_m(&self) -> [f64; 2] {
-        [self.along_m, self.across_m].map(|[from, to]| to - from)
-    }
-
-    /// From its edge to a place in the launch's frame, m; below 0 within.
-    pub fn to_m(&self, [x, y]: [f64; 2]) -> f64 {
-        let out = |[from, to]: [f64; 2], at: f64| (from - at).max(at - to);
-        let (along, across) = (out(self.along_m, x), out(self.across_m, y));
-        if along > 0.0 && across > 0.0 { along.hypot(across) } else { along.max(across) }
-    }
+/// What holds the region and all ends and ways, body included.
+fn keep_out(drops: &[Drop], region: &Ellipse, around: &Around<'_>) -> Area {
+    let reach_m = around.reach_m;
+    let ways = flown(drops).map(|(_, outcome)| &outcome.clearances.way);
+    let ways = ways.fold(Area::POINT, |area, way| area.with_all(way, reach_m));
+    region.edge_m(180).fold(ways, |area, place_m| area.with(place_m, reach_m))
 }
 
-fn least(drops: &[Drop]) -> Least {
+fn least(drops: &[Drop], around: &Around<'_>) -> Least {
     let clearances = || flown(drops).map(|(_, outcome)| outcome.clearances);
     let least = |values: &mut dyn Iterator<Item = f64>| values.fold(f64::INFINITY, f64::min);
     Least {
@@ -241,24 +211,7 @@ fn least(drops: &[Drop]) -> Least {
         touching: clearances().filter(|c| c.walls_m < 0.0).count(),
         people_m: least(&mut clearances().map(|c| c.people_m)),
         ceiling_m: least(&mut clearances().map(|c| c.ceiling_m)),
+        at_rig: clearances().fold(Area::POINT, |area, c| area.with_all(&c.at_rig, around.reach_m)),
         behind_m: clearances().map(|c| c.behind_release_m()).fold(0.0, f64::max),
-    }
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-    use approx::assert_relative_eq;
-
-    /// By hand: beside an edge, off a corner (3, 4, 5), and within.
-    #[test]
-    fn analytic_way_to_a_keep_out_area() {
-        let keep_out = KeepOut { along_m: [-1.0, 10.0], across_m: [-2.0, 3.0] };
-        for (place_m, to_m) in
-            [([12.0, 0.0], 2.0), ([13.0, 7.0], 5.0), ([4.0, 2.0], -1.0), ([-1.5, -2.0], 0.5)]
-        {
-            assert_relative_eq!(keep_out.to_m(place_m), to_m, epsilon = 1e-12);
-        }
-        assert_eq!(keep_out.size_m(), [11.0, 5.0]);
     }
 }

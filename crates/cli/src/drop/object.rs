@@ -1,7 +1,7 @@
 //! A plan as JSON.
 
 use serde_json::{Value, json};
-use undulift_droptest::{Bands, held_by_outermost, mean_load_factor};
+use undulift_droptest::{Area, Bands, Ellipse, Rung, held_by_outermost, mean_load_factor};
 use undulift_flight::Spread;
 
 use super::Told;
@@ -18,10 +18,7 @@ pub fn object(told: &Told<'_>) -> Value {
     put("height_m", json!(told.hall.release.heights_m.last()));
     put("normal", normal(told));
     put("faults", faults(told));
-    put(
-        "keep_out",
-        json!({ "along_m": plan.keep_out.along_m, "across_m": plan.keep_out.across_m }),
-    );
+    put("keep_out", area(&plan.keep_out));
     let people_m = Some(plan.least.people_m).filter(|people_m| people_m.is_finite());
     put(
         "clearances",
@@ -29,6 +26,7 @@ pub fn object(told: &Told<'_>) -> Value {
             "walls_m": plan.least.walls_m,
             "people_m": people_m,
             "ceiling_m": plan.least.ceiling_m,
+            "at_rig": area(&plan.least.at_rig),
             "behind_release_m": plan.least.behind_m,
         }),
     );
@@ -75,20 +73,20 @@ fn bands(bands: &Bands) -> serde_json::Map<String, Value> {
 fn normal(told: &Told<'_>) -> Value {
     let sound = &told.plan.sound;
     let mut normal = bands(&sound.bands);
-    let region = &sound.region;
     normal.insert("flights".into(), json!(sound.flown));
     normal.insert("refused".into(), json!(sound.refused));
     normal.insert("turned_over".into(), json!(sound.turned_over));
     normal.insert("missed_catch".into(), json!(sound.missed_catch));
-    normal.insert(
-        "region95".into(),
-        json!({
-            "centre_m": region.centre_m,
-            "semi_axes_m": region.semi_axes_m,
-            "angle_deg": region.angle_rad.to_degrees(),
-        }),
-    );
+    normal.insert("region95".into(), ellipse(&sound.region));
     Value::Object(normal)
+}
+
+fn ellipse(region: &Ellipse) -> Value {
+    json!({
+        "centre_m": region.centre_m,
+        "semi_axes_m": region.semi_axes_m,
+        "angle_deg": region.angle_rad.to_degrees(),
+    })
 }
 
 fn faults(told: &Told<'_>) -> Value {
@@ -112,9 +110,17 @@ fn faults(told: &Told<'_>) -> Value {
     })
 }
 
-fn rung(rung: &super::Rung) -> Value {
+fn area(area: &Area) -> Value {
+    json!({ "along_m": area.along_m, "across_m": area.across_m })
+}
+
+fn rung(rung: &Rung) -> Value {
     let mut object = rung.bands.as_ref().map_or_else(serde_json::Map::new, bands);
     object.insert("height_m".into(), json!(rung.height_m));
     object.insert("flights".into(), json!(rung.drops));
+    object.insert("region95".into(), json!(rung.region.as_ref().map(ellipse)));
+    object.insert("to_film".into(), area(&rung.to_film));
+    object.insert("film_height_m".into(), json!(rung.film_height_m));
+    object.insert("mean_stop_weights".into(), json!(rung.stop_weights));
     Value::Object(object)
 }

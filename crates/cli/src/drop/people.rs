@@ -2,12 +2,12 @@
 
 use undulift_design::CatchKind;
 use undulift_droptest::{
-    Ellipse, REACTION_TIME_S, Scaled, catch_height_needed_m, drops_for_mean, drops_to_tell_apart,
-    fall_speed_m_s, held_by_outermost, mean_load_factor, most_failing_share,
+    Area, Ellipse, REACTION_TIME_S, Rung, Scaled, catch_height_needed_m, drops_for_mean,
+    drops_to_tell_apart, fall_speed_m_s, held_by_outermost, mean_load_factor, most_failing_share,
 };
 use undulift_flight::Spread;
 
-use super::{Rung, Told};
+use super::Told;
 use crate::people::line;
 
 /// The whole answer.
@@ -18,7 +18,7 @@ pub fn answer(told: &Told<'_>) -> String {
     room(told, &mut text);
     stopping(told, &mut text);
     ladder(told, &mut text);
-    numbers(told, &mut text);
+    numbers(&mut text);
     measuring(told, &mut text);
     let fits =
         if told.misfits.is_empty() { "all of it, as computed" } else { "not all; see below" };
@@ -128,11 +128,7 @@ fn faults(told: &Told<'_>, text: &mut String) {
 fn room(told: &Told<'_>, text: &mut String) {
     let (keep_out, least) = (&told.plan.keep_out, &told.plan.least);
     let [long_m, wide_m] = keep_out.size_m();
-    let area = format!(
-        "{long_m:.1} × {wide_m:.1} m: {:.1} m behind to {:.1} m ahead of the release, {:.1} m to the right \
-         to {:.1} m to the left",
-        -keep_out.along_m[0], keep_out.along_m[1], -keep_out.across_m[0], keep_out.across_m[1]
-    );
+    let area = format!("{long_m:.1} × {wide_m:.1} m: {} of the release", around_release(keep_out));
     line(text, "Keep-out area", &area);
     let people = if least.people_m.is_finite() {
         format!("people {:.1} m", least.people_m)
@@ -145,14 +141,24 @@ fn room(told: &Told<'_>, text: &mut String) {
     );
     line(text, "Least clearances", &clear);
     let rig = if least.behind_m > 0.0 {
-        format!(
-            "drops come back up to {:.1} m behind the release: nothing may stand there",
-            least.behind_m
-        )
+        format!("drops come back up to {:.1} m behind the release", least.behind_m)
     } else {
         "no drop comes back behind the release".into()
     };
-    line(text, "Rig", &rig);
+    let room = format!(
+        "{rig}; keep {} of it free, as deep as the body is long",
+        around_release(&least.at_rig)
+    );
+    line(text, "Rig", &room);
+}
+
+/// An area in words that go on with "of the release" or the like.
+fn around_release(area: &Area) -> String {
+    let Area { along_m, across_m } = area;
+    format!(
+        "{:.1} m behind to {:.1} m ahead, {:.1} m to the right to {:.1} m to the left",
+        -along_m[0], along_m[1], -across_m[0], across_m[1]
+    )
 }
 
 fn stopping(told: &Told<'_>, text: &mut String) {
@@ -200,30 +206,34 @@ fn ladder(told: &Told<'_>, text: &mut String) {
         "go higher only when drops lie within these bands (nine in ten should) and none surprises you:",
     );
     let header = format!(
-        "{:>6}{:>16}{:>16}{:>16}{:>12}",
-        "height", "distance m", "time s", "speed m/s", "tilt"
+        "{:>6}{:>16}{:>16}{:>16}{:>12}{:>9}{:>16}",
+        "height", "distance m", "time s", "speed m/s", "tilt", "weights", "to film m"
     );
     line(text, "", &header);
-    for Rung { height_m, drops, bands } in &told.rungs {
-        let Some(bands) = bands else {
+    for rung in &told.rungs {
+        let Rung { height_m, drops, .. } = rung;
+        let Some(bands) = &rung.bands else {
             line(text, "", &format!("{height_m:>6.1}  none of {drops} drops could be flown"));
             continue;
         };
         let pair = |spread: &Spread, digits: usize| {
             format!("{:.digits$} to {:.digits$}", spread.p05, spread.p95)
         };
+        let [long_m, wide_m] = rung.to_film.size_m();
+        let film = format!("{long_m:.0} × {wide_m:.0} × {:.0}", rung.film_height_m);
         let row = format!(
-            "{height_m:>6.1}{:>16}{:>16}{:>16}{:>12}",
+            "{height_m:>6.1}{:>16}{:>16}{:>16}{:>12}{:>9.0}{film:>16}",
             pair(&bands.distance_m, 1),
             pair(&bands.time_s, 2),
             pair(&bands.speed_m_s, 1),
-            format!("to {:.0}°", bands.peak_tilt_rad.p95.to_degrees())
+            format!("to {:.0}°", bands.peak_tilt_rad.p95.to_degrees()),
+            rung.stop_weights.unwrap_or_default(),
         );
         line(text, "", &row);
     }
 }
 
-fn numbers(told: &Told<'_>, text: &mut String) {
+fn numbers(text: &mut String) {
     // The statistics refuse no figure that stands here.
     let (Ok(mean), Ok(apart)) = (drops_for_mean(0.5), drops_to_tell_apart(1.0, 0.05, 0.8)) else {
         return;
@@ -239,10 +249,6 @@ fn numbers(told: &Told<'_>, text: &mut String) {
         100.0 * none
     );
     line(text, "", &failing);
-    let keep_out = told.plan.keep_out;
-    let high_m = told.rungs.last().map_or(0.0, |rung| rung.height_m + told.reach_m);
-    let [long_m, wide_m] = keep_out.size_m();
-    line(text, "To film", &format!("{long_m:.0} × {wide_m:.0} m, {high_m:.1} m high"));
 }
 
 fn measuring(told: &Told<'_>, text: &mut String) {
