@@ -1,4 +1,4 @@
-//! CSV files as named columns of finite numbers, each number with its place.
+//! CSV files as named columns of finite numbers and known words, each with its place.
 
 use std::ops::Range as Span;
 
@@ -15,11 +15,58 @@ const MOST_COLUMNS: usize = 1000;
 #[derive(Debug, Clone)]
 pub(crate) struct ColumnRule {
     pub(crate) name: String,
-    pub(crate) range: Range,
+    pub(crate) cells: Cells,
     pub(crate) needed: bool,
 }
 
-/// Named columns, one number a row.
+/// What stands in a column.
+#[derive(Debug, Clone, Copy)]
+pub(crate) enum Cells {
+    /// A number each.
+    Number(Range),
+    /// A number, or nothing, which is read as not a number.
+    NumberOrNothing(Range),
+    /// One of these words each, read as its place among them.
+    Word(&'static [&'static str]),
+}
+
+impl Cells {
+    fn remedy(self) -> &'static str {
+        match self {
+            Self::Word(_) => "write the word as it stands here, without quotes",
+            Self::Number(_) => ONE_NUMBER_EACH,
+            Self::NumberOrNothing(_) => {
+                "write a number with a point and without its unit, or nothing"
+            }
+        }
+    }
+
+    /// What a cell holds, or why it can't stand there.
+    fn read(self, field: &str) -> Result<f64, String> {
+        match self {
+            Self::NumberOrNothing(_) if field.is_empty() => Ok(f64::NAN),
+            Self::Number(range) | Self::NumberOrNothing(range) => match field.parse::<f64>() {
+                Ok(value) if range.contains(value) => Ok(value),
+                Ok(_) => Err(format!("{} is out of range: it must be {range}", shortened(field))),
+                Err(_) if field.is_empty() => Err("the number is missing here".to_owned()),
+                Err(_) => Err(format!("\"{}\" isn't a number", shortened(field))),
+            },
+            Self::Word(words) => match words.iter().position(|word| *word == field) {
+                Some(place) => Ok(place as f64),
+                None if field.is_empty() => {
+                    Err(format!("the word is missing here: one of {}", words.join(", ")))
+                }
+                None => Err(format!(
+                    "\"{}\" isn't known here: it must be one of {}",
+                    shortened(field),
+                    words.join(", ")
+                )),
+            },
+        }
+    }
+}
+
+/// Named columns, one number a row; words are numbers, too.
 #[derive(Debug)]
 pub(crate) struct Columns<'s> {
     source: &'s Source,
@@ -102,19 +149,13 @@ impl<'s> Columns<'s> {
             return;
         }
         for (column, (field, rule)) in record.iter().zip(rules).enumerate() {
-            let Some(&ColumnRule { range, .. }) = *rule else { continue };
-            match field.parse::<f64>().ok().filter(|&value| range.contains(value)) {
-                Some(value) => self.values[column].push(value),
-                None => {
+            let Some(&ColumnRule { cells, .. }) = *rule else { continue };
+            match cells.read(field) {
+                Ok(value) => self.values[column].push(value),
+                Err(why) => {
                     let span = field_span(self.source.inner(), start, column);
-                    let why = match field {
-                        "" => "the number is missing here".to_owned(),
-                        _ if field.parse::<f64>().is_err() => {
-                            format!("\"{}\" isn't a number", shortened(field))
-                        }
-                        _ => format!("{} is out of range: it must be {range}", shortened(field)),
-                    };
-                    mistakes.push(row_mistake(self.source, span, &self.names[column], why));
+                    let what = DesignError::Row { why, remedy: cells.remedy() };
+                    mistakes.push(Mistake::at(self.source, span, self.names[column].clone(), what));
                 }
             }
         }
@@ -193,8 +234,11 @@ fn check_header(
     if mistakes.is_empty() { Ok(()) } else { Err(mistakes) }
 }
 
+const ONE_NUMBER_EACH: &str =
+    "every row holds one number a column, with a point and without its unit";
+
 fn row_mistake(source: &Source, span: Span<usize>, key: &str, why: String) -> Mistake {
-    let remedy = "every row holds one number a column, with a point and without its unit";
+    let remedy = ONE_NUMBER_EACH;
     Mistake::at(source, span, key.to_owned(), DesignError::Row { why, remedy })
 }
 

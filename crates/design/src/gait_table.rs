@@ -6,7 +6,7 @@ use undulift_gait::firmware::{is_table_text, read_table};
 use undulift_gait::{GaitError, GaitTable, Interpolation};
 
 use crate::DesignError;
-use crate::columns::{ColumnRule, Columns};
+use crate::columns::{Cells, ColumnRule, Columns};
 use crate::mistake::{Mistake, Source};
 use crate::range::Range;
 
@@ -60,7 +60,11 @@ fn firmware_mistake(source: &Source, error: GaitError) -> Mistake {
 }
 
 fn rules(axes: &[String]) -> Vec<ColumnRule> {
-    let rule = |name: &str, range, needed| ColumnRule { name: name.to_owned(), range, needed };
+    let rule = |name: &str, range, needed| ColumnRule {
+        name: name.to_owned(),
+        cells: Cells::Number(range),
+        needed,
+    };
     let time = rule("time_s", Range::from_to(0.0, 1e4), true);
     let angles = axes.iter().map(|name| rule(name, Range::within(360.0), true));
     let head = ["head_heading_deg", "head_elevation_deg"]

@@ -9,7 +9,7 @@
 //! Files hold degrees and the units that their keys name; values are in SI units
 //! and radians. Tables that other commands read are left alone until they ask: [`Tuning`] is what
 //! `[search]` says, [`Design::wiring`] what `[wiring]` does. A [`Hall`] is a
-//! file of its own.
+//! file of its own, and so is what was seen of drops ([`read_seen`]).
 
 mod body;
 mod carried;
@@ -43,6 +43,7 @@ mod range;
 mod scatter;
 mod section_table;
 mod sections;
+mod seen;
 mod servo;
 mod spread;
 mod starter;
@@ -66,6 +67,7 @@ pub use moved::copy_for;
 pub use overrides::Override;
 pub use poses::{PoseRow, read_poses};
 pub use scatter::Scatter;
+pub use seen::{Ended, SeenDrop, read_seen};
 pub use spread::{Spread, Vary};
 pub use starter::starter;
 pub use surroundings::Limits;

@@ -6,7 +6,7 @@ use std::path::Path;
 
 use undulift_chain::joint_axes;
 
-use crate::columns::{ColumnRule, Columns};
+use crate::columns::{Cells, ColumnRule, Columns};
 use crate::design::unusable;
 use crate::document::source_of;
 use crate::files::read_file;
@@ -71,7 +71,7 @@ fn poses(source: &Source, design: &Design) -> Result<Vec<PoseRow>, Vec<Mistake>>
 fn rules(axes: &[String]) -> Vec<ColumnRule> {
     let rule = |name: &str, most_deg, needed| ColumnRule {
         name: name.to_owned(),
-        range: Range::within(most_deg),
+        cells: Cells::Number(Range::within(most_deg)),
         needed,
     };
     let angles = axes.iter().map(|name| rule(name, 360.0, true));

@@ -3,7 +3,7 @@
 use undulift_aero::{Polar, SectionTable};
 
 use crate::DesignError;
-use crate::columns::{ColumnRule, Columns};
+use crate::columns::{Cells, ColumnRule, Columns};
 use crate::mistake::{MOST_COLLECTED, Mistake, Source};
 use crate::range::Range;
 
@@ -20,7 +20,11 @@ pub(crate) fn build_section_table(
     source: &Source,
 ) -> Result<SectionTable, Vec<Mistake>> {
     const COEFFICIENT: Range = Range::within(100.0);
-    let rule = |name: &str, range, needed| ColumnRule { name: name.to_owned(), range, needed };
+    let rule = |name: &str, range, needed| ColumnRule {
+        name: name.to_owned(),
+        cells: Cells::Number(range),
+        needed,
+    };
     let rules = [
         rule("reynolds", Range::above_0_to(1e9), true),
         rule("alpha_deg", Range::within(90.0), true),
