@@ -8,6 +8,9 @@
 //!   uniform from −1 to 1: as much better as worse;
 //! - **servo strength**: the wave's amplitudes × 0.9 to 1;
 //! - **draught**: level wind from anywhere, uniform up to the hall's.
+//!
+//! Doubt and strength are one robot's [`Truth`], the same in all of its drops; the rest differs from
+//! drop to drop.
 
 use std::f64::consts::TAU;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -34,11 +37,46 @@ const LONGEST_S: f64 = 20.0;
 /// Absolute temperature of 0 °C, K (exact).
 const ZERO_CELSIUS_K: f64 = 273.15;
 
+/// What is the same in all drops of one robot, and isn't known beforehand.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Truth {
+    /// u of the doubt in the model, −1 (less lift, more drag) to 1.
+    pub doubt: f64,
+    /// Part of the wave's amplitudes that the servos reach.
+    pub wave: f64,
+}
+
+impl Truth {
+    /// Any of those that a plan takes to be possible, all alike.
+    pub fn draw(random: &mut impl Rng) -> Self {
+        let doubt = random.random_range(-1.0..=1.0);
+        Self { doubt, wave: random.random_range(WEAKEST_WAVE..=1.0) }
+    }
+
+    /// Real lift over computed lift.
+    pub fn lift(&self) -> f64 {
+        LIFT_DOUBT.powf(self.doubt)
+    }
+
+    /// Real drag over computed drag.
+    pub fn drag(&self) -> f64 {
+        DRAG_DOUBT.powf(self.doubt)
+    }
+
+    fn change(&self, design: &mut Design) {
+        design.glider.scales.lift *= self.lift();
+        design.glider.scales.drag *= self.drag();
+        weaken(design, self.wave);
+    }
+}
+
 /// A drop that was flown.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Drop {
     /// From 0.
     pub number: usize,
+    /// What robot and air were like.
+    pub truth: Truth,
     /// What failed; absent in a sound drop.
     pub fault: Option<FaultKind>,
     /// How it went.
@@ -132,27 +170,39 @@ impl<'h> Dropping<'h> {
         Settings { max_time_s: LONGEST_S, through_inversion: true, floor_m, ..Settings::default() }
     }
 
+    /// A sound drop of a robot that is like this, with the launch of that number.
+    pub fn fly_one(&self, truth: Truth, height_m: f64, number: usize) -> Drop {
+        let (mut design, mut random) = self.launch(height_m, number);
+        // What all truths have in common is drawn after theirs.
+        Truth::draw(&mut random);
+        self.widen(&mut design, truth, &mut random);
+        Drop { number, truth, fault: None, result: self.outcome(&design, Vec::new()) }
+    }
+
     fn one(&self, height_m: f64, number: usize, with_faults: bool, longest_s: f64) -> Drop {
-        let (mut design, _) = self.scatter.launch(&self.design, self.seed, number as u64);
-        let mut random = Xoshiro256PlusPlus::seed_from_u64(self.seed ^ 0x6472_6f70);
-        // Each drop its own stream, far from all others.
-        let own: u64 = random.random::<u64>() ^ (number as u64).wrapping_mul(0x9e37_79b9_7f4a_7c15);
-        let mut random = Xoshiro256PlusPlus::seed_from_u64(own);
-        design.glider.launch.height_m = height_m;
-        self.widen(&mut design, &mut random);
+        let (mut design, mut random) = self.launch(height_m, number);
+        let truth = Truth::draw(&mut random);
+        self.widen(&mut design, truth, &mut random);
         let fault = FaultKind::draw(&self.around.hall.faults, &mut random);
         let fault = fault.filter(|_| with_faults);
         let faults = fault.map_or_else(Vec::new, |fault| {
             fault.strike(&mut design, self.n_axes, longest_s, &mut random)
         });
-        Drop { number, fault, result: self.outcome(&design, faults) }
+        Drop { number, truth, fault, result: self.outcome(&design, faults) }
     }
 
-    fn widen(&self, design: &mut Design, random: &mut impl Rng) {
-        let doubt = random.random_range(-1.0..=1.0);
-        design.glider.scales.lift *= LIFT_DOUBT.powf(doubt);
-        design.glider.scales.drag *= DRAG_DOUBT.powf(doubt);
-        weaken(design, random.random_range(WEAKEST_WAVE..=1.0));
+    /// The design of one launch, and what the rest of its drop is drawn from.
+    fn launch(&self, height_m: f64, number: usize) -> (Design, Xoshiro256PlusPlus) {
+        let (mut design, _) = self.scatter.launch(&self.design, self.seed, number as u64);
+        let mut random = Xoshiro256PlusPlus::seed_from_u64(self.seed ^ 0x6472_6f70);
+        // Each drop its own stream, far from all others.
+        let own: u64 = random.random::<u64>() ^ (number as u64).wrapping_mul(0x9e37_79b9_7f4a_7c15);
+        design.glider.launch.height_m = height_m;
+        (design, Xoshiro256PlusPlus::seed_from_u64(own))
+    }
+
+    fn widen(&self, design: &mut Design, truth: Truth, random: &mut impl Rng) {
+        truth.change(design);
         let (sin, cos) = random.random_range(0.0..TAU).sin_cos();
         let draught_m_s = self.around.hall.draught_m_s * random.random::<f64>();
         design.glider.wind_world_m_s.x += draught_m_s * cos;
@@ -207,7 +257,8 @@ mod tests {
         let drawn: Vec<Design> = (0..2000)
             .map(|_| {
                 let mut changed = design.clone();
-                dropping.widen(&mut changed, &mut random);
+                let truth = Truth::draw(&mut random);
+                dropping.widen(&mut changed, truth, &mut random);
                 changed
             })
             .collect();

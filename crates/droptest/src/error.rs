@@ -24,6 +24,19 @@ pub enum DropError {
         /// Needed.
         needed: usize,
     },
+    /// Too few to read what was seen by.
+    #[error(
+        "only {found} of the drops flown from {height_m:.1} m stayed upright, but reading what was seen needs \
+         {needed}; fly more"
+    )]
+    TooFewToRead {
+        /// Flown, sound and upright.
+        found: usize,
+        /// Needed.
+        needed: usize,
+        /// Release height, m.
+        height_m: f64,
+    },
     /// No sound flight could be flown; this is why the first couldn't.
     #[error("no drop could be flown: {0}")]
     Flight(#[from] FlightError),

@@ -17,6 +17,7 @@ mod fault;
 mod fit;
 mod measuring;
 mod plan;
+mod reading;
 mod region;
 mod rung;
 mod sample_size;
@@ -24,7 +25,7 @@ mod tolerance;
 
 pub use area::Area;
 pub use clearances::{Around, Clearances};
-pub use drops::{DRAG_DOUBT, Drop, Dropping, LIFT_DOUBT, Outcome, WEAKEST_WAVE};
+pub use drops::{DRAG_DOUBT, Drop, Dropping, LIFT_DOUBT, Outcome, Truth, WEAKEST_WAVE};
 pub use error::DropError;
 pub use falling::{
     REACTION_TIME_S, catch_height_needed_m, fall_speed_m_s, fall_time_s, mean_load_factor,
@@ -33,6 +34,7 @@ pub use fault::FaultKind;
 pub use fit::{Misfit, ladder, misfits};
 pub use measuring::Measuring;
 pub use plan::{Bands, FaultRow, Furthest, Least, Plan, Sound};
+pub use reading::{Flown, Ladder, Narrowed, Reading, Stop};
 pub use region::{Ellipse, Scaled, normal_region_scale, region};
 pub use rung::Rung;
 pub use sample_size::{drops_for_mean, drops_to_tell_apart, most_failing_share};

@@ -153,8 +153,20 @@ impl Sound {
 impl Bands {
     /// Of sound drops; absent where there are none.
     pub fn of(outcomes: &[&Outcome]) -> Option<Self> {
-        let of =
-            |value: fn(&Outcome) -> f64| Spread::of(outcomes.iter().map(|o| value(o)).collect());
+        Self::by(|value| Spread::of(outcomes.iter().map(|outcome| value(outcome)).collect()))
+    }
+
+    /// Of drops to come, from sound ones that count differently.
+    ///
+    /// - `weights`: shape (outcomes)
+    pub fn to_come(outcomes: &[&Outcome], weights: &[f64]) -> Option<Self> {
+        Self::by(|value| {
+            let values = outcomes.iter().map(|outcome| value(outcome)).zip(weights.iter().copied());
+            Spread::to_come(&values.collect::<Vec<_>>())
+        })
+    }
+
+    fn by(of: impl Fn(fn(&Outcome) -> f64) -> Option<Spread>) -> Option<Self> {
         Some(Self {
             distance_m: of(|outcome| outcome.summary.distance_m)?,
             side_m: of(|outcome| outcome.summary.side_drift_m)?,

@@ -5,6 +5,8 @@ use rand::SeedableRng;
 use rand_distr::StandardNormal;
 use rand_xoshiro::Xoshiro256PlusPlus;
 
+use crate::weighted::percentiles;
+
 /// How one quantity differs from launch to launch.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Differs {
@@ -112,6 +114,25 @@ impl Spread {
         };
         Some(Self { p05: at(0.05), p50: at(0.5), p95: at(0.95) })
     }
+
+    /// Of values to come, from values that count differently: as far out as the share of new ones
+    /// that is meant lies beyond, not of those that are there.
+    ///
+    /// - `values`: value and weight, in any order
+    /// - returns nothing where there is no weight
+    ///
+    /// # Source
+    ///
+    /// Of n values of equal weight the one of rank q(n + 1) holds a share q of those to come, whatever
+    /// their distribution (Wilks, *Determination of sample sizes for setting tolerance limits*, Ann.
+    /// Math. Statist. 12, 1941). Here n = (Σw)²/Σw², and ranks stand in the middle of their weights.
+    pub fn to_come(values: &[(f64, f64)]) -> Option<Self> {
+        let (sum, squares) = values.iter().fold((0.0, 0.0), |(s, q), (_, w)| (s + w, q + w * w));
+        let n = sum * sum / squares;
+        let out = |share: f64| (share + (share - 0.5) / n).clamp(0.0, 1.0);
+        let [p05, p50, p95] = percentiles(values, [0.05, 0.5, 0.95].map(out))?;
+        Some(Self { p05, p50, p95 })
+    }
 }
 
 #[cfg(test)]
@@ -167,5 +188,21 @@ mod tests {
         assert_relative_eq!(spread.p50, 5.0, epsilon = 1e-15);
         assert_relative_eq!(spread.p95, 9.5, epsilon = 1e-15);
         assert_eq!(Spread::of(vec![]), None);
+    }
+
+    /// By hand: of the 19 values 1 to 19 those of rank 0.05 × 20 = 1 and 19 hold the ends, and weights
+    /// that are twice as large change nothing; of a single one nothing is known but itself.
+    #[test]
+    fn analytic_ranks_of_values_to_come() {
+        for weight in [1.0, 2.0] {
+            let values: Vec<(f64, f64)> = (1..20).map(|k| (f64::from(k), weight)).collect();
+            let Spread { p05, p50, p95 } = Spread::to_come(&values).unwrap();
+            assert_relative_eq!(p05, 1.0, epsilon = 1e-9);
+            assert_relative_eq!(p50, 10.0, epsilon = 1e-9);
+            assert_relative_eq!(p95, 19.0, epsilon = 1e-9);
+        }
+        let one = Spread { p05: 3.0, p50: 3.0, p95: 3.0 };
+        assert_eq!(Spread::to_come(&[(3.0, 0.5), (4.0, 0.0)]), Some(one));
+        assert_eq!(Spread::to_come(&[]), None);
     }
 }

@@ -1,0 +1,284 @@
+//! What was seen at the rungs so far: whether to go on, and what to see at the next.
+//!
+//! A robot's truth (how far the model is off, what its servos reach) is the same in all its drops.
+//! So drops that were seen tell which truths are likely, and every flown drop counts by the
+//! chance of what was seen, were its truth the real one. Nothing is flown anew. Whether any truth goes
+//! with what was seen at all is judged beside ladders drawn of truths that do.
+
+mod evidence;
+mod likeness;
+mod measures;
+mod stop;
+mod weights;
+
+use statrs::distribution::{Binomial, DiscreteCDF};
+use undulift_design::{Ended, SeenDrop};
+use undulift_flight::Spread;
+
+use crate::{Bands, Drop, DropError, Outcome, Truth};
+use evidence::{Counted, Evidence, grid};
+use likeness::Likeness;
+use measures::{MEASURES, of_seen, tilt_deg};
+pub use stop::Stop;
+use weights::Weights;
+
+/// Chance below which something seen is a surprise.
+const SURPRISING: f64 = 0.01;
+/// Shares of the next rung's drops that may miss the catch, and that may touch anything.
+const MOST_MISSING: f64 = 0.05;
+const MOST_TOUCHING: f64 = 0.01;
+
+/// Drops that were flown from one height.
+#[derive(Debug, Clone, Copy)]
+pub struct Flown<'d> {
+    /// m.
+    pub height_m: f64,
+    /// Sound ones and others.
+    pub drops: &'d [Drop],
+}
+
+/// What was seen comes to.
+#[derive(Debug, Clone)]
+pub struct Reading {
+    /// Reasons to stop; go on where there is none.
+    pub stops: Vec<Stop>,
+    /// Drops that were seen.
+    pub seen: usize,
+    /// The next height; absent after the last.
+    pub next_m: Option<f64>,
+    /// Heights below the highest seen of which nothing was seen, m.
+    pub skipped_m: Vec<f64>,
+    /// Share of ladders by robots that the plan allows for that go as badly with it, or worse.
+    pub surprise: f64,
+    /// Real lift over computed lift; absent where nothing could be flown.
+    pub lift: Option<Spread>,
+    /// Real drag over computed drag, likewise.
+    pub drag: Option<Spread>,
+    /// Flown drops of equal weight that would tell as much as those of the highest rung do.
+    pub effective: f64,
+    /// Power to which chances were taken, so that enough flown drops count; 1 where enough do.
+    pub power: f64,
+    /// What drops to come will be like.
+    pub rungs: Vec<Narrowed>,
+}
+
+/// What drops to come from one height will be like.
+#[derive(Debug, Clone)]
+pub struct Narrowed {
+    /// m.
+    pub height_m: f64,
+    /// Drops that were seen.
+    pub seen: usize,
+    /// Sound drops that were flown.
+    pub flown: usize,
+    /// Of the plan; absent where no sound drop could be flown.
+    pub before: Option<Bands>,
+    /// By what was seen.
+    pub now: Option<Bands>,
+    /// Share that turns over.
+    pub turned_over: f64,
+    /// Share that misses the catch.
+    pub missed_catch: f64,
+    /// Share that touches a wall or comes to where people are.
+    pub touching: f64,
+}
+
+/// A release ladder that was flown, ready for what is seen of it.
+#[derive(Debug, Clone)]
+pub struct Ladder<'d> {
+    rungs: Vec<Rung<'d>>,
+}
+
+/// Sound drops of one rung.
+#[derive(Debug, Clone)]
+struct Rung<'d> {
+    height_m: f64,
+    truths: Vec<Truth>,
+    outcomes: Vec<&'d Outcome>,
+    /// Why nothing can be read of it, where nothing can.
+    likeness: Result<Likeness, DropError>,
+}
+
+impl<'d> Rung<'d> {
+    fn of(flown: &Flown<'d>) -> Self {
+        let sound = flown.drops.iter().filter(|drop| drop.fault.is_none());
+        let (truths, outcomes): (Vec<Truth>, Vec<&Outcome>) =
+            sound.filter_map(|drop| Some((drop.truth, drop.result.as_ref().ok()?))).unzip();
+        let likeness = Likeness::of(flown.height_m, &truths, &outcomes);
+        Self { height_m: flown.height_m, truths, outcomes, likeness }
+    }
+
+    fn narrowed(&self, weights: &Weights, seen: usize) -> Narrowed {
+        let whole: f64 = weights.each.iter().sum();
+        let share = |holds: fn(&Outcome) -> bool| {
+            let holding = self.outcomes.iter().zip(&weights.each).filter(|(o, _)| holds(o));
+            holding.map(|(_, weight)| weight).sum::<f64>() / whole.max(f64::MIN_POSITIVE)
+        };
+        let touches = |o: &Outcome| o.clearances.walls_m < 0.0 || o.clearances.people_m < 0.0;
+        Narrowed {
+            height_m: self.height_m,
+            seen,
+            flown: self.outcomes.len(),
+            before: Bands::of(&self.outcomes),
+            now: Bands::to_come(&self.outcomes, &weights.each),
+            turned_over: share(|outcome| outcome.summary.inverted),
+            missed_catch: share(|outcome| !outcome.caught),
+            touching: share(touches),
+        }
+    }
+}
+
+impl<'d> Ladder<'d> {
+    /// - `flown`: drops from every height, from low to high
+    pub fn of(flown: &[Flown<'d>]) -> Self {
+        Self { rungs: flown.iter().map(Rung::of).collect() }
+    }
+
+    /// What was seen comes to.
+    ///
+    /// - `seed`: of the ladders that are drawn to compare with
+    ///
+    /// # Errors
+    ///
+    /// [`DropError::TooFewToRead`] where too few drops from a height that was seen were flown.
+    pub fn read(&self, seen: &[SeenDrop], seed: u64) -> Result<Reading, DropError> {
+        // What went wrong tells of no truth.
+        let counted: Vec<Counted> = seen
+            .iter()
+            .filter(|drop| drop.ended == Ended::Landed)
+            .map(|drop| (drop.rung_idx, of_seen(drop)))
+            .collect();
+        for (rung_idx, _) in &counted {
+            self.rungs[*rung_idx].likeness.as_ref().map_err(Clone::clone)?;
+        }
+        let likenesses: Vec<Option<&Likeness>> =
+            self.rungs.iter().map(|rung| rung.likeness.as_ref().ok()).collect();
+        let weights: Vec<Weights> = self
+            .rungs
+            .iter()
+            .map(|rung| Weights::of(&rung.truths, &likenesses, &counted))
+            .collect();
+        let of_rung = |rung_idx: usize| seen.iter().filter(move |drop| drop.rung_idx == rung_idx);
+        let both = self.rungs.iter().zip(&weights).enumerate();
+        let narrowed: Vec<Narrowed> = both
+            .map(|(idx, (rung, weights))| rung.narrowed(weights, of_rung(idx).count()))
+            .collect();
+        let surprise = Evidence::new(&likenesses, &counted).surprise(seed);
+        let highest_idx = seen.iter().map(|drop| drop.rung_idx).max().unwrap_or(0);
+        let next = narrowed.get(highest_idx + 1);
+        let surprising = (surprise < SURPRISING).then(|| self.furthest_off(surprise, &counted));
+        let mut stops: Vec<Stop> = surprising.flatten().into_iter().collect();
+        for (rung_idx, now) in narrowed.iter().enumerate() {
+            stops.extend(badly_ended(&of_rung(rung_idx).collect::<Vec<_>>(), now));
+        }
+        stops.extend(next.into_iter().flat_map(ahead));
+        let skipped = narrowed[..highest_idx].iter().filter(|rung| rung.seen == 0);
+        let top = self.rungs.last().zip(weights.last());
+        let of_truth = |value: fn(&Truth) -> f64| {
+            let (rung, weights) = top?;
+            let values = rung.truths.iter().map(value).zip(weights.each.iter().copied());
+            Spread::to_come(&values.collect::<Vec<_>>())
+        };
+        Ok(Reading {
+            stops,
+            seen: seen.len(),
+            next_m: next.map(|rung| rung.height_m),
+            skipped_m: skipped.map(|rung| rung.height_m).collect(),
+            surprise,
+            lift: of_truth(Truth::lift),
+            drag: of_truth(Truth::drag),
+            effective: top.map_or(0.0, |(_, weights)| weights.effective),
+            power: top.map_or(1.0, |(_, weights)| weights.power),
+            rungs: narrowed,
+        })
+    }
+
+    /// The measure that goes worst with every truth.
+    fn furthest_off(&self, surprise: f64, counted: &[Counted]) -> Option<Stop> {
+        let truths = grid();
+        let mut worst: Option<(f64, Stop)> = None;
+        for (rung_idx, rung) in self.rungs.iter().enumerate() {
+            let Ok(likeness) = &rung.likeness else { continue };
+            for measure in 0..MEASURES {
+                let of_rung = counted.iter().filter(|(idx, _)| *idx == rung_idx);
+                let values = of_rung.map(|(_, m)| m[measure]).filter(|value| !value.is_nan());
+                let values: Vec<f64> = values.collect();
+                if values.is_empty() {
+                    continue;
+                }
+                let off = |truth: &Truth| likeness.off(*truth, measure, &values);
+                let least = truths.iter().map(off).fold(f64::INFINITY, f64::min);
+                if worst.as_ref().is_none_or(|(most, _)| least > *most) {
+                    worst = rung.surprising(surprise, measure, &values).map(|stop| (least, stop));
+                }
+            }
+        }
+        worst.map(|(_, stop)| stop)
+    }
+}
+
+impl Rung<'_> {
+    fn surprising(&self, surprise: f64, measure: usize, values: &[f64]) -> Option<Stop> {
+        let bands = Bands::of(&self.outcomes)?;
+        let mean = values.iter().sum::<f64>() / values.len() as f64;
+        let tilt = bands.peak_tilt_rad;
+        let (what, unit, [low, high], mean) = match measure {
+            0 => ("distance", "m", [bands.distance_m.p05, bands.distance_m.p95], mean),
+            1 => ("side", "m", [bands.side_m.p05, bands.side_m.p95], mean),
+            2 => ("time", "s", [bands.time_s.p05, bands.time_s.p95], mean),
+            _ => ("largest tilt", "°", [tilt.p05, tilt.p95].map(f64::to_degrees), tilt_deg(mean)),
+        };
+        let (per_mille, height_m, drops) = (1000.0 * surprise, self.height_m, values.len());
+        Some(Stop::Surprise { per_mille, what, unit, height_m, drops, mean, low, high })
+    }
+}
+
+/// Drops that ended otherwise than they were meant to.
+fn badly_ended(seen: &[&SeenDrop], now: &Narrowed) -> Vec<Stop> {
+    let (of, height_m) = (seen.len(), now.height_m);
+    let ended = |how: Ended| seen.iter().filter(|drop| drop.ended == how).count();
+    let mut stops = Vec::new();
+    if let drops @ 1.. = ended(Ended::Touched) {
+        stops.push(Stop::Touched { drops, of, height_m });
+    }
+    if let drops @ 1.. = ended(Ended::Failed) {
+        stops.push(Stop::Failed { drops, of, height_m });
+    }
+    // One of those that were flown more than there was, so that no share is 0.
+    let share = |share: f64| {
+        let flown = now.flown as f64;
+        (share * flown + 1.0) / (flown + 1.0)
+    };
+    let (inverted, missed) = (ended(Ended::Inverted), ended(Ended::MissedCatch));
+    if is_surprising(inverted, of, share(now.turned_over)) {
+        let expected = 100.0 * now.turned_over;
+        stops.push(Stop::TurnedOver { drops: inverted, of, height_m, expected });
+    }
+    if is_surprising(missed, of, share(now.missed_catch)) {
+        let expected = 100.0 * now.missed_catch;
+        stops.push(Stop::MissedCatch { drops: missed, of, height_m, expected });
+    }
+    stops
+}
+
+/// Whether so many of all are too many for a share.
+fn is_surprising(drops: usize, of: usize, share: f64) -> bool {
+    let as_many = Binomial::new(share.clamp(0.0, 1.0), of as u64)
+        .map_or(1.0, |binomial| drops.checked_sub(1).map_or(1.0, |k| binomial.sf(k as u64)));
+    as_many < SURPRISING
+}
+
+/// What the next rung must not bring.
+fn ahead(next: &Narrowed) -> Vec<Stop> {
+    let Narrowed { height_m, touching, missed_catch, .. } = *next;
+    let mut stops = Vec::new();
+    if touching > MOST_TOUCHING {
+        let (share, most) = (100.0 * touching, 100.0 * MOST_TOUCHING);
+        stops.push(Stop::NextTouches { height_m, share, most });
+    }
+    if missed_catch > MOST_MISSING {
+        let (share, most) = (100.0 * missed_catch, 100.0 * MOST_MISSING);
+        stops.push(Stop::NextMisses { height_m, share, most });
+    }
+    stops
+}

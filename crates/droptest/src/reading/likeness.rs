@@ -1,0 +1,194 @@
+//! What drops from one height measure, as a function of what the robot is like.
+//!
+//! Of the sound drops that stayed upright: polynomials give the mean and, from what is left over, the
+//! scatter of each measure; how measures vary together is the same for all truths.
+
+use nalgebra::{DMatrix, DVector, Matrix4, SVector, Vector4};
+
+use rand::Rng;
+
+use super::measures::{MEASURED_TO, MEASURES, Measures, of_outcome};
+use crate::{DropError, Outcome, Truth};
+
+/// Terms of a mean: up to the cube of the doubt, the square of the wave, and both together.
+const TERMS: usize = 7;
+/// Terms of a logarithm of scatter: up to the square of the doubt.
+const SCATTER_TERMS: usize = 3;
+/// Least number of drops that they are found from.
+pub const FEWEST: usize = 40;
+/// Mean of the logarithm of a squared standard normal number: −γ − ln 2.
+const MEAN_LOG_SQUARE: f64 = -1.270_362_845;
+/// Degrees of freedom of Student's t: tails as long as drops have that went a little wrong.
+const TAILS: f64 = 5.0;
+
+/// Drops from one height.
+#[derive(Debug, Clone)]
+pub struct Likeness {
+    means: [SVector<f64, TERMS>; MEASURES],
+    /// Of the logarithms of the scatters.
+    scatters: [SVector<f64, SCATTER_TERMS>; MEASURES],
+    /// Of what is left over, by the scatter.
+    together: Matrix4<f64>,
+    /// What is left over of every drop, by the scatter.
+    left: Vec<Vector4<f64>>,
+}
+
+impl Likeness {
+    /// Of sound drops from one height.
+    ///
+    /// # Errors
+    ///
+    /// [`DropError::TooFewToRead`] where too few of them stayed upright.
+    pub fn of(height_m: f64, truths: &[Truth], outcomes: &[&Outcome]) -> Result<Self, DropError> {
+        let all = truths.iter().zip(outcomes);
+        let upright: Vec<(Truth, Measures)> = all
+            .filter(|(_, outcome)| !outcome.summary.inverted)
+            .map(|(truth, outcome)| (*truth, of_outcome(outcome)))
+            .collect();
+        if upright.len() < FEWEST {
+            return Err(DropError::TooFewToRead { found: upright.len(), needed: FEWEST, height_m });
+        }
+        let rows = [0, 1, 2, 3].map(|measure| Measured::of(&upright, measure));
+        let left: Vec<Vector4<f64>> = (0..upright.len())
+            .map(|drop| Vector4::from_fn(|measure, _| rows[measure].left[drop]))
+            .collect();
+        let squares: Matrix4<f64> = left.iter().map(|left| left * left.transpose()).sum();
+        let together = squares / upright.len() as f64;
+        let (means, scatters) =
+            (rows.each_ref().map(|r| r.mean), rows.each_ref().map(|r| r.scatter));
+        Ok(Self { means, scatters, together, left })
+    }
+
+    /// What a drop measures on average.
+    pub fn mean(&self, truth: Truth) -> Vector4<f64> {
+        let terms = terms(truth);
+        Vector4::from_fn(|measure, _| self.means[measure].dot(&terms))
+    }
+
+    /// A drop drawn from those that were flown, as a robot like this would have done it.
+    pub fn drawn(&self, truth: Truth, random: &mut impl Rng) -> Vector4<f64> {
+        let left = self.left[random.random_range(0..self.left.len())];
+        self.mean(truth) + self.scatter(truth).component_mul(&left)
+    }
+
+    fn scatter(&self, truth: Truth) -> Vector4<f64> {
+        let terms = scatter_terms(truth);
+        Vector4::from_fn(|measure, _| self.scatters[measure].dot(&terms).exp())
+    }
+
+    /// How far the mean of some values is off that of a truth, by its own scatter.
+    pub fn off(&self, truth: Truth, measure: usize, values: &[f64]) -> f64 {
+        let n = values.len() as f64;
+        let off = values.iter().sum::<f64>() / n - self.mean(truth)[measure];
+        let scatter = self.scatter(truth)[measure].hypot(MEASURED_TO[measure]);
+        off.abs() * n.sqrt() / scatter
+    }
+
+    /// For drops of a robot like this of which those things were measured.
+    pub fn chances(&self, truth: Truth, measured: [bool; MEASURES]) -> Chances {
+        let scatter = Matrix4::from_diagonal(&self.scatter(truth));
+        let errors = Vector4::from(MEASURED_TO).map(|to| to * to);
+        let all = scatter * self.together * scatter + Matrix4::from_diagonal(&errors);
+        // What wasn't measured has nothing to do with the rest, and a scatter of 1.
+        let own = Matrix4::from_fn(|a, b| match (measured[a] && measured[b], a == b) {
+            (true, _) => all[(a, b)],
+            (false, same) => f64::from(u8::from(same)),
+        });
+        let cholesky = own.cholesky().expect("errors of measuring make it positive definite");
+        let log_root = cholesky.l().diagonal().map(f64::ln).sum();
+        Chances {
+            mean: self.mean(truth),
+            inverse: cholesky.inverse(),
+            log_root,
+            measured: measured.iter().filter(|&&measured| measured).count() as f64,
+        }
+    }
+}
+
+/// One measure of all drops.
+struct Measured {
+    mean: SVector<f64, TERMS>,
+    scatter: SVector<f64, SCATTER_TERMS>,
+    /// Shape (drops).
+    left: Vec<f64>,
+}
+
+impl Measured {
+    fn of(upright: &[(Truth, Measures)], measure: usize) -> Self {
+        let truths = rows(upright, terms);
+        let doubts = rows(upright, scatter_terms);
+        let seen = DVector::from_iterator(upright.len(), upright.iter().map(|(_, m)| m[measure]));
+        let mean: SVector<f64, TERMS> = fitted(&truths, &seen);
+        let off = seen - &truths * mean;
+        // A tenth of what can be measured is no scatter: it keeps the logarithm above −∞.
+        let least = 0.1 * MEASURED_TO[measure];
+        let log = off.map(|off| 0.5 * ((off * off + least * least).ln() - MEAN_LOG_SQUARE));
+        let scatter: SVector<f64, SCATTER_TERMS> = fitted(&doubts, &log);
+        let scatters = (doubts * scatter).map(f64::exp);
+        let left = off.component_div(&scatters).iter().copied().collect();
+        Self { mean, scatter, left }
+    }
+}
+
+/// How likely measures are of one truth.
+#[derive(Debug, Clone)]
+pub struct Chances {
+    mean: Vector4<f64>,
+    inverse: Matrix4<f64>,
+    log_root: f64,
+    measured: f64,
+}
+
+impl Chances {
+    /// Square of the distance of the mean of some drops, by its own scatter.
+    pub fn apart(&self, mean: &Measures, drops: f64) -> f64 {
+        drops * self.square(mean)
+    }
+
+    /// Logarithm of the density, but for a constant: Student's t in as many directions as were
+    /// measured.
+    ///
+    /// - `measures`: not a number where nothing was measured
+    pub fn log(&self, measures: &Measures) -> f64 {
+        let apart = self.square(measures);
+        -0.5 * (TAILS + self.measured) * (apart / TAILS).ln_1p() - self.log_root
+    }
+
+    fn square(&self, measures: &Measures) -> f64 {
+        let off = |k: usize| measures[k] - self.mean[k];
+        let off = Vector4::from_fn(|k, _| if measures[k].is_nan() { 0.0 } else { off(k) });
+        off.dot(&(self.inverse * off))
+    }
+}
+
+/// The wave from −1 to 1, as the doubt is.
+fn evened(truth: Truth) -> f64 {
+    let middle = 0.5 * (1.0 + crate::WEAKEST_WAVE);
+    (truth.wave - middle) / (1.0 - middle)
+}
+
+fn terms(truth: Truth) -> SVector<f64, TERMS> {
+    let (u, w) = (truth.doubt, evened(truth));
+    SVector::from([1.0, u, u * u, u * u * u, w, w * w, u * w])
+}
+
+fn scatter_terms(truth: Truth) -> SVector<f64, SCATTER_TERMS> {
+    let u = truth.doubt;
+    SVector::from([1.0, u, u * u])
+}
+
+/// Shape (drops, terms).
+fn rows<const N: usize>(
+    upright: &[(Truth, Measures)],
+    terms: impl Fn(Truth) -> SVector<f64, N>,
+) -> DMatrix<f64> {
+    let all: Vec<SVector<f64, N>> = upright.iter().map(|&(truth, _)| terms(truth)).collect();
+    DMatrix::from_fn(all.len(), N, |row, column| all[row][column])
+}
+
+/// Least squares.
+fn fitted<const N: usize>(rows: &DMatrix<f64>, seen: &DVector<f64>) -> SVector<f64, N> {
+    let found = rows.clone().svd(true, true).solve(seen, 1e-12);
+    let found = found.expect("singular vectors were asked for");
+    SVector::from_fn(|term, _| found[term])
+}
