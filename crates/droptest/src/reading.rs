@@ -16,9 +16,9 @@ use undulift_design::{Ended, SeenDrop};
 use undulift_flight::Spread;
 
 use crate::{Bands, Drop, DropError, Outcome, Truth};
-use evidence::{Counted, Evidence, grid};
+use evidence::{Evidence, grid};
 use likeness::Likeness;
-use measures::{MEASURES, of_seen, tilt_deg};
+use measures::{Counted, MEASURES, of_seen, tilt_deg};
 pub use stop::Stop;
 use weights::Weights;
 
@@ -281,4 +281,20 @@ fn ahead(next: &Narrowed) -> Vec<Stop> {
         stops.push(Stop::NextMisses { height_m, share, most });
     }
     stops
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// By hand, 1 − 0.99⁵ = 4.9 % for one of five at 1 %, 10·0.01² = 0.1 % for two of them; none of any
+    /// surprises nobody.
+    #[test]
+    fn analytic_too_many_of_five() {
+        assert!(!is_surprising(1, 5, 0.01));
+        assert!(is_surprising(2, 5, 0.01));
+        assert!(is_surprising(1, 5, 0.001));
+        assert!(!is_surprising(0, 5, 0.0));
+        assert!(!is_surprising(5, 5, 1.0));
+    }
 }

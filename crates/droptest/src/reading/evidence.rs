@@ -6,7 +6,7 @@ use rand_xoshiro::Xoshiro256PlusPlus;
 use rayon::prelude::*;
 
 use super::likeness::{Chances, Likeness};
-use super::measures::{MEASURED_TO, MEASURES, Measures};
+use super::measures::{Counted, Kinds, MEASURED_TO, MEASURES, Measures};
 use crate::{Truth, WEAKEST_WAVE};
 
 /// Truths that stand for all: over the doubt and over the wave.
@@ -16,35 +16,25 @@ const WAVES: usize = 3;
 /// Ladders that are drawn to compare with.
 const DRAWN: usize = 999;
 
-/// A drop that counts: its rung and what was measured, not a number where nothing was.
-pub type Counted = (usize, Measures);
-
 /// What was seen, with the chances of each drop for many truths.
 pub struct Evidence<'a> {
     likenesses: &'a [Option<&'a Likeness>],
     seen: &'a [Counted],
-    /// Shape (kinds of drops, truths): a kind is a rung and what was measured.
+    kinds: Kinds,
+    /// Shape (kinds, truths).
     chances: Vec<Vec<Chances>>,
-    /// Of each drop.
-    kinds: Vec<usize>,
 }
 
 impl<'a> Evidence<'a> {
     /// - `likenesses`: of every rung; those that something was seen of must be there
     pub fn new(likenesses: &'a [Option<&'a Likeness>], seen: &'a [Counted]) -> Self {
-        let grid = grid();
-        let (mut known, mut chances, mut kinds) = (Vec::new(), Vec::new(), Vec::new());
-        for &(rung_idx, measures) in seen {
-            let kind = (rung_idx, measures.map(|value| !value.is_nan()));
-            let place = known.iter().position(|own| *own == kind).unwrap_or_else(|| {
-                let of = |&truth: &Truth| likeness(likenesses, rung_idx).chances(truth, kind.1);
-                chances.push(grid.iter().map(of).collect());
-                known.push(kind);
-                known.len() - 1
-            });
-            kinds.push(place);
-        }
-        Self { likenesses, seen, chances, kinds }
+        let (grid, kinds) = (grid(), Kinds::among(seen));
+        let of_kind = |&(rung_idx, measured): &(usize, [bool; MEASURES])| {
+            let of = likeness(likenesses, rung_idx);
+            grid.iter().map(|&truth| of.chances(truth, measured)).collect()
+        };
+        let chances = kinds.known.iter().map(of_kind).collect();
+        Self { likenesses, seen, kinds, chances }
     }
 
     /// Chance that a robot of a truth that the plan allows for gives drops that go as badly with all of
@@ -74,7 +64,7 @@ impl<'a> Evidence<'a> {
     /// How far the means of all kinds are off, by their scatter, with the truth that goes best.
     fn by_means(&self, measures: &[Measures]) -> f64 {
         let mut sums = vec![([0.0; MEASURES], 0.0); self.chances.len()];
-        for (measures, &kind) in measures.iter().zip(&self.kinds) {
+        for (measures, &kind) in measures.iter().zip(&self.kinds.of) {
             let (sum, drops) = &mut sums[kind];
             (0..MEASURES).for_each(|k| sum[k] += measures[k]);
             *drops += 1.0;
@@ -92,7 +82,7 @@ impl<'a> Evidence<'a> {
     /// a constant.
     fn by_each(&self, measures: &[Measures]) -> f64 {
         let mut logs = vec![0.0; DOUBTS * WAVES];
-        for (measures, &kind) in measures.iter().zip(&self.kinds) {
+        for (measures, &kind) in measures.iter().zip(&self.kinds.of) {
             for (log, chances) in logs.iter_mut().zip(&self.chances[kind]) {
                 *log += chances.log(measures);
             }

@@ -192,3 +192,62 @@ fn fitted<const N: usize>(rows: &DMatrix<f64>, seen: &DVector<f64>) -> SVector<f
     let found = found.expect("singular vectors were asked for");
     SVector::from_fn(|term, _| found[term])
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+    use statrs::distribution::{Continuous, StudentsT};
+
+    const TRUTH: Truth = Truth { doubt: 0.4, wave: 0.93 };
+
+    fn likeness() -> Likeness {
+        let first = |value: f64| SVector::from_fn(|term, _| if term < 2 { value } else { 0.0 });
+        Likeness {
+            means: [first(4.0), first(0.1), first(0.8), first(3.0)],
+            scatters: [-1.0, -2.0, -3.0, -1.5].map(|log: f64| SVector::from([log, 0.3, 0.0])),
+            together: Matrix4::from_fn(|a, b| if a == b { 1.0 } else { 0.4 }),
+            left: vec![Vector4::repeat(0.5)],
+        }
+    }
+
+    /// Of one measure alone: Student's t of statrs, but for a constant.
+    #[test]
+    fn twin_one_measure_is_students_t() {
+        let chances = likeness().chances(TRUTH, [true, false, false, false]);
+        let scatter = (-1.0 + 0.3 * 0.4_f64).exp().hypot(MEASURED_TO[0]);
+        let known = StudentsT::new(4.0 * 1.4, scatter, TAILS).unwrap();
+        let log = |distance_m: f64| chances.log(&[distance_m, f64::NAN, f64::NAN, f64::NAN]);
+        for distance_m in [1.0, 5.0, 5.6, 9.0] {
+            let apart = known.ln_pdf(distance_m) - known.ln_pdf(5.6);
+            assert_relative_eq!(log(distance_m) - log(5.6), apart, epsilon = 1e-12);
+        }
+        // The same in the peak, whose height hangs on the scatter, at another truth.
+        let other = Truth { doubt: -0.6, ..TRUTH };
+        let at = |truth| likeness().chances(truth, [true, false, false, false]);
+        let peak = |truth: Truth| {
+            let mean = likeness().mean(truth)[0];
+            at(truth).log(&[mean, f64::NAN, f64::NAN, f64::NAN])
+        };
+        let scatter = (-1.0 - 0.3 * 0.6_f64).exp().hypot(MEASURED_TO[0]);
+        let other_known = StudentsT::new(0.0, scatter, TAILS).unwrap();
+        let apart = other_known.ln_pdf(0.0) - known.ln_pdf(5.6);
+        assert_relative_eq!(peak(other) - peak(TRUTH), apart, epsilon = 1e-12);
+    }
+
+    /// With all measured, one along the mean of the others' covariance is less far off than one
+    /// against it; without errors of measuring, the square is that of the inverse by hand:
+    /// (1 − ρ²)⁻¹·(a² − 2ρab + b²) for two.
+    #[test]
+    fn analytic_two_measures_together() {
+        let chances = likeness().chances(TRUTH, [true, true, false, false]);
+        let [a_m, b_m] = [-1.0, -2.0].map(|log: f64| (log + 0.12_f64).exp());
+        let (a_all, b_all) = (a_m.hypot(0.05), b_m.hypot(0.05));
+        let rho = 0.4 * a_m * b_m / (a_all * b_all);
+        for (a, b) in [(1.0, 1.0), (1.0, -1.0), (2.0, 0.5)] {
+            let measures = [5.6 + a * a_all, 0.14 + b * b_all, f64::NAN, f64::NAN];
+            let by_hand = (a * a - 2.0 * rho * a * b + b * b) / (1.0 - rho * rho);
+            assert_relative_eq!(chances.apart(&measures, 3.0), 3.0 * by_hand, epsilon = 1e-9);
+        }
+    }
+}

@@ -10,6 +10,33 @@ pub const MEASURES: usize = 4;
 /// Distance, m; side, m; time, s; the logarithm of the largest tilt.
 pub type Measures = [f64; MEASURES];
 
+/// A drop that counts: its rung and what was measured, not a number where nothing was.
+pub type Counted = (usize, Measures);
+
+/// Drops of one kind are of the same rung, and the same was measured of them.
+pub struct Kinds {
+    /// Rungs and what was measured.
+    pub known: Vec<(usize, [bool; MEASURES])>,
+    /// Of each drop, its place among those.
+    pub of: Vec<usize>,
+}
+
+impl Kinds {
+    /// Of what was seen.
+    pub fn among(seen: &[Counted]) -> Self {
+        let mut kinds = Self { known: Vec::new(), of: Vec::new() };
+        for (rung_idx, measures) in seen {
+            let kind = (*rung_idx, measures.map(|value| !value.is_nan()));
+            let place = kinds.known.iter().position(|own| *own == kind);
+            if place.is_none() {
+                kinds.known.push(kind);
+            }
+            kinds.of.push(place.unwrap_or(kinds.known.len() - 1));
+        }
+        kinds
+    }
+}
+
 /// How well they are measured in a hall: 5 cm, 5 cm, 0.02 s and a tenth of the tilt. Our assumption, for
 /// a tape on the floor and a camera of 50 frames a second.
 pub const MEASURED_TO: Measures = [0.05, 0.05, 0.02, 0.1];

@@ -1,7 +1,10 @@
 //! How much each flown drop still counts after what was seen.
 
-use super::evidence::{Counted, likeness};
-use super::likeness::{Chances, Likeness};
+use rayon::prelude::*;
+
+use super::evidence::likeness;
+use super::likeness::Likeness;
+use super::measures::{Counted, Kinds, MEASURES};
 use crate::Truth;
 
 /// As many drops of equal weight must be left, or half of what there are.
@@ -27,22 +30,24 @@ impl Weights {
     /// Where that leaves few drops, the chances are taken to a power below 1, so that enough are left:
     /// bands are wider then than they could be.
     pub fn of(truths: &[Truth], likenesses: &[Option<&Likeness>], seen: &[Counted]) -> Self {
-        let logs: Vec<f64> = truths.iter().map(|&truth| log_of(truth, likenesses, seen)).collect();
-        let enough = LEFT.min(0.5 * truths.len() as f64);
-        let full = Self::to_power(&logs, 1.0);
+        let kinds = Kinds::among(seen);
+        let logs: Vec<f64> =
+            truths.par_iter().map(|&truth| log_of(truth, likenesses, seen, &kinds)).collect();
+        Self::leaving_enough(&logs)
+    }
+
+    fn leaving_enough(logs: &[f64]) -> Self {
+        let enough = LEFT.min(0.5 * logs.len() as f64);
+        let full = Self::to_power(logs, 1.0);
         if full.effective >= enough {
             return full;
         }
         let (mut low, mut high) = (0.0, 1.0);
         for _ in 0..HALVINGS {
             let power = 0.5 * (low + high);
-            if Self::to_power(&logs, power).effective >= enough {
-                low = power
-            } else {
-                high = power
-            }
+            if Self::to_power(logs, power).effective >= enough { low = power } else { high = power }
         }
-        Self::to_power(&logs, low)
+        Self::to_power(logs, low)
     }
 
     fn to_power(logs: &[f64], power: f64) -> Self {
@@ -54,15 +59,42 @@ impl Weights {
     }
 }
 
-fn log_of(truth: Truth, likenesses: &[Option<&Likeness>], seen: &[Counted]) -> f64 {
-    let mut known: Vec<((usize, [bool; 4]), Chances)> = Vec::new();
-    let of = |&(rung_idx, measures): &Counted| {
-        let kind = (rung_idx, measures.map(|value| !value.is_nan()));
-        let place = known.iter().position(|(own, _)| *own == kind).unwrap_or_else(|| {
-            known.push((kind, likeness(likenesses, rung_idx).chances(truth, kind.1)));
-            known.len() - 1
-        });
-        known[place].1.log(&measures)
+fn log_of(truth: Truth, likenesses: &[Option<&Likeness>], seen: &[Counted], kinds: &Kinds) -> f64 {
+    let of_kind = |(place, &(rung_idx, measured)): (usize, &(usize, [bool; MEASURES]))| {
+        let chances = likeness(likenesses, rung_idx).chances(truth, measured);
+        let of = seen.iter().zip(&kinds.of).filter(|(_, kind)| **kind == place);
+        of.map(|((_, measures), _)| chances.log(measures)).sum::<f64>()
     };
-    seen.iter().map(of).sum()
+    kinds.known.iter().enumerate().map(of_kind).sum()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+
+    /// By hand: weights 1, ½ and ½ tell as much as 2²/(1 + ¼ + ¼) = 2.667 alike; to the power 0 all
+    /// count alike.
+    #[test]
+    fn analytic_effective_drops() {
+        let logs = [-3.0, -3.0 - 2.0_f64.ln(), -3.0 - 2.0_f64.ln()];
+        let full = Weights::to_power(&logs, 1.0);
+        assert_relative_eq!(full.effective, 8.0 / 3.0, epsilon = 1e-12);
+        assert_relative_eq!(full.each[1], 0.5, epsilon = 1e-12);
+        assert_relative_eq!(Weights::to_power(&logs, 0.0).effective, 3.0);
+    }
+
+    /// 1000 drops of which one alone is likely: chances are flattened until 100 are left.
+    #[test]
+    fn analytic_enough_drops_are_left() {
+        let logs: Vec<f64> = (0..1000).map(|k| -0.5 * f64::from(k * k)).collect();
+        let weights = Weights::leaving_enough(&logs);
+        assert_relative_eq!(weights.effective, 100.0, max_relative = 1e-6);
+        assert!(weights.power < 0.01, "{}", weights.power);
+        // Half a normal distribution of this scatter tells as much as √π times it.
+        let scatter = weights.power.sqrt().recip();
+        assert_relative_eq!(std::f64::consts::PI.sqrt() * scatter, 100.0, max_relative = 0.02);
+        let even = Weights::leaving_enough(&[-7.0; 30]);
+        assert_eq!((even.effective, even.power), (30.0, 1.0));
+    }
 }
