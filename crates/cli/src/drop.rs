@@ -3,13 +3,16 @@
 mod object;
 mod people;
 mod rows;
+mod seen;
 
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
 use anyhow::Context;
-use undulift_design::{Design, DesignErrors, Hall};
-use undulift_droptest::{Drop, Dropping, Measuring, Misfit, Plan, Rung, misfits};
+use undulift_design::{Design, DesignErrors, Hall, SeenDrop, read_seen};
+use undulift_droptest::{
+    Drop, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung, misfits,
+};
 
 use crate::args;
 use crate::tune::watch_for_ctrl_c;
@@ -17,6 +20,9 @@ use crate::{Outcome, json, many, terminal};
 
 /// Drops from each lower rung of the ladder, at most.
 const DROPS_A_RUNG: usize = 200;
+
+/// And at most, where what was seen is read by them.
+const DROPS_READ_BY: usize = 20_000;
 
 /// Faults whose outermost holds 95 % of all, at 95 % confidence.
 const FAULTS_WANTED: usize = 59;
@@ -30,20 +36,22 @@ const CAUTIONS: &str = "a plan is no permission: local rules, the hall's owner a
 /// All that is told of a plan.
 pub struct Told<'a> {
     args: &'a args::Drop,
-    design: Design,
+    design: &'a Design,
     hall: &'a Hall,
     plan: Plan,
     rungs: Vec<Rung>,
     misfits: Vec<Misfit>,
     measuring: Measuring,
+    /// Of what was seen, where anything was.
+    reading: Option<Reading>,
     /// Whether all drops that were asked for were flown.
     complete: bool,
     reach_m: f64,
 }
 
 pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
-    let (design, hall) = match read(args) {
-        Ok(read) => read,
+    let asked = match Asked::read(args) {
+        Ok(asked) => asked,
         Err(refused) => {
             refused.iter().for_each(|errors| terminal::tell_diagnostic(errors));
             return Ok(Outcome::CouldNotRun);
@@ -51,57 +59,107 @@ pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
     };
     let stopped = Arc::new(AtomicBool::new(false));
     watch_for_ctrl_c(&stopped)?;
-    let (told, drops) = plan(args, design, &hall, &stopped)?;
-    if let Some(path) = &args.csv {
-        rows::write(path, &drops)?;
+    let dropping = Dropping::new(&asked.design, &asked.hall, args.seed);
+    let threads = many::threads(args.threads.map_or(0, usize::from))?;
+    let ladder = threads.install(|| fly(args, &asked, &dropping, &stopped));
+    let complete = !stopped.load(Ordering::Relaxed);
+    if let (Some(path), Some(drops)) = (&args.csv, ladder.last()) {
+        rows::write(path, drops, complete)?;
     }
+    let told = threads.install(|| told(args, &asked, &dropping, &ladder, complete))?;
     tell(&told)
 }
 
-/// Design and hall, or the mistakes of both.
-fn read(args: &args::Drop) -> Result<(Design, Hall), Vec<DesignErrors>> {
-    match (undulift_design::read(&args.design, &args.sets), Hall::read(&args.hall)) {
-        (Ok(design), Ok(hall)) => Ok((design, hall)),
-        (design, hall) => Err(design.err().into_iter().chain(hall.err()).collect()),
+/// What the files say.
+struct Asked {
+    design: Design,
+    hall: Hall,
+    seen: Option<Vec<SeenDrop>>,
+}
+
+impl Asked {
+    /// All that was asked for, or the mistakes of all files.
+    fn read(args: &args::Drop) -> Result<Self, Vec<DesignErrors>> {
+        let hall = Hall::read(&args.hall);
+        // What was seen belongs to the heights of a hall that can be read.
+        let seen = match (&args.seen, &hall) {
+            (Some(path), Ok(hall)) => read_seen(path, &hall.release.heights_m).map(Some),
+            _ => Ok(None),
+        };
+        match (undulift_design::read(&args.design, &args.sets), hall, seen) {
+            (Ok(design), Ok(hall), Ok(seen)) => Ok(Self { design, hall, seen }),
+            (design, hall, seen) => {
+                Err([design.err(), hall.err(), seen.err()].into_iter().flatten().collect())
+            }
+        }
     }
 }
 
-fn plan<'a>(
-    args: &'a args::Drop,
-    design: Design,
-    hall: &'a Hall,
+/// Drops from each height of the ladder, those from the highest with faults.
+fn fly(
+    args: &args::Drop,
+    asked: &Asked,
+    dropping: &Dropping<'_>,
     stopped: &AtomicBool,
-) -> anyhow::Result<(Told<'a>, Vec<Drop>)> {
-    let dropping = Dropping::new(&design, hall, args.seed);
-    let (highest_m, lower_m) =
-        hall.release.heights_m.split_last().context("a hall has a release height")?;
-    let around = dropping.around();
+) -> Vec<Vec<Drop>> {
+    let heights_m = &asked.hall.release.heights_m;
     let flights = args.flights as usize;
-    let a_rung = flights.min(DROPS_A_RUNG);
-    let bar = many::bar((flights + a_rung * lower_m.len()) as u64, &design.name);
+    // What was seen is read by as many drops from each height.
+    let most = if asked.seen.is_some() { DROPS_READ_BY } else { DROPS_A_RUNG };
+    let drops = |rung_idx: usize| {
+        if rung_idx + 1 == heights_m.len() { flights } else { flights.min(most) }
+    };
+    let all: usize = (0..heights_m.len()).map(drops).sum();
+    let bar = many::bar(all as u64, &asked.design.name);
     let each = || {
         bar.inc(1);
         !stopped.load(Ordering::Relaxed)
     };
-    let (drops, mut rungs) = many::threads(args.threads.map_or(0, usize::from))?.install(|| {
-        let drops = dropping.fly(*highest_m, flights, true, each);
-        let lower = lower_m.iter().map(|&height_m| {
-            let drops = dropping.fly(height_m, a_rung, false, each);
-            Rung::of(height_m, &drops, &around)
-        });
-        (drops, lower.collect::<Vec<Rung>>())
-    });
+    let rung = |(rung_idx, height_m): (usize, &f64)| {
+        let with_faults = rung_idx + 1 == heights_m.len();
+        dropping.fly(*height_m, drops(rung_idx), with_faults, each)
+    };
+    // The highest first: what Ctrl-C leaves is of most use there.
+    let mut ladder: Vec<Vec<Drop>> = heights_m.iter().enumerate().rev().map(rung).collect();
     bar.finish_and_clear();
-    let plan = Plan::of(&drops, &around).with_context(|| design.name.clone())?;
-    rungs.push(Rung::of(*highest_m, &drops, &around));
+    ladder.reverse();
+    ladder
+}
+
+fn told<'a>(
+    args: &'a args::Drop,
+    asked: &'a Asked,
+    dropping: &Dropping<'_>,
+    ladder: &[Vec<Drop>],
+    complete: bool,
+) -> anyhow::Result<Told<'a>> {
+    let Asked { design, hall, .. } = asked;
+    let around = dropping.around();
+    let heights_m = &hall.release.heights_m;
+    let drops = ladder.last().context("a hall has a release height")?;
+    let plan = Plan::of(drops, &around).with_context(|| design.name.clone())?;
+    let of_height = || heights_m.iter().zip(ladder);
+    let rungs = of_height().map(|(height_m, drops)| Rung::of(*height_m, drops, &around)).collect();
+    let flown = of_height().map(|(&height_m, drops)| Flown { height_m, drops });
+    let flown: Vec<Flown<'_>> = flown.collect();
+    let read = |seen: &Vec<SeenDrop>| Ladder::of(&flown).read(seen, args.seed);
+    let reading = asked.seen.as_ref().map(read).transpose();
     let refused = drops.iter().find_map(|drop| drop.result.as_ref().err());
     let thick = design.glider.chain.segments().iter().map(|segment| segment.thickness_m);
     let thickness_m = thick.fold(0.0, f64::max);
-    let misfits = misfits(&plan, &around, thickness_m, refused.map(ToString::to_string));
-    let measuring = Measuring::of(&design, hall.camera);
-    let complete = !stopped.load(Ordering::Relaxed);
-    let reach_m = around.reach_m;
-    Ok((Told { args, design, hall, plan, rungs, misfits, measuring, complete, reach_m }, drops))
+    let why_refused = refused.map(ToString::to_string);
+    Ok(Told {
+        args,
+        design,
+        hall,
+        misfits: misfits(&plan, &around, thickness_m, why_refused),
+        plan,
+        rungs,
+        measuring: Measuring::of(design, hall.camera),
+        reading: reading.with_context(|| design.name.clone())?,
+        complete,
+        reach_m: around.reach_m,
+    })
 }
 
 fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
@@ -126,6 +184,12 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
              confidence; --flights {flights:.0} gives about as many"
         ));
     }
+    for warning in told.reading.iter().flat_map(seen::warnings) {
+        terminal::tell_warning(&warning);
+    }
+    for stop in told.reading.iter().flat_map(|reading| &reading.stops) {
+        terminal::tell_limit(&format!("{}: {stop}", told.design.name));
+    }
     for misfit in &told.misfits {
         terminal::tell_limit(&format!("{}: {misfit}", told.design.name));
     }
@@ -137,5 +201,6 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
         ));
         return Ok(Outcome::Interrupted);
     }
-    Ok(if told.misfits.is_empty() { Outcome::WithinLimits } else { Outcome::LimitMissed })
+    let go_on = told.reading.as_ref().is_none_or(|reading| reading.stops.is_empty());
+    Ok(if told.misfits.is_empty() && go_on { Outcome::WithinLimits } else { Outcome::LimitMissed })
 }

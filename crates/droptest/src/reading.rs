@@ -112,7 +112,8 @@ impl<'d> Rung<'d> {
         let whole: f64 = weights.each.iter().sum();
         let share = |holds: fn(&Outcome) -> bool| {
             let holding = self.outcomes.iter().zip(&weights.each).filter(|(o, _)| holds(o));
-            holding.map(|(_, weight)| weight).sum::<f64>() / whole.max(f64::MIN_POSITIVE)
+            // A sum of nothing is −0.
+            (0.0 + holding.map(|(_, weight)| weight).sum::<f64>()) / whole.max(f64::MIN_POSITIVE)
         };
         let touches = |o: &Outcome| o.clearances.walls_m < 0.0 || o.clearances.people_m < 0.0;
         Narrowed {

@@ -13,7 +13,8 @@ use undulift_design::Override;
 #[derive(Debug, clap::Args)]
 #[command(after_long_help = "Examples:
   undulift drop designs/reed-16.toml designs/hall-gantry.toml
-  undulift drop designs/reed-16.toml designs/hall-gantry.toml --flights 5000 --csv drops.csv")]
+  undulift drop designs/reed-16.toml designs/hall-gantry.toml --flights 5000 --csv drops.csv
+  undulift drop designs/reed-16.toml designs/hall-gantry.toml --seen seen.csv")]
 pub struct Drop {
     /// A design file (TOML).
     #[arg(value_name = "DESIGN")]
@@ -39,6 +40,12 @@ pub struct Drop {
     /// Write every drop from the highest release as a row of CSV.
     #[arg(long, value_name = "FILE.csv")]
     pub csv: Option<PathBuf>,
+
+    /// Say go on or stop by what was measured at the heights so far: a CSV file, one row a drop, with
+    /// height_m, distance_m, side_m, time_s, peak_tilt_deg and ended (landed, inverted, missed_catch,
+    /// touched or failed); cells that weren't measured stay empty.
+    #[arg(long, value_name = "FILE.csv")]
+    pub seen: Option<PathBuf>,
 
     /// Print JSON.
     #[arg(long)]

@@ -4,11 +4,11 @@ use serde_json::{Value, json};
 use undulift_droptest::{Area, Bands, Ellipse, Rung, held_by_outermost, mean_load_factor};
 use undulift_flight::Spread;
 
-use super::Told;
+use super::{Told, seen};
 use crate::json;
 
 pub fn object(told: &Told<'_>) -> Value {
-    let mut object = json::heading(&told.design);
+    let mut object = json::heading(told.design);
     let plan = &told.plan;
     let mut put = |key: &str, value: Value| object.insert(key.into(), value);
     put("input_sha256", json!(told.design.input_sha256_with(&told.hall.text)));
@@ -43,6 +43,9 @@ pub fn object(told: &Told<'_>) -> Value {
             "markers_enough": told.measuring.has_markers(),
         }),
     );
+    if let Some(reading) = &told.reading {
+        put("seen", seen::object(reading));
+    }
     put("fits", json!(told.misfits.is_empty()));
     put("reasons", told.misfits.iter().map(ToString::to_string).collect());
     Value::Object(object)
@@ -56,7 +59,8 @@ fn spread(spread: Spread, times: f64) -> Value {
 /// Degrees in a radian.
 const DEG: f64 = 180.0 / std::f64::consts::PI;
 
-fn bands(bands: &Bands) -> serde_json::Map<String, Value> {
+/// Percentiles by the key of what is told.
+pub fn bands(bands: &Bands) -> serde_json::Map<String, Value> {
     let rows = [
         ("distance_m", bands.distance_m, 1.0),
         ("side_drift_m", bands.side_m, 1.0),

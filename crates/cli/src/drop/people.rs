@@ -7,7 +7,7 @@ use undulift_droptest::{
 };
 use undulift_flight::Spread;
 
-use super::Told;
+use super::{Told, seen};
 use crate::people::line;
 
 /// The whole answer.
@@ -20,6 +20,9 @@ pub fn answer(told: &Told<'_>) -> String {
     ladder(told, &mut text);
     numbers(&mut text);
     measuring(told, &mut text);
+    if let Some(reading) = &told.reading {
+        seen::answer(reading, &mut text);
+    }
     let fits =
         if told.misfits.is_empty() { "all of it, as computed" } else { "not all; see below" };
     line(&mut text, "The hall holds", fits);

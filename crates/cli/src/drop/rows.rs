@@ -30,7 +30,9 @@ const COLUMNS: [&str; 19] = [
 ];
 
 /// Writes them, whole or not at all.
-pub fn write(path: &Path, drops: &[Drop]) -> anyhow::Result<()> {
+///
+/// - `complete`: whether these are all that were asked for; else a last row says so
+pub fn write(path: &Path, drops: &[Drop], complete: bool) -> anyhow::Result<()> {
     whole_file::write(path, |file| {
         let mut table = csv::Writer::from_writer(file);
         table.write_record(COLUMNS)?;
@@ -46,6 +48,11 @@ pub fn write(path: &Path, drops: &[Drop]) -> anyhow::Result<()> {
                 }
             };
             table.write_record(head.into_iter().chain(cells))?;
+        }
+        if !complete {
+            let mut last = vec![String::new(); COLUMNS.len()];
+            last[2] = "ended_by_ctrl_c".into();
+            table.write_record(last)?;
         }
         table.flush()?;
         Ok(())
