@@ -3,13 +3,14 @@
 mod object;
 mod people;
 mod rows;
+mod sheets;
 
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 
 use anyhow::Context;
 use undulift_design::{Design, DesignErrors, Hall};
-use undulift_droptest::{Drop, Dropping, Measuring, Misfit, Plan, Rung, misfits};
+use undulift_droptest::{Drop, Dropping, Measuring, Misfit, Plan, Rung, cautions_in_a_line, misfits};
 
 use crate::args;
 use crate::tune::watch_for_ctrl_c;
@@ -20,12 +21,6 @@ const DROPS_A_RUNG: usize = 200;
 
 /// Faults whose outermost holds 95 % of all, at 95 % confidence.
 const FAULTS_WANTED: usize = 59;
-
-/// The cautions in short.
-const CAUTIONS: &str = "a plan is no permission: local rules, the hall's owner and competent, licensed \
-    people decide. Keep everyone out of the keep-out area and from under the release; eye protection; \
-    begin with a dummy mass, low, over the catch; lithium cells set apart after a hard landing; one \
-    person stops everything. Read safety/README.md before the first drop";
 
 /// All that is told of a plan.
 pub struct Told<'a> {
@@ -42,6 +37,7 @@ pub struct Told<'a> {
 }
 
 pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
+    sheets::check(&args.sheets)?;
     let (design, hall) = match read(args) {
         Ok(read) => read,
         Err(refused) => {
@@ -55,6 +51,7 @@ pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
     if let Some(path) = &args.csv {
         rows::write(path, &drops)?;
     }
+    sheets::write(&told)?;
     tell(&told)
 }
 
@@ -129,7 +126,7 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
     for misfit in &told.misfits {
         terminal::tell_limit(&format!("{}: {misfit}", told.design.name));
     }
-    terminal::tell_warning(CAUTIONS);
+    terminal::tell_warning(&cautions_in_a_line());
     if !told.complete {
         terminal::tell_warning(&format!(
             "ended by Ctrl-C: {} of {} drops were flown, and what is told is of those alone",

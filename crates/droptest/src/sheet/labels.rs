@@ -1,0 +1,200 @@
+//! Labels on a drawing: each beside its place, none over another.
+
+use super::words::{Piece, Words, cut};
+use unicode_width::UnicodeWidthStr;
+
+/// Of letters, mm.
+pub(super) const LETTERS_MM: f64 = 2.6;
+/// Of a letter in the middle of wide fonts, over its height.
+const COLUMN: f64 = 0.62;
+/// Room about a label, mm.
+const PAD_MM: f64 = 0.4;
+/// Distances from the place at which a label is tried, mm.
+const RINGS_MM: [f64; 14] =
+    [0.0, 1.5, 3.0, 5.0, 7.5, 10.0, 13.0, 17.0, 22.0, 28.0, 35.0, 45.0, 60.0, 80.0];
+/// Directions in which it is tried.
+const DIRECTIONS: usize = 24;
+/// From here on a line leads to it, mm.
+const LEADER_FROM_MM: f64 = 2.0;
+
+/// A box on paper, mm.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct Taken {
+    pub(super) middle_mm: [f64; 2],
+    pub(super) half_mm: [f64; 2],
+}
+
+impl Taken {
+    /// What letters take.
+    pub(super) fn by(columns: usize, middle_mm: [f64; 2]) -> Self {
+        let half = 0.5 * columns as f64 * COLUMN * LETTERS_MM + PAD_MM;
+        Self { middle_mm, half_mm: [half, 0.5 * LETTERS_MM + PAD_MM] }
+    }
+
+    pub(super) fn meets(&self, other: &Self) -> bool {
+        (0..2).all(|axis| {
+            let apart = (self.middle_mm[axis] - other.middle_mm[axis]).abs();
+            apart < self.half_mm[axis] + other.half_mm[axis]
+        })
+    }
+
+    fn is_within(&self, [from, to]: [[f64; 2]; 2]) -> bool {
+        (0..2).all(|axis| {
+            let (middle, half) = (self.middle_mm[axis], self.half_mm[axis]);
+            middle - half >= from[axis] && middle + half <= to[axis]
+        })
+    }
+
+    /// Its point nearest to another.
+    fn nearest_mm(&self, at_mm: [f64; 2]) -> [f64; 2] {
+        std::array::from_fn(|axis| {
+            let (middle, half) = (self.middle_mm[axis], self.half_mm[axis] - PAD_MM);
+            at_mm[axis].clamp(middle - half, middle + half)
+        })
+    }
+}
+
+/// A label that is wanted.
+#[derive(Debug, Clone)]
+pub(super) struct Wanted {
+    /// In words, and in fewer where there is no room.
+    pub(super) words: [Words; 2],
+    /// Its place, mm.
+    pub(super) at_mm: [f64; 2],
+    /// Kept free about the place, mm.
+    pub(super) free_mm: f64,
+    /// Where it would stand best: to the right and down.
+    pub(super) toward: [f64; 2],
+}
+
+/// A label in its place.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct Label {
+    pub(super) words: Words,
+    pub(super) taken: Taken,
+    /// From the place to the label, where they are apart.
+    pub(super) leader_mm: Option<[[f64; 2]; 2]>,
+}
+
+/// Places labels in turn; those that find no room are left out.
+///
+/// - `within_mm`: paper to use, from and to
+/// - `taken`: what no label may cover
+pub(super) fn place(
+    wanted: &[Wanted],
+    within_mm: [[f64; 2]; 2],
+    mut taken: Vec<Taken>,
+) -> Vec<Label> {
+    let mut labels = Vec::new();
+    for wanted in wanted {
+        let found = wanted.words.iter().find_map(|words| one(wanted, words, within_mm, &taken));
+        let Some(label) = found else { continue };
+        taken.push(label.taken);
+        taken.extend(label.leader_mm.into_iter().flat_map(along));
+        labels.push(label);
+    }
+    labels
+}
+
+fn one(
+    wanted: &Wanted,
+    words: &Words,
+    within_mm: [[f64; 2]; 2],
+    taken: &[Taken],
+) -> Option<Label> {
+    let columns = columns(words);
+    let best_rad = wanted.toward[1].atan2(wanted.toward[0]);
+    let turns = (0..DIRECTIONS).map(|n| {
+        let turns = n.div_ceil(2) as f64 / DIRECTIONS as f64;
+        best_rad + std::f64::consts::TAU * if n % 2 == 0 { turns } else { -turns }
+    });
+    let tried = RINGS_MM.iter().flat_map(|ring_mm| turns.clone().map(move |rad| (ring_mm, rad)));
+    tried
+        .map(|(ring_mm, rad)| {
+            let mut box_ = Taken::by(columns, wanted.at_mm);
+            let (sin, cos) = rad.sin_cos();
+            for (axis, part) in [cos, sin].into_iter().enumerate() {
+                let off = wanted.free_mm + ring_mm + box_.half_mm[axis];
+                box_.middle_mm[axis] += part * off;
+            }
+            let leads = *ring_mm >= LEADER_FROM_MM;
+            let start_mm = [0, 1].map(|axis| {
+                wanted.at_mm[axis] + [cos, sin][axis] * wanted.free_mm.min(ring_mm + wanted.free_mm)
+            });
+            let leader_mm = leads.then(|| [start_mm, box_.nearest_mm(wanted.at_mm)]);
+            Label { words: words.clone(), taken: box_, leader_mm }
+        })
+        .find(|label| {
+            let free = |part: Taken| !taken.iter().any(|other| other.meets(&part));
+            let leader = || label.leader_mm.into_iter().flat_map(along).all(free);
+            label.taken.is_within(within_mm) && free(label.taken) && leader()
+        })
+}
+
+/// Points along a leader, but for its ends.
+fn along([from, to]: [[f64; 2]; 2]) -> impl Iterator<Item = Taken> {
+    (2..15).map(move |n| {
+        let part = f64::from(n) / 16.0;
+        let middle_mm = [0, 1].map(|axis| from[axis] + part * (to[axis] - from[axis]));
+        Taken { middle_mm, half_mm: [0.2; 2] }
+    })
+}
+
+/// How wide words are.
+pub(super) fn columns(words: &Words) -> usize {
+    let of = |piece: &Piece| match piece {
+        Piece::Plain(text) | Piece::Name(text) | Piece::Exact(text) => text.width(),
+    };
+    words.0.iter().map(of).sum()
+}
+
+/// With names cut to a width.
+pub(super) fn with_short_names(words: Words, most_columns: usize) -> Words {
+    let short = |piece| match piece {
+        Piece::Name(name) => Piece::Name(cut(&name, most_columns)),
+        other => other,
+    };
+    Words(words.0.into_iter().map(short).collect())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    const PAGE_MM: [[f64; 2]; 2] = [[0.0; 2], [160.0, 90.0]];
+
+    fn wanted(text: &str, at_mm: [f64; 2]) -> Wanted {
+        Wanted {
+            words: [text.into(), "1".into()],
+            at_mm,
+            free_mm: 1.0,
+            toward: [1.0, 0.0],
+        }
+    }
+
+    /// Fifty places at the same point: all of them find room, none over another.
+    #[test]
+    fn analytic_labels_dont_meet() {
+        let all: Vec<Wanted> = (0..50).map(|_| wanted("somebody", [80.0, 45.0])).collect();
+        let labels = place(&all, PAGE_MM, vec![]);
+        assert!(labels.len() > 25, "{}", labels.len());
+        for (n, label) in labels.iter().enumerate() {
+            assert!(label.taken.is_within(PAGE_MM));
+            assert!(labels[..n].iter().all(|other| !other.taken.meets(&label.taken)));
+        }
+    }
+
+    /// Eight letters of 0.62 · 2.6 mm and 0.4 mm on both sides: half of it is 6.848 mm, so the
+    /// middle stands 1 + 6.848 mm to the right; in the page's right corner it goes elsewhere.
+    #[test]
+    fn analytic_a_label_stands_where_it_is_best() {
+        let label = &place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![])[0];
+        approx::assert_relative_eq!(label.taken.middle_mm[0], 87.848, epsilon = 1e-9);
+        assert!(label.leader_mm.is_none());
+        let label = &place(&[wanted("somebody", [159.0, 89.0])], PAGE_MM, vec![])[0];
+        assert!(label.taken.middle_mm[0] < 159.0);
+        // Where all is taken, there is none.
+        let all = Taken { middle_mm: [80.0, 45.0], half_mm: [80.0, 45.0] };
+        assert!(place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![all]).is_empty());
+    }
+}
