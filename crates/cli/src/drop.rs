@@ -10,7 +10,9 @@ use std::sync::atomic::{AtomicBool, Ordering};
 
 use anyhow::Context;
 use undulift_design::{Design, DesignErrors, Hall};
-use undulift_droptest::{Drop, Dropping, Measuring, Misfit, Plan, Rung, cautions_in_a_line, misfits};
+use undulift_droptest::{
+    Drop, Dropping, Measuring, Misfit, Plan, Rung, cautions_in_a_line, misfits,
+};
 
 use crate::args;
 use crate::tune::watch_for_ctrl_c;

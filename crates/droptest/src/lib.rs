@@ -39,7 +39,9 @@ pub use measuring::Measuring;
 pub use plan::{Bands, FaultRow, Furthest, Least, Plan, Sound};
 pub use region::{Ellipse, Scaled, normal_region_scale, region};
 pub use rung::Rung;
-pub use sample_size::{drops_for_mean, drops_outside_to_stop, drops_to_tell_apart, most_failing_share};
+pub use sample_size::{
+    drops_for_mean, drops_outside_to_stop, drops_to_tell_apart, most_failing_share,
+};
 pub use sheet::Sheet;
 pub use tolerance::{
     confidence_of_outermost, drops_for_outermost, held_by_outermost, one_sided_factor,

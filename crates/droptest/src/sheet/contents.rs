@@ -68,7 +68,6 @@ pub(super) fn contents(sheet: &Sheet<'_>) -> (Words, Vec<Section>) {
         room::places(sheet),
         room::stopping(sheet),
         room::filming(sheet),
-        made_of(sheet),
     ];
     (title, sections)
 }
@@ -88,7 +87,15 @@ fn heading(sheet: &Sheet<'_>) -> Section {
         hall.height_m,
         sheet.highest_m()
     );
-    let facts = vec![("Robot", body.into()), ("Hall", size.into())];
+    let computed =
+        format!("{} drops with undulift {}, seed {}", sheet.plan.drops, sheet.version, sheet.seed);
+    let facts = vec![
+        ("Robot", body.into()),
+        ("Hall", size.into()),
+        ("Computed", computed.into()),
+        ("Design's SHA-256", Words::exact(&sheet.design.input_sha256)),
+        ("Hall's SHA-256", Words::exact(&sheet.hall.sha256())),
+    ];
     let fill = vec!["Date", "Operator", "Remote stop", "Observer", "Watches the door"];
     Section {
         heading: Words::default(),
@@ -180,16 +187,4 @@ fn plan(sheet: &Sheet<'_>) -> Section {
 fn cautions() -> Section {
     let list = CAUTIONS.iter().map(|caution| (*caution).into()).collect();
     together("Cautions", vec![Block::List(list)])
-}
-
-fn made_of(sheet: &Sheet<'_>) -> Section {
-    let facts = vec![
-        ("Design", Words::name(&sheet.design.name)),
-        ("SHA-256", Words::exact(&sheet.design.input_sha256)),
-        ("Hall", Words::name(sheet.hall_name)),
-        ("SHA-256", Words::exact(&sheet.hall.sha256())),
-        ("Program", format!("undulift {}", sheet.version).into()),
-        ("Drops", format!("{}, seed {}", sheet.plan.drops, sheet.seed).into()),
-    ];
-    together("Made of", vec![Block::Facts(facts)])
 }

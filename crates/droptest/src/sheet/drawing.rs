@@ -16,6 +16,10 @@ const TICKS_MM: f64 = 9.0;
 const ARROW_MM: f64 = 13.0;
 /// Half of what the point of release and a cross cover, mm.
 const POINT_MM: f64 = 1.6;
+/// Points on a region's edge that labels keep clear of.
+const EDGE_POINTS: u32 = 72;
+/// Points on a side of what is drawn, at most.
+const MOST_POINTS: f64 = 2000.0;
 /// Half of what labels keep free about a person's middle, at most, mm.
 const PERSON_MM: f64 = 6.0;
 
@@ -49,6 +53,14 @@ pub(super) struct Region {
     /// From x toward y.
     pub(super) turned_deg: f64,
     pub(super) is_highest: bool,
+}
+
+/// Points on a line, a millimetre apart, those far off left out.
+fn between(from: [f64; 2], to: [f64; 2]) -> impl Iterator<Item = [f64; 2]> {
+    let along = [to[0] - from[0], to[1] - from[1]];
+    let count = along[0].hypot(along[1]).ceil().clamp(1.0, MOST_POINTS);
+    (0..=count as usize)
+        .map(move |n| [0, 1].map(|axis| from[axis] + along[axis] * n as f64 / count))
 }
 
 /// Where someone stands.
@@ -90,7 +102,7 @@ impl Drawing {
             paper,
         };
         let wanted = drawing.wanted(sheet);
-        drawing.labels = place(&wanted, paper.plot_mm, drawing.taken());
+        drawing.labels = place(&wanted, paper.plot_mm, drawing.taken(), &drawing.lines());
         drawing.unlabelled = wanted.len() - drawing.labels.len();
         drawing
     }
@@ -99,10 +111,7 @@ impl Drawing {
     pub(super) fn axis_names(&self) -> [(&'static str, [f64; 2]); 2] {
         let [[left, bottom], [right, top]] = self.hall_mm;
         let below_mm = bottom + 1.4 + 1.6 * LETTERS_MM;
-        [
-            ("x, m", [0.5 * (left + right), below_mm]),
-            ("y, m", [left - 8.6, 0.5 * (top + bottom)]),
-        ]
+        [("x, m", [0.5 * (left + right), below_mm]), ("y, m", [left - 8.6, 0.5 * (top + bottom)])]
     }
 
     /// What no label may cover.
@@ -123,6 +132,24 @@ impl Drawing {
         let points = self.fault_mm.into_iter().chain([self.release_mm]).map(point);
         let axes = self.axis_names().map(|(_, middle_mm)| Taken { middle_mm, half_mm: [3.0; 2] });
         points.chain(people).chain(ticks).chain(arrow).chain(axes).collect()
+    }
+
+    /// Points along what is drawn as a line.
+    fn lines(&self) -> Vec<Taken> {
+        let [[left, bottom], [right, top]] = self.hall_mm;
+        let hall = [[left, bottom], [right, bottom], [right, top], [left, top]];
+        let boxes = [Some(hall), Some(self.keep_out_mm), self.catch_mm];
+        let sides = boxes.into_iter().flatten().flat_map(|corners| {
+            (0..4).flat_map(move |n| between(corners[n], corners[(n + 1) % 4]))
+        });
+        let edges = self.regions.iter().flat_map(|region| {
+            (0..EDGE_POINTS).map(|n| {
+                let turn = std::f64::consts::TAU * f64::from(n) / f64::from(EDGE_POINTS);
+                region.edge_mm([turn.cos(), turn.sin()])
+            })
+        });
+        let point = |middle_mm| Taken { middle_mm, half_mm: [0.3; 2] };
+        sides.chain(edges).map(point).collect()
     }
 
     /// Labels, those that matter most first.

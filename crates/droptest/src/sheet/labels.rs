@@ -79,15 +79,20 @@ pub(super) struct Label {
 /// Places labels in turn; those that find no room are left out.
 ///
 /// - `within_mm`: paper to use, from and to
-/// - `taken`: what no label may cover
+/// - `taken`: what neither label nor leader may cover
+/// - `lines`: what no label should cover, where there is room elsewhere; leaders may cross them
 pub(super) fn place(
     wanted: &[Wanted],
     within_mm: [[f64; 2]; 2],
     mut taken: Vec<Taken>,
+    lines: &[Taken],
 ) -> Vec<Label> {
     let mut labels = Vec::new();
     for wanted in wanted {
-        let found = wanted.words.iter().find_map(|words| one(wanted, words, within_mm, &taken));
+        let found = wanted.words.iter().find_map(|words| {
+            let place = |lines| one(wanted, words, within_mm, &taken, lines);
+            place(lines).or_else(|| place(&[]))
+        });
         let Some(label) = found else { continue };
         taken.push(label.taken);
         taken.extend(label.leader_mm.into_iter().flat_map(along));
@@ -101,6 +106,7 @@ fn one(
     words: &Words,
     within_mm: [[f64; 2]; 2],
     taken: &[Taken],
+    lines: &[Taken],
 ) -> Option<Label> {
     let columns = columns(words);
     let best_rad = wanted.toward[1].atan2(wanted.toward[0]);
@@ -127,7 +133,8 @@ fn one(
         .find(|label| {
             let free = |part: Taken| !taken.iter().any(|other| other.meets(&part));
             let leader = || label.leader_mm.into_iter().flat_map(along).all(free);
-            label.taken.is_within(within_mm) && free(label.taken) && leader()
+            let clear = || !lines.iter().any(|line| line.meets(&label.taken));
+            label.taken.is_within(within_mm) && free(label.taken) && clear() && leader()
         })
 }
 
@@ -164,23 +171,23 @@ mod tests {
     const PAGE_MM: [[f64; 2]; 2] = [[0.0; 2], [160.0, 90.0]];
 
     fn wanted(text: &str, at_mm: [f64; 2]) -> Wanted {
-        Wanted {
-            words: [text.into(), "1".into()],
-            at_mm,
-            free_mm: 1.0,
-            toward: [1.0, 0.0],
-        }
+        Wanted { words: [text.into(), "1".into()], at_mm, free_mm: 1.0, toward: [1.0, 0.0] }
     }
 
-    /// Fifty places at the same point: all of them find room, none over another.
+    /// Thirty-five places, 21 mm apart: all find room. Fifty at the same point: some do. None stands
+    /// over another.
     #[test]
     fn analytic_labels_dont_meet() {
-        let all: Vec<Wanted> = (0..50).map(|_| wanted("somebody", [80.0, 45.0])).collect();
-        let labels = place(&all, PAGE_MM, vec![]);
-        assert!(labels.len() > 25, "{}", labels.len());
-        for (n, label) in labels.iter().enumerate() {
-            assert!(label.taken.is_within(PAGE_MM));
-            assert!(labels[..n].iter().all(|other| !other.taken.meets(&label.taken)));
+        let grid = (0..35).map(|n| [10.0 + 21.0 * f64::from(n % 7), 9.0 + 18.0 * f64::from(n / 7)]);
+        let grid: Vec<Wanted> = grid.map(|at_mm| wanted("somebody", at_mm)).collect();
+        let crowd: Vec<Wanted> = (0..50).map(|_| wanted("somebody", [80.0, 45.0])).collect();
+        for (all, least) in [(grid, 35), (crowd, 10)] {
+            let labels = place(&all, PAGE_MM, vec![], &[]);
+            assert!(labels.len() >= least, "{}", labels.len());
+            for (n, label) in labels.iter().enumerate() {
+                assert!(label.taken.is_within(PAGE_MM));
+                assert!(labels[..n].iter().all(|other| !other.taken.meets(&label.taken)));
+            }
         }
     }
 
@@ -188,13 +195,18 @@ mod tests {
     /// middle stands 1 + 6.848 mm to the right; in the page's right corner it goes elsewhere.
     #[test]
     fn analytic_a_label_stands_where_it_is_best() {
-        let label = &place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![])[0];
+        let label = &place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![], &[])[0];
         approx::assert_relative_eq!(label.taken.middle_mm[0], 87.848, epsilon = 1e-9);
         assert!(label.leader_mm.is_none());
-        let label = &place(&[wanted("somebody", [159.0, 89.0])], PAGE_MM, vec![])[0];
+        let label = &place(&[wanted("somebody", [159.0, 89.0])], PAGE_MM, vec![], &[])[0];
         assert!(label.taken.middle_mm[0] < 159.0);
-        // Where all is taken, there is none.
+        // A line to the right of it is left uncovered, if that can be.
+        let line = Taken { middle_mm: [87.0, 45.0], half_mm: [0.3, 2.0] };
+        let label = &place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![], &[line])[0];
+        assert!(!label.taken.meets(&line));
         let all = Taken { middle_mm: [80.0, 45.0], half_mm: [80.0, 45.0] };
-        assert!(place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![all]).is_empty());
+        assert_eq!(place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![], &[all]).len(), 1);
+        // Where all is taken, there is none.
+        assert!(place(&[wanted("somebody", [80.0, 45.0])], PAGE_MM, vec![all], &[]).is_empty());
     }
 }

@@ -1,5 +1,6 @@
 //! The release ladder, to be filled in, and the limits at which to stop.
 
+use undulift_design::CatchKind;
 use undulift_flight::Spread;
 
 use super::Sheet;
@@ -21,17 +22,18 @@ pub(super) fn ladder(sheet: &Sheet<'_>) -> Section {
                ten should) and none surprised you. Distance and side are from below the release: along \
                the launch, and to its left.";
     let mut blocks = vec![Block::Text(how.into())];
+    let rung = |of| rung(of, sheet.hall.catch.kind);
     blocks.extend(sheet.rungs.iter().map(rung));
     let heading = Words::from("Release ladder of ").and_name(&sheet.design.name);
     Section { heading, blocks, page: Page::New }
 }
 
-fn rung(rung: &Rung) -> Block {
+fn rung(rung: &Rung, catch: CatchKind) -> Block {
     let name = format!("{} m", height(rung.height_m));
     let columns = COLUMNS.map(Words::exact).to_vec();
     let mut rows = Vec::new();
     if let Some(bands) = &rung.bands {
-        rows.push(bands_row(bands, &name));
+        rows.push(bands_row(bands, rung.height_m, catch));
     }
     rows.extend((1..=ROWS).map(|drop| {
         let cells = [drop.to_string(), height(rung.height_m)];
@@ -43,7 +45,10 @@ fn rung(rung: &Rung) -> Block {
         None => format!("none of {} drops could be flown: don't drop from here", rung.drops),
     };
     let [long_m, wide_m] = rung.to_film.size_m();
-    let about = format!("{stop}; film {long_m:.0} × {wide_m:.0} × {:.0} m", rung.film_height_m);
+    let about = format!(
+        "{stop}; film {long_m:.0} m along, {wide_m:.0} m across, {:.0} m high",
+        rung.film_height_m
+    );
     Block::Rung {
         name: name.into(),
         about: about.into(),
@@ -52,19 +57,24 @@ fn rung(rung: &Rung) -> Block {
     }
 }
 
-fn bands_row(bands: &Bands, name: &str) -> Vec<Words> {
+fn bands_row(bands: &Bands, height_m: f64, catch: CatchKind) -> Vec<Words> {
     let pair = |Spread { p05, p95, .. }: Spread, digits: usize| {
         Words::from(format!("{p05:.digits$} to {p95:.digits$}"))
     };
-    let [low_deg, high_deg] = [bands.peak_tilt_rad.p05, bands.peak_tilt_rad.p95].map(f64::to_degrees);
+    let [low_deg, high_deg] =
+        [bands.peak_tilt_rad.p05, bands.peak_tilt_rad.p95].map(f64::to_degrees);
     vec![
         "band".into(),
-        name.trim_end_matches(" m").into(),
+        height(height_m).into(),
         pair(bands.distance_m, 2),
         pair(bands.side_m, 2),
         pair(bands.time_s, 2),
         format!("{low_deg:.0} to {high_deg:.0}").into(),
-        "on the catch".into(),
+        match catch {
+            CatchKind::Net => "in the net".into(),
+            CatchKind::Mat => "on the mat".into(),
+            CatchKind::Floor => "on the floor".into(),
+        },
     ]
 }
 
@@ -101,7 +111,9 @@ pub(super) fn limits() -> Section {
     Section {
         heading: "When to stop".into(),
         blocks: vec![
-            Block::Text("At once, power off, and nobody goes near before it lies still, when:".into()),
+            Block::Text(
+                "At once, power off, and nobody goes near before it lies still, when:".into(),
+            ),
             Block::List(at_once.map(Words::from).to_vec()),
             Block::Text("After a few drops, counted for each band by itself:".into()),
             Block::Table(table),

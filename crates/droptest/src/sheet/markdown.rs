@@ -84,7 +84,7 @@ fn escaped(name: &str) -> String {
     let mut escaped = String::with_capacity(name.len());
     for (at, letter) in letters.iter().enumerate() {
         // Within a word neither begins or ends anything.
-        let is_harmless = matches!(letter, '-' | '.') && is_within(at) || *letter == ',';
+        let is_harmless = matches!(letter, '-' | '.' | '+') && is_within(at) || *letter == ',';
         if letter.is_ascii_punctuation() && !is_harmless {
             escaped.push('\\');
         }

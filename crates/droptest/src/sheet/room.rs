@@ -34,7 +34,8 @@ pub(super) fn places(sheet: &Sheet<'_>) -> Section {
     if let Some(furthest) = &sheet.plan.furthest {
         let at_m = sheet.around().in_hall(furthest.place_m);
         let name = format!("furthest fault: {}", furthest.kind.in_words());
-        rows.push(row(name.into(), at_m, String::new()));
+        let size = format!("{:.1} m from below the release", furthest.distance_m);
+        rows.push(row(name.into(), at_m, size));
     }
     for (n, person) in sheet.hall.people.iter().enumerate() {
         let name = Words::from(format!("person {}: ", n + 1)).and_name(&person.name);
@@ -42,7 +43,8 @@ pub(super) fn places(sheet: &Sheet<'_>) -> Section {
         rows.push(row(name, [person.x_m, person.y_m], size));
     }
     let columns = ["what", "x, m", "y, m", "size"].map(Words::from).to_vec();
-    let how = "x from the wall behind the release along the hall, y from the right-hand wall.";
+    let how = "x from the wall behind the release along the hall, y from the right-hand wall; of areas and regions, \
+               their middles.";
     Section {
         heading: "Places in the hall".into(),
         blocks: vec![Block::Text(how.into()), Block::Table(Table { columns, rows })],
@@ -56,7 +58,10 @@ fn middle_m(area: &Area) -> [f64; 2] {
 
 fn sides(area: &Area) -> String {
     let ([back, ahead], [right, left]) = (area.along_m, area.across_m);
-    format!("{:.1} m behind to {ahead:.1} m ahead, {:.1} m right to {left:.1} m left", -back, -right)
+    format!(
+        "{:.1} m behind to {ahead:.1} m ahead, {:.1} m right to {left:.1} m left",
+        -back, -right
+    )
 }
 
 pub(super) fn stopping(sheet: &Sheet<'_>) -> Section {
@@ -79,8 +84,7 @@ pub(super) fn stopping(sheet: &Sheet<'_>) -> Section {
     let mut facts = vec![(kind, stop.into())];
     if catch.kind == CatchKind::Net {
         let least_m = catch_height_needed_m(catch.stopping_m, sheet.thickness_m());
-        let net =
-            format!("must hang at {least_m:.2} m or more; hangs at {:.2} m", catch.height_m);
+        let net = format!("must hang at {least_m:.2} m or more; hangs at {:.2} m", catch.height_m);
         facts.push(("Net's height", net.into()));
     }
     if catch.kind != CatchKind::Floor {
@@ -88,7 +92,11 @@ pub(super) fn stopping(sheet: &Sheet<'_>) -> Section {
         facts.push(("Missed the catch", missed.into()));
     }
     facts.extend(clearances(sheet));
-    Section { heading: "Stopping and room".into(), blocks: vec![Block::Facts(facts)], page: Page::Together }
+    Section {
+        heading: "Stopping and room".into(),
+        blocks: vec![Block::Facts(facts)],
+        page: Page::Together,
+    }
 }
 
 fn clearances(sheet: &Sheet<'_>) -> [(&'static str, Words); 2] {
@@ -107,10 +115,8 @@ fn clearances(sheet: &Sheet<'_>) -> [(&'static str, Words); 2] {
         }
         _ => "no drop comes back behind the release".into(),
     };
-    let room = format!(
-        "{rig}; keep free {} of it, as deep as the body is long",
-        sides(&least.at_rig)
-    );
+    let room =
+        format!("{rig}; keep free {} of it, as deep as the body is long", sides(&least.at_rig));
     [("Least clearances", clear.into()), ("Rig", room.into())]
 }
 
@@ -141,5 +147,9 @@ pub(super) fn filming(sheet: &Sheet<'_>) -> Section {
             .into(),
     };
     let facts = vec![("Camera", camera.into()), ("Battery", battery.into())];
-    Section { heading: "Camera and battery".into(), blocks: vec![Block::Facts(facts)], page: Page::Together }
+    Section {
+        heading: "Camera and battery".into(),
+        blocks: vec![Block::Facts(facts)],
+        page: Page::Together,
+    }
 }

@@ -214,7 +214,8 @@ fn bar(drawing: &Drawing, y_mm: f64) -> Markup {
 
 /// Samples, each 8 mm long, with their names.
 fn legend(sheet: &Sheet<'_>, drawing: &Drawing) -> Vec<(Markup, &'static str)> {
-    let swatch = |class: &str| html! { rect class=(class) x="0.5" y="-1.5" width="7" height="3" {} };
+    let swatch =
+        |class: &str| html! { rect class=(class) x="0.5" y="-1.5" width="7" height="3" {} };
     let ring = |class: &str| html! { ellipse class=(class) cx="4" cy="0" rx="3.5" ry="1.5" {} };
     let mut items = vec![
         (html! { g transform="translate(0.5 0)" { (release(7.5)) } }, "release, along the launch"),
