@@ -33,6 +33,8 @@ pub struct Sheet<'a> {
     pub seed: u64,
     /// Drops that were asked for.
     pub asked: usize,
+    /// Whether all of them were flown, from the lower rungs, too.
+    pub complete: bool,
     /// What drops from the highest release come to.
     pub plan: &'a Plan,
     /// The release ladder, from low to high; its bands are those printed.

@@ -57,6 +57,7 @@ pub fn write(told: &Told<'_>) -> anyhow::Result<()> {
         version: env!("CARGO_PKG_VERSION"),
         seed: told.args.seed,
         asked: told.args.flights as usize,
+        complete: told.complete,
         plan: &told.plan,
         rungs: &told.rungs,
         misfits: &told.misfits,

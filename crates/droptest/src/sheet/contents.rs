@@ -2,7 +2,7 @@
 
 use undulift_design::CatchKind;
 
-use super::drawing::Drawing;
+use super::drawing::{Drawing, turned};
 use super::words::Words;
 use super::{Sheet, ladder, room};
 use crate::{CAUTIONS, Misfit, held_by_outermost};
@@ -105,21 +105,20 @@ fn heading(sheet: &Sheet<'_>) -> Section {
 }
 
 fn verdict(sheet: &Sheet<'_>) -> Section {
-    let complete = sheet.plan.drops >= sheet.asked;
-    let holds = sheet.misfits.is_empty() && complete;
+    let holds = sheet.misfits.is_empty() && sheet.complete;
     let words = if !sheet.misfits.is_empty() {
         "NOT as it stands: the hall doesn't hold it"
-    } else if !complete {
+    } else if !sheet.complete {
         "NOT as it stands: the computation was ended early"
     } else {
         "As computed it fits"
     };
     let mut blocks = vec![Block::Verdict { holds, words: words.into() }];
     let early = format!(
-        "only {} of {} drops were flown, and what is told is of those alone",
+        "ended early: {} of {} drops from the highest release were flown, and lower rungs may lack some",
         sheet.plan.drops, sheet.asked
     );
-    let early = (!complete).then(|| early.into());
+    let early = (!sheet.complete).then(|| early.into());
     let reasons: Vec<Words> = sheet.misfits.iter().map(reason).chain(early).collect();
     if !reasons.is_empty() {
         blocks.push(Block::List(reasons));
@@ -167,11 +166,11 @@ fn plan(sheet: &Sheet<'_>) -> Section {
     };
     let release = &sheet.hall.release;
     let told = format!(
-        "Seen from above, to scale: release at x {:.1} m, y {:.1} m, launch turned {:.0}° to the left of x; \
+        "Seen from above, to scale: release at x {:.1} m, y {:.1} m, {}; \
          keep-out area {long_m:.1} × {wide_m:.1} m; {catch} to land on; people: {}",
         release.from_wall_m,
         release.across_m,
-        release.direction_rad.to_degrees(),
+        turned(release.direction_rad),
         sheet.hall.people.len()
     );
     let title = format!("Plan of the hall, 1:{}", drawing.paper.scale);

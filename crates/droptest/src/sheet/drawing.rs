@@ -179,7 +179,13 @@ impl Drawing {
             let words = Words::from(format!("{number} ")).and_name(&person.name);
             let words = with_short_names(words, NAME_COLUMNS);
             let free_mm = circle.radius_mm.clamp(0.8, PERSON_MM);
-            all.push(wanted(words, number.into(), circle.centre_mm, free_mm, [1.0, 0.0]));
+            all.push(wanted(
+                words,
+                format!("({number})").into(),
+                circle.centre_mm,
+                free_mm,
+                [1.0, 0.0],
+            ));
         }
         all
     }
@@ -275,6 +281,15 @@ fn ticks(paper: &Paper, [length_m, width_m]: [f64; 2]) -> Vec<Tick> {
 pub(super) fn height(value_m: f64) -> String {
     let text = format!("{value_m:.2}");
     text.trim_end_matches('0').trim_end_matches('.').to_owned()
+}
+
+/// Which way a launch goes.
+pub(super) fn turned(direction_rad: f64) -> String {
+    match direction_rad.to_degrees().round() {
+        0.0 => "launch along x".into(),
+        deg if deg < 0.0 => format!("launch {:.0}° to the right of x", -deg),
+        deg => format!("launch {deg:.0}° to the left of x"),
+    }
 }
 
 /// Degrees that an arrow to the right must be turned by, clockwise on paper.

@@ -110,7 +110,8 @@ pub(super) fn words(words: &Words, apart: &str) -> Markup {
     html! {
         @for piece in &words.0 {
             @match piece {
-                Piece::Plain(text) => (text),
+                // A number isn't torn from its sign.
+                Piece::Plain(text) => (text.replace(" %", "\u{a0}%")),
                 Piece::Name(name) if apart == "tspan" => tspan class="name" { (name) },
                 Piece::Name(name) => bdi { (name) },
                 Piece::Exact(text) => code { (text) },

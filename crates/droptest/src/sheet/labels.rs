@@ -16,6 +16,8 @@ const RINGS_MM: [f64; 14] =
 const DIRECTIONS: usize = 24;
 /// From here on a line leads to it, mm.
 const LEADER_FROM_MM: f64 = 2.0;
+/// Between points at which a leader is looked at, mm.
+const LEADER_STEP_MM: f64 = 0.5;
 
 /// A box on paper, mm.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -67,11 +69,32 @@ pub(super) struct Wanted {
     pub(super) toward: [f64; 2],
 }
 
+/// How letters stand in the room kept for them, which may be wider: near to their place.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) enum Letters {
+    From(f64),
+    About(f64),
+    UpTo(f64),
+}
+
+impl Letters {
+    fn of(taken: &Taken, at_mm: [f64; 2]) -> Self {
+        let (middle, half) = (taken.middle_mm[0], taken.half_mm[0]);
+        match middle - at_mm[0] {
+            off if off > 0.6 * half => Self::From(middle - half + PAD_MM),
+            off if off < -0.6 * half => Self::UpTo(middle + half - PAD_MM),
+            _ => Self::About(middle),
+        }
+    }
+}
+
 /// A label in its place.
 #[derive(Debug, Clone, PartialEq)]
 pub(super) struct Label {
     pub(super) words: Words,
     pub(super) taken: Taken,
+    /// Where its letters begin, end or have their middle, mm to the right.
+    pub(super) letters: Letters,
     /// From the place to the label, where they are apart.
     pub(super) leader_mm: Option<[[f64; 2]; 2]>,
 }
@@ -84,67 +107,99 @@ pub(super) struct Label {
 pub(super) fn place(
     wanted: &[Wanted],
     within_mm: [[f64; 2]; 2],
-    mut taken: Vec<Taken>,
+    taken: Vec<Taken>,
     lines: &[Taken],
 ) -> Vec<Label> {
+    let mut paper = Standing { within_mm, taken, lines: lines.to_vec(), leaders: vec![] };
     let mut labels = Vec::new();
     for wanted in wanted {
         let found = wanted.words.iter().find_map(|words| {
-            let place = |lines| one(wanted, words, within_mm, &taken, lines);
-            place(lines).or_else(|| place(&[]))
+            let tried = || candidates(wanted, words);
+            let neat = |label: &Label| paper.holds(label, wanted) && paper.is_neat(label, wanted);
+            tried().find(neat).or_else(|| tried().find(|label| paper.holds(label, wanted)))
         });
-        let Some(label) = found else { continue };
-        taken.push(label.taken);
-        taken.extend(label.leader_mm.into_iter().flat_map(along));
+        // Among many, a leader may have to pass beneath other labels.
+        let among = || candidates(wanted, &wanted.words[1]).find(|label| paper.has_room(label));
+        let Some(label) = found.or_else(among) else { continue };
+        paper.taken.push(label.taken);
+        paper.leaders.extend(along(&label, wanted));
         labels.push(label);
     }
     labels
 }
 
-fn one(
-    wanted: &Wanted,
-    words: &Words,
+/// What stands on paper so far.
+struct Standing {
     within_mm: [[f64; 2]; 2],
-    taken: &[Taken],
-    lines: &[Taken],
-) -> Option<Label> {
+    taken: Vec<Taken>,
+    lines: Vec<Taken>,
+    leaders: Vec<Taken>,
+}
+
+impl Standing {
+    /// Whether a label by itself meets nothing that it mustn't.
+    fn has_room(&self, label: &Label) -> bool {
+        label.taken.is_within(self.within_mm)
+            && is_free(&label.taken, &self.taken)
+            && is_free(&label.taken, &self.leaders)
+    }
+
+    /// Whether its leader doesn't either.
+    fn holds(&self, label: &Label, wanted: &Wanted) -> bool {
+        self.has_room(label) && along(label, wanted).iter().all(|point| is_free(point, &self.taken))
+    }
+
+    /// Whether it covers no line, and no leader crosses another.
+    fn is_neat(&self, label: &Label, wanted: &Wanted) -> bool {
+        is_free(&label.taken, &self.lines)
+            && along(label, wanted).iter().all(|point| is_free(point, &self.leaders))
+    }
+}
+
+fn is_free(part: &Taken, of: &[Taken]) -> bool {
+    !of.iter().any(|other| other.meets(part))
+}
+
+/// Where a label could stand, best first.
+fn candidates(wanted: &Wanted, words: &Words) -> impl Iterator<Item = Label> {
     let columns = columns(words);
     let best_rad = wanted.toward[1].atan2(wanted.toward[0]);
-    let turns = (0..DIRECTIONS).map(|n| {
+    let turns = (0..DIRECTIONS).map(move |n| {
         let turns = n.div_ceil(2) as f64 / DIRECTIONS as f64;
         best_rad + std::f64::consts::TAU * if n % 2 == 0 { turns } else { -turns }
     });
-    let tried = RINGS_MM.iter().flat_map(|ring_mm| turns.clone().map(move |rad| (ring_mm, rad)));
-    tried
-        .map(|(ring_mm, rad)| {
-            let mut box_ = Taken::by(columns, wanted.at_mm);
-            let (sin, cos) = rad.sin_cos();
-            for (axis, part) in [cos, sin].into_iter().enumerate() {
-                let off = wanted.free_mm + ring_mm + box_.half_mm[axis];
-                box_.middle_mm[axis] += part * off;
-            }
-            let leads = *ring_mm >= LEADER_FROM_MM;
-            let start_mm = [0, 1].map(|axis| {
-                wanted.at_mm[axis] + [cos, sin][axis] * wanted.free_mm.min(ring_mm + wanted.free_mm)
-            });
-            let leader_mm = leads.then(|| [start_mm, box_.nearest_mm(wanted.at_mm)]);
-            Label { words: words.clone(), taken: box_, leader_mm }
-        })
-        .find(|label| {
-            let free = |part: Taken| !taken.iter().any(|other| other.meets(&part));
-            let leader = || label.leader_mm.into_iter().flat_map(along).all(free);
-            let clear = || !lines.iter().any(|line| line.meets(&label.taken));
-            label.taken.is_within(within_mm) && free(label.taken) && clear() && leader()
-        })
+    let tried =
+        RINGS_MM.into_iter().flat_map(move |ring_mm| turns.clone().map(move |rad| (ring_mm, rad)));
+    tried.map(move |(ring_mm, rad)| {
+        let mut taken = Taken::by(columns, wanted.at_mm);
+        let (sin, cos) = rad.sin_cos();
+        for (axis, part) in [cos, sin].into_iter().enumerate() {
+            taken.middle_mm[axis] += part * (wanted.free_mm + ring_mm + taken.half_mm[axis]);
+        }
+        let start_mm = [0, 1].map(|axis| wanted.at_mm[axis] + [cos, sin][axis] * wanted.free_mm);
+        let leads = ring_mm >= LEADER_FROM_MM;
+        let leader_mm = leads.then(|| [start_mm, taken.nearest_mm(wanted.at_mm)]);
+        let letters = Letters::of(&taken, wanted.at_mm);
+        Label { words: words.clone(), taken, letters, leader_mm }
+    })
 }
 
-/// Points along a leader, but for its ends.
-fn along([from, to]: [[f64; 2]; 2]) -> impl Iterator<Item = Taken> {
-    (2..15).map(move |n| {
-        let part = f64::from(n) / 16.0;
-        let middle_mm = [0, 1].map(|axis| from[axis] + part * (to[axis] - from[axis]));
+/// Points along a leader, but for what is near its place and its label.
+fn along(label: &Label, wanted: &Wanted) -> Vec<Taken> {
+    let Some([from, to]) = label.leader_mm else { return vec![] };
+    let off = [to[0] - from[0], to[1] - from[1]];
+    let count = (off[0].hypot(off[1]) / LEADER_STEP_MM).ceil().max(1.0);
+    let point = |n: usize| {
+        let middle_mm = [0, 1].map(|axis| from[axis] + off[axis] * n as f64 / count);
         Taken { middle_mm, half_mm: [0.2; 2] }
-    })
+    };
+    // The corners of the room about the place itself are still within this.
+    let near_mm = 1.5 * wanted.free_mm + LEADER_STEP_MM;
+    let is_far = |point: &Taken| {
+        let [x, y] = [0, 1].map(|axis| point.middle_mm[axis] - wanted.at_mm[axis]);
+        x.hypot(y) > near_mm
+    };
+    (0..count as usize).map(point).filter(is_far).collect()
 }
 
 /// How wide words are.

@@ -79,17 +79,16 @@ fn bands_row(bands: &Bands, height_m: f64, catch: CatchKind) -> Vec<Words> {
 }
 
 fn limits_of(rung: &Rung) -> String {
-    let mut limits = String::from("Stop");
-    if let Some(least) = drops_outside_to_stop(ROWS) {
-        limits += &format!(" if {least} of {ROWS} lie outside of one band;");
-    }
-    limits += " at once";
-    if let Some(tilt_rad) = rung.largest_tilt_rad {
-        limits += &format!(" if one tilts beyond {:.0}°", tilt_rad.to_degrees().ceil());
-    }
-    match rung.turned_over {
-        0 => limits + " or turns over.",
-        turned => limits + &format!("; {turned} of {} computed ones turned over.", rung.drops),
+    let outside = drops_outside_to_stop(ROWS).map_or_else(String::new, |least| {
+        format!("Stop if {least} of {ROWS} lie outside of one band")
+    });
+    match (rung.turned_over, rung.largest_tilt_rad) {
+        (0, Some(tilt_rad)) => {
+            let tilt_deg = tilt_rad.to_degrees().ceil();
+            format!("{outside}; at once if one tilts beyond {tilt_deg:.0}° or turns over.")
+        }
+        (0, None) => format!("{outside}; at once if one turns over."),
+        (turned, _) => format!("{outside}. {turned} of {} computed turned over.", rung.drops),
     }
 }
 
@@ -97,8 +96,7 @@ pub(super) fn limits() -> Section {
     let at_once = [
         "Something lands, slides or rolls out of the keep-out area.",
         "It touches a wall, a person or the rig.",
-        "It turns over where the ladder says that it doesn't.",
-        "It tilts further than the rung's largest.",
+        "It turns over, or tilts beyond its rung's limit, where the ladder has one.",
         "A joint, a cell, the release or the remote stop doesn't do as it should.",
         "Someone comes in, or says stop, whoever it is.",
     ];

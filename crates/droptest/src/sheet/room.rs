@@ -4,7 +4,7 @@ use undulift_design::CatchKind;
 
 use super::Sheet;
 use super::contents::{Block, Page, Section, Table};
-use super::drawing::height;
+use super::drawing::{height, turned};
 use super::words::Words;
 use crate::{Area, catch_height_needed_m, fall_speed_m_s, mean_load_factor};
 
@@ -16,7 +16,7 @@ pub(super) fn places(sheet: &Sheet<'_>) -> Section {
         vec![what, x, y, size.into()]
     };
     let from_m = [release.from_wall_m, release.across_m];
-    let turned = format!("launch {:.0}° to the left of x", release.direction_rad.to_degrees());
+    let turned = turned(release.direction_rad);
     let mut rows = vec![row("release".into(), from_m, turned)];
     rows.push(row(
         "keep-out area".into(),

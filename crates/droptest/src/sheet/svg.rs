@@ -6,7 +6,7 @@ use undulift_design::CatchKind;
 use super::Sheet;
 use super::drawing::{Drawing, clockwise_deg, height};
 use super::html::words;
-use super::labels::LETTERS_MM;
+use super::labels::{LETTERS_MM, Letters};
 use super::scale::{MARGIN_MM, PLOT_MM, step_m};
 
 /// Of all that is drawn, mm.
@@ -187,8 +187,13 @@ fn labels(drawing: &Drawing) -> Markup {
             line class="leader" x1=(mm(from[0])) y1=(mm(from[1])) x2=(mm(to[0])) y2=(mm(to[1])) {}
         }
         @for label in &drawing.labels {
-            @let [x, y] = label.taken.middle_mm;
-            text class="label" x=(mm(x)) y=(mm(y + 0.36 * LETTERS_MM)) { (words(&label.words, "tspan")) }
+            @let (class, x) = match label.letters {
+                Letters::From(x) => ("label", x),
+                Letters::About(x) => ("label centred", x),
+                Letters::UpTo(x) => ("label before", x),
+            };
+            @let y = label.taken.middle_mm[1];
+            text class=(class) x=(mm(x)) y=(mm(y + 0.36 * LETTERS_MM)) { (words(&label.words, "tspan")) }
         }
     }
 }
