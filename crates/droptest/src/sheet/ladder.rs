@@ -46,8 +46,8 @@ fn rung(rung: &Rung, catch: CatchKind) -> Block {
     };
     let [long_m, wide_m] = rung.to_film.size_m();
     let about = format!(
-        "{stop}; film {long_m:.0} m along, {wide_m:.0} m across, {:.0} m high",
-        rung.film_height_m
+        "{stop}; film {long_m:.0} m along, {wide_m:.0} m across, {:.0} m high; of {} computed drops",
+        rung.film_height_m, rung.drops
     );
     Block::Rung {
         name: name.into(),

@@ -130,7 +130,7 @@ mod tests {
     #[test]
     fn analytic_long_names_are_cut() {
         assert_eq!(cut("operator", 8), "operator");
-        assert_eq!(cut("operators", 8), "operato…");
+        assert_eq!(cut("abcdefghi", 8), "abcdefg…");
         assert_eq!(cut("one two", 5), "one…");
         // Each takes two columns.
         assert_eq!(cut("蛇蛇蛇蛇", 6), "蛇蛇…");
