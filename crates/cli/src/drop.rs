@@ -4,6 +4,7 @@ mod object;
 mod people;
 mod rows;
 mod seen;
+mod sheets;
 
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -11,7 +12,8 @@ use std::sync::atomic::{AtomicBool, Ordering};
 use anyhow::Context;
 use undulift_design::{Design, DesignErrors, Hall, SeenDrop, read_seen};
 use undulift_droptest::{
-    Drop, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung, misfits,
+    Drop, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung, cautions_in_a_line,
+    misfits,
 };
 
 use crate::args;
@@ -26,12 +28,6 @@ const DROPS_READ_BY: usize = 20_000;
 
 /// Faults whose outermost holds 95 % of all, at 95 % confidence.
 const FAULTS_WANTED: usize = 59;
-
-/// The cautions in short.
-const CAUTIONS: &str = "a plan is no permission: local rules, the hall's owner and competent, licensed \
-    people decide. Keep everyone out of the keep-out area and from under the release; eye protection; \
-    begin with a dummy mass, low, over the catch; lithium cells set apart after a hard landing; one \
-    person stops everything. Read safety/README.md before the first drop";
 
 /// All that is told of a plan.
 pub struct Told<'a> {
@@ -50,6 +46,7 @@ pub struct Told<'a> {
 }
 
 pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
+    sheets::check(&args.sheets)?;
     let asked = match Asked::read(args) {
         Ok(asked) => asked,
         Err(refused) => {
@@ -67,6 +64,7 @@ pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
         rows::write(path, drops, complete)?;
     }
     let told = threads.install(|| told(args, &asked, &dropping, &ladder, complete))?;
+    sheets::write(&told)?;
     tell(&told)
 }
 
@@ -193,7 +191,7 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
     for misfit in &told.misfits {
         terminal::tell_limit(&format!("{}: {misfit}", told.design.name));
     }
-    terminal::tell_warning(CAUTIONS);
+    terminal::tell_warning(&cautions_in_a_line());
     if !told.complete {
         terminal::tell_warning(&format!(
             "ended by Ctrl-C: {} of {} drops were flown, and what is told is of those alone",

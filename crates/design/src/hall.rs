@@ -8,6 +8,7 @@ use std::path::Path;
 use crate::design::unusable;
 use crate::document::{Document, source_of};
 use crate::files::{MOST_TOML_BYTES, read_file};
+use crate::named_files::sha256_of;
 use crate::node::Count;
 use crate::range::Range;
 use crate::table::Table;
@@ -137,6 +138,11 @@ impl Hall {
         let mistakes = document.into_mistakes();
         let hall = hall.filter(|_| mistakes.is_empty()).ok_or_else(|| fail(mistakes))?;
         Ok(Self { text: source.inner().clone(), ..hall })
+    }
+
+    /// SHA-256, in hexadecimal, of the file as it stands.
+    pub fn sha256(&self) -> String {
+        sha256_of(&self.text, std::iter::empty())
     }
 }
 

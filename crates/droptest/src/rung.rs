@@ -17,6 +17,10 @@ pub struct Rung {
     pub to_film: Area,
     /// From the floor to the release, body included, m.
     pub film_height_m: f64,
+    /// Largest roll or pitch on the way of any, rad; absent where none could be flown.
+    pub largest_tilt_rad: Option<f64>,
+    /// How many turned over on the way.
+    pub turned_over: usize,
     /// Mean force of the stop over weight, from the sink that 95 % stay under.
     pub stop_weights: Option<f64>,
 }
@@ -36,8 +40,11 @@ impl Rung {
         let stop = |bands: &Bands| {
             mean_load_factor(bands.sink_m_s.p95.max(0.0), around.hall.catch.stopping_m)
         };
+        let tilts = flown().map(|o| o.summary.peak_roll_rad.max(o.summary.peak_pitch_rad));
         Self {
             height_m,
+            largest_tilt_rad: tilts.reduce(f64::max),
+            turned_over: flown().filter(|outcome| outcome.summary.inverted).count(),
             drops: sound().count(),
             region,
             to_film: ends_m.iter().fold(Area::POINT.with([0.0; 2], reach_m), film),

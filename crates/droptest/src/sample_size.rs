@@ -1,6 +1,6 @@
 //! How many drops tell something.
 
-use statrs::distribution::{ContinuousCDF, StudentsT};
+use statrs::distribution::{Binomial, ContinuousCDF, DiscreteCDF, StudentsT};
 
 use crate::DropError;
 use crate::error::check;
@@ -8,6 +8,11 @@ use crate::tolerance::at_most;
 
 /// More drops than anyone makes.
 const MOST_DROPS: usize = 100_000;
+
+/// Share of drops that ends outside of a 5 % to 95 % band where the band is right.
+const OUTSIDE_SHARE: f64 = 0.1;
+/// How often a right band may stop a test, on average.
+const STOP_LEVEL: f64 = 0.01;
 
 /// Largest share that may fail where none of so many failed, with a confidence of 95 %.
 ///
@@ -56,6 +61,17 @@ pub fn drops_for_mean(half_width_sd: f64) -> Result<usize, DropError> {
     fewest("half-width in standard deviations", half_width_sd, |n| {
         student(n - 1.0, 0.975) / n.sqrt() <= half_width_sd
     })
+}
+
+/// Fewest drops outside of a 5 % to 95 % band that mean stop: as many or more, of so many drops,
+/// would be seen less than once in a hundred times if the band were right.
+///
+/// - returns `None` where not even all of them would tell, so for less than three
+pub fn drops_outside_to_stop(drops: usize) -> Option<usize> {
+    let outside = Binomial::new(OUTSIDE_SHARE, drops as u64).ok()?;
+    // Exactly one in a hundred, as two of two are, isn't below it, however it is rounded.
+    let rare = |&least: &usize| outside.sf(least as u64 - 1) < STOP_LEVEL * (1.0 - 1e-9);
+    (1..=drops).find(rare)
 }
 
 /// The fewest that are enough, where all larger numbers are, too.
@@ -109,6 +125,19 @@ mod tests {
     fn analytic_rule_of_three() {
         assert_relative_eq!(most_failing_share(30), 0.095_034, epsilon = 1e-6);
         assert_eq!(most_failing_share(0), 1.0);
+    }
+
+    /// By hand, q = 0.9: of 5, P(3 or more) = 10·0.001·0.81 + 5·0.0001·0.9 + 0.00001 = 0.008 56 and
+    /// P(2 or more) = 0.081 46; of 10, P(5 or more) = 0.001 63 and P(4 or more) = 0.0128; of 3, 0.001
+    /// for all and 0.028 for two; of 2, 0.01 for both, which isn't below.
+    #[test]
+    fn analytic_drops_outside_that_mean_stop() {
+        for (drops, least) in [(3, 3), (4, 3), (5, 3), (6, 4), (9, 4), (10, 5)] {
+            assert_eq!(drops_outside_to_stop(drops), Some(least), "{drops}");
+        }
+        for drops in [0, 1, 2] {
+            assert_eq!(drops_outside_to_stop(drops), None, "{drops}");
+        }
     }
 
     #[test]

@@ -14,7 +14,8 @@ use undulift_design::Override;
 #[command(after_long_help = "Examples:
   undulift drop designs/reed-16.toml designs/hall-gantry.toml
   undulift drop designs/reed-16.toml designs/hall-gantry.toml --flights 5000 --csv drops.csv
-  undulift drop designs/reed-16.toml designs/hall-gantry.toml --seen seen.csv")]
+  undulift drop designs/reed-16.toml designs/hall-gantry.toml --seen seen.csv
+  undulift drop designs/reed-16.toml designs/hall-gantry.toml --sheet sheet.html")]
 pub struct Drop {
     /// A design file (TOML).
     #[arg(value_name = "DESIGN")]
@@ -46,6 +47,11 @@ pub struct Drop {
     /// touched or failed); cells that weren't measured stay empty.
     #[arg(long, value_name = "FILE.csv")]
     pub seen: Option<PathBuf>,
+
+    /// Write the test sheet to print and take to the hall: FILE.html, or FILE.md for Markdown; may be
+    /// given again.
+    #[arg(long = "sheet", value_name = "FILE")]
+    pub sheets: Vec<PathBuf>,
 
     /// Print JSON.
     #[arg(long)]

@@ -26,7 +26,7 @@ pub fn answer(told: &Told<'_>) -> String {
     let fits =
         if told.misfits.is_empty() { "all of it, as computed" } else { "not all; see below" };
     line(&mut text, "The hall holds", fits);
-    if let Some(path) = &told.args.csv {
+    for path in told.args.csv.iter().chain(&told.args.sheets) {
         line(&mut text, "Wrote", &path.display().to_string());
     }
     text
