@@ -12,8 +12,8 @@ use std::sync::atomic::{AtomicBool, Ordering};
 use anyhow::Context;
 use undulift_design::{Design, DesignErrors, Hall, SeenDrop, read_seen};
 use undulift_droptest::{
-    Drop, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung, cautions_in_a_line,
-    misfits,
+    Drop, DropError, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung,
+    cautions_in_a_line, misfits,
 };
 
 use crate::args;
@@ -39,7 +39,7 @@ pub struct Told<'a> {
     misfits: Vec<Misfit>,
     measuring: Measuring,
     /// Of what was seen, where anything was.
-    reading: Option<Reading>,
+    reading: Option<(Reading, &'a [SeenDrop])>,
     /// Whether all drops that were asked for were flown.
     complete: bool,
     reach_m: f64,
@@ -140,8 +140,8 @@ fn told<'a>(
     let rungs = of_height().map(|(height_m, drops)| Rung::of(*height_m, drops, &around)).collect();
     let flown = of_height().map(|(&height_m, drops)| Flown { height_m, drops });
     let flown: Vec<Flown<'_>> = flown.collect();
-    let read = |seen: &Vec<SeenDrop>| Ladder::of(&flown).read(seen, args.seed);
-    let reading = asked.seen.as_ref().map(read).transpose();
+    let read = |seen: &'a Vec<SeenDrop>| Ok((Ladder::of(&flown).read(seen, args.seed)?, &seen[..]));
+    let reading: Result<_, DropError> = asked.seen.as_ref().map(read).transpose();
     let refused = drops.iter().find_map(|drop| drop.result.as_ref().err());
     let thick = design.glider.chain.segments().iter().map(|segment| segment.thickness_m);
     let thickness_m = thick.fold(0.0, f64::max);
@@ -182,10 +182,10 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
              confidence; --flights {flights:.0} gives about as many"
         ));
     }
-    for warning in told.reading.iter().flat_map(seen::warnings) {
+    for warning in told.reading.iter().flat_map(|(reading, _)| seen::warnings(reading)) {
         terminal::tell_warning(&warning);
     }
-    for stop in told.reading.iter().flat_map(|reading| &reading.stops) {
+    for stop in told.reading.iter().flat_map(|(reading, _)| &reading.stops) {
         terminal::tell_limit(&format!("{}: {stop}", told.design.name));
     }
     for misfit in &told.misfits {
@@ -199,6 +199,6 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
         ));
         return Ok(Outcome::Interrupted);
     }
-    let go_on = told.reading.as_ref().is_none_or(|reading| reading.stops.is_empty());
+    let go_on = told.reading.as_ref().is_none_or(|(reading, _)| reading.stops.is_empty());
     Ok(if told.misfits.is_empty() && go_on { Outcome::WithinLimits } else { Outcome::LimitMissed })
 }

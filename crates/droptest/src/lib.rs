@@ -1,10 +1,10 @@
 //! Drop tests indoors: where flights and faults end, and whether a hall holds them.
 //!
-//! Values in, values out: a design and a hall give flights, regions, clearances, a release ladder
-//! and what to measure,
-//! and the sheet that is taken to the hall. Beside it stand the statistics that such a plan rests on. Nothing here opens
-//! a file or prints. What a robot does after it met the floor or the catch (bounces, slides,
-//! breaks) is left out, and so are walls: a flight goes through them, and the clearance says so.
+//! Values in, values out: a design and a hall give flights, regions, clearances, a release ladder,
+//! what to measure, and the sheet that is taken to the hall; what was seen there gives go on or stop.
+//! Beside it stand the statistics that such a plan rests on. Nothing here opens a file or prints. What
+//! a robot does after it met the floor or the catch (bounces, slides, breaks) is left out, and so are
+//! walls: a flight goes through them, and the clearance says so.
 //!
 //! Places are in the world frame of a flight: x along the launch, y left, z up, origin on the floor
 //! under the point of release. SI units and radians.
@@ -44,7 +44,7 @@ pub use rung::Rung;
 pub use sample_size::{
     drops_for_mean, drops_outside_to_stop, drops_to_tell_apart, most_failing_share,
 };
-pub use sheet::Sheet;
+pub use sheet::{Seen, Sheet};
 pub use tolerance::{
     confidence_of_outermost, drops_for_outermost, held_by_outermost, one_sided_factor,
     rank_that_holds, two_sided_factor,

@@ -11,12 +11,14 @@ mod ladder;
 mod markdown;
 mod room;
 mod scale;
+mod seen;
 mod svg;
 mod words;
 
 use undulift_design::{Design, Hall};
 
 use crate::{Around, Measuring, Misfit, Plan, Rung};
+pub use seen::Seen;
 
 /// All that a sheet tells.
 #[derive(Debug, Clone, Copy)]
@@ -37,10 +39,12 @@ pub struct Sheet<'a> {
     pub complete: bool,
     /// What drops from the highest release come to.
     pub plan: &'a Plan,
-    /// The release ladder, from low to high; its bands are those printed.
+    /// The release ladder, from low to high; its bands are printed where nothing was seen.
     pub rungs: &'a [Rung],
     /// What doesn't fit.
     pub misfits: &'a [Misfit],
+    /// What was seen so far, where anything was.
+    pub seen: Option<Seen<'a>>,
     /// What films.
     pub measuring: &'a Measuring,
     /// No part of the body is further from its centre, m.

@@ -43,7 +43,7 @@ pub fn object(told: &Told<'_>) -> Value {
             "markers_enough": told.measuring.has_markers(),
         }),
     );
-    if let Some(reading) = &told.reading {
+    if let Some((reading, _)) = &told.reading {
         put("seen", seen::object(reading));
     }
     put("fits", json!(told.misfits.is_empty()));

@@ -20,7 +20,7 @@ pub fn answer(told: &Told<'_>) -> String {
     ladder(told, &mut text);
     numbers(&mut text);
     measuring(told, &mut text);
-    if let Some(reading) = &told.reading {
+    if let Some((reading, _)) = &told.reading {
         seen::answer(reading, &mut text);
     }
     let fits =

@@ -2,7 +2,7 @@
 
 use std::path::{Path, PathBuf};
 
-use undulift_droptest::Sheet;
+use undulift_droptest::{Seen, Sheet};
 
 use super::Told;
 use crate::whole_file;
@@ -61,6 +61,7 @@ pub fn write(told: &Told<'_>) -> anyhow::Result<()> {
         plan: &told.plan,
         rungs: &told.rungs,
         misfits: &told.misfits,
+        seen: told.reading.as_ref().map(|(reading, drops)| Seen { reading, drops }),
         measuring: &told.measuring,
         reach_m: told.reach_m,
     };

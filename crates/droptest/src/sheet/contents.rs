@@ -58,9 +58,9 @@ pub(super) struct Table {
 pub(super) fn contents(sheet: &Sheet<'_>) -> (Words, Vec<Section>) {
     let title = Words::from("Drop test of ").and_name(&sheet.design.name);
     let title = title.and(" in ").and_name(sheet.hall_name);
-    let sections = vec![
-        heading(sheet),
-        verdict(sheet),
+    let seen = sheet.seen.map(|seen| seen.section());
+    let first = [Some(heading(sheet)), seen, Some(verdict(sheet))].into_iter().flatten();
+    let rest = [
         plan(sheet),
         cautions(),
         ladder::ladder(sheet),
@@ -69,7 +69,7 @@ pub(super) fn contents(sheet: &Sheet<'_>) -> (Words, Vec<Section>) {
         room::stopping(sheet),
         room::filming(sheet),
     ];
-    (title, sections)
+    (title, first.chain(rest).collect())
 }
 
 fn together(heading: impl Into<Words>, blocks: Vec<Block>) -> Section {

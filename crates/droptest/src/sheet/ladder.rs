@@ -14,28 +14,32 @@ const ROWS: usize = 5;
 /// Drops at a height for which limits are printed.
 const MOST_DROPS: usize = 20;
 /// What is written down; named as in the file of what was measured.
-const COLUMNS: [&str; 7] =
+pub(super) const COLUMNS: [&str; 7] =
     ["drop", "height_m", "distance_m", "side_m", "time_s", "peak_tilt_deg", "ended"];
 
 pub(super) fn ladder(sheet: &Sheet<'_>) -> Section {
     let how = "Five drops or more a rung; go higher only when they lie within the bands (5 % to 95 %: nine in \
-               ten should) and none surprised you. Distance and side are from below the release: along \
-               the launch, and to its left.";
+               ten should) and none surprised you. Distance is measured on the floor, from below the \
+               release straight to the middle of the body; side is how far of it is left of the launch.";
     let mut blocks = vec![Block::Text(how.into())];
-    let rung = |of| rung(of, sheet.hall.catch.kind);
-    blocks.extend(sheet.rungs.iter().map(rung));
+    blocks.extend((0..sheet.rungs.len()).map(|rung_idx| rung(sheet, rung_idx)));
     let heading = Words::from("Release ladder of ").and_name(&sheet.design.name);
     Section { heading, blocks, page: Page::New }
 }
 
-fn rung(rung: &Rung, catch: CatchKind) -> Block {
+fn rung(sheet: &Sheet<'_>, rung_idx: usize) -> Block {
+    let rung = &sheet.rungs[rung_idx];
     let name = format!("{} m", height(rung.height_m));
     let columns = COLUMNS.map(Words::exact).to_vec();
     let mut rows = Vec::new();
-    if let Some(bands) = &rung.bands {
-        rows.push(bands_row(bands, rung.height_m, catch));
+    let narrowed = sheet.seen.and_then(|seen| seen.reading.rungs[rung_idx].now);
+    if let Some(bands) = narrowed.or(rung.bands) {
+        rows.push(bands_row(&bands, rung.height_m, sheet.hall.catch.kind));
     }
-    rows.extend((1..=ROWS).map(|drop| {
+    let filled = sheet.seen.map_or_else(Vec::new, |seen| seen.rows(rung_idx, rung.height_m));
+    let first_empty = filled.len() + 1;
+    rows.extend(filled);
+    rows.extend((first_empty..=ROWS).map(|drop| {
         let cells = [drop.to_string(), height(rung.height_m)];
         let empty = vec![Words::default(); COLUMNS.len() - cells.len()];
         cells.into_iter().map(Words::from).chain(empty).collect()
