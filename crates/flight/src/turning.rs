@@ -33,6 +33,8 @@ pub(crate) struct Turning {
 pub(crate) struct Turned {
     pub(crate) axis_idx: usize,
     pub(crate) by: By,
+    /// That its angle is scaled by, rad.
+    pub(crate) unit_rad: f64,
     /// That its rate is scaled by, rad/s.
     pub(crate) unit_rad_s: f64,
 }
@@ -93,7 +95,7 @@ impl Hybrid {
         let n = turning.axes.len();
         for (k, (axis, turned)) in state.loose.iter().zip(&turning.axes).enumerate() {
             let acceleration_rad_s2 = self.articulated.accelerations_rad_s2()[axis.axis_idx];
-            rates[BODY + k] = axis.rate_rad_s;
+            rates[BODY + k] = axis.rate_rad_s / turned.unit_rad;
             rates[BODY + n + k] = acceleration_rad_s2 / turned.unit_rad_s;
         }
         self.state = state;
@@ -204,8 +206,8 @@ impl Units {
     }
 
     pub(crate) fn long(&self, state: &State, axes: &[Turned]) -> Long {
-        let angles = state.loose.iter().map(|axis| axis.angle_rad);
         let pairs = state.loose.iter().zip(axes);
+        let angles = pairs.clone().map(|(axis, turned)| axis.angle_rad / turned.unit_rad);
         let rates = pairs.map(|(axis, turned)| axis.rate_rad_s / turned.unit_rad_s);
         let body = self.scaled(state);
         let body = body.iter().copied();
@@ -224,7 +226,7 @@ impl Units {
         loose.clear();
         loose.extend(axes.iter().enumerate().map(|(k, turned)| LooseAxis {
             axis_idx: turned.axis_idx,
-            angle_rad: long[BODY + k],
+            angle_rad: long[BODY + k] * turned.unit_rad,
             rate_rad_s: long[BODY + axes.len() + k] * turned.unit_rad_s,
         }));
         state.loose = loose;
