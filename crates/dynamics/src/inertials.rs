@@ -65,7 +65,7 @@ impl<T: Number> Inertials<T> {
                 xz: second(0, 2),
                 yz: second(1, 2),
             },
-            has_products: of.iter().flatten().any(|inertial| has_products(inertial)),
+            has_products: of.iter().flatten().any(has_products),
         }
     }
 
