@@ -49,7 +49,7 @@ pub use equations::Equations;
 pub use error::FlightError;
 pub use flying::{End, Flight, Settings, fly, fly_driven};
 pub use glider::{Glider, Launch};
-pub use histories::{HingeLoad, Histories, histories, loads_at};
+pub use histories::{HingeLoad, Histories, Loaded, histories, loads_at};
 pub use launches::fly_launches;
 pub use loads::Wrench;
 pub use outlook::{Outlook, outlook};
