@@ -1,5 +1,4 @@
 //! How a chain moves when some joints follow a motion and others a torque.
-
 //!
 //! Any segment of a free chain may carry the others. The middle one does, so that what hangs on it
 //! toward the head and toward the tail is worked out side by side.
