@@ -134,7 +134,7 @@ fn twin_joint_torques_agree_with_a_second_implementation() {
         let largest = rows.iter().flat_map(of_row).fold(0.0, |most: f64, t| most.max(t.abs()));
         for row in rows {
             let time_s = row["time_s"].as_f64().unwrap();
-            let found = loads_at(&design.glider, &mut flight, time_s).unwrap().torques_nm;
+            let found = loads_at(&design.glider, &mut flight, time_s).unwrap().loads.torques_nm;
             let expected = of_row(row);
             assert_eq!(found.len(), expected.len());
             for (found, expected) in found.iter().zip(&expected) {

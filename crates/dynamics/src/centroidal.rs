@@ -1,7 +1,7 @@
 use nalgebra::Matrix3;
-use undulift_chain::Inertial;
-use undulift_lanes::{LANES, Number, Triple, f64x4, lanes};
+use undulift_lanes::{Number, Triple, f64x2, f64x4};
 
+use crate::inertials::Inertials;
 use crate::{FourFrames, Frames, Mechanics};
 
 /// A symmetric matrix.
@@ -32,79 +32,6 @@ pub struct Centroidal {
     pub inertia_kg_m2: Symmetric<f64>,
     /// Angular momentum about the centre of mass, kg·m²/s.
     pub momentum_kg_m2_s: Triple<f64>,
-}
-
-/// Masses of four neighbouring segments, side by side; lanes past the tail have none.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(crate) struct FourInertials {
-    pub(crate) mass_kg: f64x4,
-    centre_m: Triple<f64x4>,
-    /// Second moments ∫r rᵀ dm about the segment's own centre, segment axes.
-    second: Symmetric<f64x4>,
-    /// Whether any second moment stands off the diagonal.
-    has_products: bool,
-}
-
-impl FourInertials {
-    pub(crate) fn new(inertials: &[Inertial]) -> Self {
-        // J = tr(S)·1 − S, so S = ½tr(J)·1 − J.
-        let second = |i: usize, j: usize| {
-            lanes(inertials, |inertial| {
-                let inertia = &inertial.inertia_kg_m2;
-                let half_trace = if i == j { 0.5 * inertia.trace() } else { 0.0 };
-                half_trace - inertia[(i, j)]
-            })
-        };
-        let products = [second(0, 1), second(0, 2), second(1, 2)];
-        Self {
-            mass_kg: lanes(inertials, |inertial| inertial.mass_kg),
-            centre_m: Triple {
-                x: lanes(inertials, |inertial| inertial.centre_m.x),
-                y: lanes(inertials, |inertial| inertial.centre_m.y),
-                z: lanes(inertials, |inertial| inertial.centre_m.z),
-            },
-            second: Symmetric {
-                xx: second(0, 0),
-                yy: second(1, 1),
-                zz: second(2, 2),
-                xy: products[0],
-                xz: products[1],
-                yz: products[2],
-            },
-            has_products: products.iter().any(|lanes| lanes.to_array() != [0.0; LANES]),
-        }
-    }
-
-    /// R S Rᵀ: second moments about the segments' centres in root axes.
-    #[inline(always)]
-    fn turned(&self, at: &FourFrames) -> Symmetric<f64x4> {
-        let s = &self.second;
-        // The three axes' outer products add up to 1, which saves the third.
-        let along = at.x.times(s.xx - s.zz);
-        let across = at.y.times(s.yy - s.zz);
-        let mut turned = Symmetric {
-            xx: along.x * at.x.x + across.x * at.y.x + s.zz,
-            yy: along.y * at.x.y + across.y * at.y.y + s.zz,
-            zz: along.z * at.x.z + across.z * at.y.z + s.zz,
-            xy: along.x * at.x.y + across.x * at.y.y,
-            xz: along.x * at.x.z + across.x * at.y.z,
-            yz: along.y * at.x.z + across.y * at.y.z,
-        };
-        if self.has_products {
-            // xy(XYᵀ + YXᵀ) + xz(XZᵀ + ZXᵀ) + yz(YZᵀ + ZYᵀ) = sym of X aᵀ + Y bᵀ.
-            let a = at.y.times(s.xy) + at.z.times(s.xz);
-            let b = at.z.times(s.yz);
-            turned = Symmetric {
-                xx: turned.xx + (at.x.x * a.x + at.y.x * b.x) * f64x4::splat(2.0),
-                yy: turned.yy + (at.x.y * a.y + at.y.y * b.y) * f64x4::splat(2.0),
-                zz: turned.zz + (at.x.z * a.z + at.y.z * b.z) * f64x4::splat(2.0),
-                xy: turned.xy + at.x.x * a.y + at.x.y * a.x + at.y.x * b.y + at.y.y * b.x,
-                xz: turned.xz + at.x.x * a.z + at.x.z * a.x + at.y.x * b.z + at.y.z * b.x,
-                yz: turned.yz + at.x.y * a.z + at.x.z * a.y + at.y.y * b.z + at.y.z * b.y,
-            };
-        }
-        turned
-    }
 }
 
 /// Sums over segments, about the root frame's origin.
@@ -173,53 +100,28 @@ impl Mechanics {
         let head_rad_s = angular_velocity_rad_s.in_lanes();
         let mut twice_j = f64x4::splat(0.0);
         for (of, at) in self.inertials.iter().zip(&frames.fours) {
-            let arm_m = of.arm_m(at);
+            let arm_m = of.arm_m(at.axes());
             let velocity_m_s = at.front_velocity_m_s
                 + at.angular_velocity_rad_s.cross(arm_m)
                 + head_rad_s.cross(at.front_m + arm_m - centre_m)
                 - drift_m_s;
             let spin_rad_s = head_rad_s + at.angular_velocity_rad_s;
-            let own = of.turned(at).moments_of_inertia().times(spin_rad_s);
+            let own = of.turned(at.axes()).moments_of_inertia().times(spin_rad_s);
             twice_j += of.mass_kg * velocity_m_s.dot(velocity_m_s) + spin_rad_s.dot(own);
         }
         0.5 * twice_j.reduce_add()
     }
 }
 
-impl FourInertials {
-    /// Second moments about the front ends in root axes.
-    ///
-    /// - `arm_m`: from there to the centres of mass
-    #[inline(always)]
-    pub(crate) fn about_front(&self, at: &FourFrames, arm_m: Triple<f64x4>) -> Symmetric<f64x4> {
-        let moment = arm_m.times(self.mass_kg);
-        let own = self.turned(at);
-        Symmetric {
-            xx: own.xx + moment.x * arm_m.x,
-            yy: own.yy + moment.y * arm_m.y,
-            zz: own.zz + moment.z * arm_m.z,
-            xy: own.xy + moment.x * arm_m.y,
-            xz: own.xz + moment.x * arm_m.z,
-            yz: own.yz + moment.y * arm_m.z,
-        }
-    }
-
-    /// From the front end to the centre of mass in root axes, m.
-    #[inline(always)]
-    pub(crate) fn arm_m(&self, at: &FourFrames) -> Triple<f64x4> {
-        at.x.times(self.centre_m.x) + at.y.times(self.centre_m.y) + at.z.times(self.centre_m.z)
-    }
-}
-
 impl Sums {
     #[inline(always)]
-    fn add(&mut self, of: &FourInertials, at: &FourFrames) {
-        let arm_m = of.arm_m(at);
+    fn add(&mut self, of: &Inertials<f64x4>, at: &FourFrames) {
+        let arm_m = of.arm_m(at.axes());
         let place_m = at.front_m + arm_m;
         let spin_rad_s = at.angular_velocity_rad_s;
         let velocity_m_s = at.front_velocity_m_s + spin_rad_s.cross(arm_m);
         let moment = place_m.times(of.mass_kg);
-        let own = of.turned(at);
+        let own = of.turned(at.axes());
         self.moment = self.moment + moment;
         self.momentum = self.momentum + velocity_m_s.times(of.mass_kg);
         self.angular_momentum = self.angular_momentum
@@ -251,6 +153,13 @@ impl<T: Number> std::ops::Add for Symmetric<T> {
 }
 
 impl<T: Number> Symmetric<T> {
+    /// The same three times on the diagonal.
+    #[inline(always)]
+    pub(crate) fn diagonal(value: T) -> Self {
+        let zero = T::splat(0.0);
+        Self { xx: value, yy: value, zz: value, xy: zero, xz: zero, yz: zero }
+    }
+
     /// tr(S)·1 − S: moments of inertia from second moments.
     #[inline(always)]
     pub fn moments_of_inertia(self) -> Self {
@@ -273,13 +182,23 @@ impl<T: Number> Symmetric<T> {
             self.xz * v.x + self.yz * v.y + self.zz * v.z,
         )
     }
+
+    /// Takes away u vᵀ, which must be symmetric.
+    #[inline(always)]
+    pub(crate) fn subtract_outer(&mut self, u: Triple<T>, v: Triple<T>) {
+        self.xx = self.xx - u.x * v.x;
+        self.yy = self.yy - u.y * v.y;
+        self.zz = self.zz - u.z * v.z;
+        self.xy = self.xy - u.x * v.y;
+        self.xz = self.xz - u.x * v.z;
+        self.yz = self.yz - u.y * v.z;
+    }
 }
 
-impl Symmetric<f64x4> {
+impl Symmetric<f64x2> {
     /// Takes one lane.
-    #[inline(always)]
     pub(crate) fn lane(&self, lane: usize) -> Symmetric<f64> {
-        let of = |four: &f64x4| four.as_array_ref()[lane];
+        let of = |two: &f64x2| two.as_array_ref()[lane];
         Symmetric {
             xx: of(&self.xx),
             yy: of(&self.yy),
@@ -289,7 +208,9 @@ impl Symmetric<f64x4> {
             yz: of(&self.yz),
         }
     }
+}
 
+impl Symmetric<f64x4> {
     fn over_lanes(self) -> Symmetric<f64> {
         Symmetric {
             xx: self.xx.reduce_add(),
@@ -316,17 +237,6 @@ impl Symmetric<f64> {
         };
         let determinant = self.xx * cofactors.xx + self.xy * cofactors.xy + self.xz * cofactors.xz;
         cofactors.times(right).times(1.0 / determinant)
-    }
-
-    /// Takes away u vᵀ, which must be symmetric.
-    #[inline(always)]
-    pub(crate) fn subtract_outer(&mut self, u: Triple<f64>, v: Triple<f64>) {
-        self.xx -= u.x * v.x;
-        self.yy -= u.y * v.y;
-        self.zz -= u.z * v.z;
-        self.xy -= u.x * v.y;
-        self.xz -= u.x * v.z;
-        self.yz -= u.y * v.z;
     }
 
     /// All nine entries.

@@ -1,14 +1,14 @@
 use undulift_chain::{Axis, Chain, joint_axes};
 use undulift_lanes::{LANES, Triple, f64x4, sin_cos_all};
 
-use crate::centroidal::FourInertials;
+use crate::inertials::Inertials;
 
 /// A chain's mechanics as flat arrays, made once per design.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Mechanics {
     joints: Vec<JointSlots>,
     n_axes: usize,
-    pub(crate) inertials: Vec<FourInertials>,
+    pub(crate) inertials: Vec<Inertials<f64x4>>,
     pub(crate) mass_kg: f64,
 }
 
@@ -73,10 +73,12 @@ impl Mechanics {
                 length_ahead_m: segment.length_m,
             })
             .collect();
+        let all: Vec<_> = chain.inertials().iter().map(Some).collect();
+        let fours = all.chunks(LANES);
         Self {
             joints,
             n_axes: axes.len(),
-            inertials: chain.inertials().chunks(LANES).map(FourInertials::new).collect(),
+            inertials: fours.map(Inertials::new).collect(),
             mass_kg: chain.mass_kg(),
         }
     }
@@ -114,6 +116,50 @@ impl Mechanics {
             }
             frame.store(fours, joint_idx + 1);
         }
+    }
+}
+
+impl FourFrames {
+    /// The segments' x, y and z axes.
+    #[inline(always)]
+    pub(crate) fn axes(&self) -> [Triple<f64x4>; 3] {
+        [self.x, self.y, self.z]
+    }
+}
+
+impl Frames {
+    /// A segment's x, y and z axes.
+    pub(crate) fn axes(&self, segment_idx: usize) -> [Triple<f64>; 3] {
+        [self.x(segment_idx), self.y(segment_idx), self.z(segment_idx)]
+    }
+
+    /// A segment's x axis.
+    #[inline(always)]
+    pub(crate) fn x(&self, segment_idx: usize) -> Triple<f64> {
+        self.fours[segment_idx / LANES].x.lane(segment_idx % LANES)
+    }
+
+    /// A segment's y axis.
+    #[inline(always)]
+    pub(crate) fn y(&self, segment_idx: usize) -> Triple<f64> {
+        self.fours[segment_idx / LANES].y.lane(segment_idx % LANES)
+    }
+
+    /// A segment's z axis.
+    #[inline(always)]
+    pub(crate) fn z(&self, segment_idx: usize) -> Triple<f64> {
+        self.fours[segment_idx / LANES].z.lane(segment_idx % LANES)
+    }
+
+    /// Middle of a segment's front end, m.
+    #[inline(always)]
+    pub(crate) fn front_m(&self, segment_idx: usize) -> Triple<f64> {
+        self.fours[segment_idx / LANES].front_m.lane(segment_idx % LANES)
+    }
+
+    /// A segment's angular velocity with the head held still, rad/s.
+    pub(crate) fn angular_velocity_rad_s(&self, segment_idx: usize) -> Triple<f64> {
+        self.fours[segment_idx / LANES].angular_velocity_rad_s.lane(segment_idx % LANES)
     }
 }
 

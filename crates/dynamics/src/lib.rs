@@ -9,8 +9,10 @@
 mod articulated;
 mod centroidal;
 mod frames;
+mod inertials;
 mod newton_euler;
 mod reduced;
+mod rungs;
 
 pub use articulated::{Articulated, Drive, HeadAcceleration};
 pub use centroidal::{Centroidal, Symmetric};

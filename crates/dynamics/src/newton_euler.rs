@@ -1,7 +1,8 @@
 //! Forces in the joints of a chain whose joint motion is known.
 
 use nalgebra::{Matrix3, Vector3};
-use undulift_chain::{Axis, AxisOf, Chain, joint_axes};
+use undulift_chain::{Axis, AxisOf, Chain, Inertial, joint_axes};
+use undulift_lanes::sin_cos_all;
 
 /// Joint motion at one instant, listed by axis: yaw axes from the head, then pitch axes.
 #[derive(Debug, Clone, Copy)]
@@ -66,6 +67,15 @@ pub struct JointLoads {
     pub head_angular_acceleration_rad_s2: Vector3<f64>,
 }
 
+/// How one axis stands and moves; one that a joint lacks stands at 0.
+#[derive(Debug, Clone, Copy)]
+struct AxisMotion {
+    sine: f64,
+    cosine: f64,
+    rate_rad_s: f64,
+    acceleration_rad_s2: f64,
+}
+
 /// One segment's frame and motion in root axes.
 #[derive(Debug, Clone, Copy)]
 struct Link {
@@ -77,6 +87,9 @@ struct Link {
     /// Axes of the joint ahead of this segment, along positive angles.
     yaw_axis: Vector3<f64>,
     pitch_axis: Vector3<f64>,
+    /// From the front end to the centre of mass, and moments of inertia about that.
+    arm_m: Vector3<f64>,
+    inertia_kg_m2: Matrix3<f64>,
 }
 
 /// What a segment needs from outside and from its joints.
@@ -112,12 +125,11 @@ pub fn joint_loads(
         Held::Free { head_rad_s } => head_rad_s,
         Held::Clamped { .. } => Vector3::zeros(),
     };
-    let still = Vector3::zeros();
-    let links = links(chain, &axes, motion, head_rad_s, [still, still]);
+    let mut links = links(chain, &axes, motion, head_rad_s);
     let needs = needs(chain, &links, gravity_m_s2, outside);
     let Held::Clamped { segment_idx } = held else {
         let [linear, angular] = head_accelerations(chain, &links, &needs);
-        let links = self::links(chain, &axes, motion, head_rad_s, [linear, angular]);
+        links.iter_mut().for_each(|link| link.accelerate(linear, angular));
         let needs = self::needs(chain, &links, gravity_m_s2, outside);
         let mut loads = passed_down(chain, &axes, &links, &needs, 0);
         loads.head_acceleration_m_s2 = linear;
@@ -127,42 +139,56 @@ pub fn joint_loads(
     passed_down(chain, &axes, &links, &needs, segment_idx)
 }
 
-/// Goes down the chain: frames, angular velocities and accelerations.
+/// Goes down the chain from a head that doesn't accelerate: frames, angular velocities and
+/// accelerations.
 fn links(
     chain: &Chain,
     axes: &[AxisOf],
     motion: JointMotion<'_>,
     head_rad_s: Vector3<f64>,
-    [head_linear, head_angular]: [Vector3<f64>; 2],
 ) -> Vec<Link> {
     let n = chain.n_segments();
-    // Angle, rate and acceleration of each joint's two axes, 0 where there is none.
-    let mut moves = vec![[[0.0; 3]; 2]; n - 1];
+    // Of each joint's two axes, 0 where there is none.
+    let mut moves = vec![[AxisMotion::NONE; 2]; n - 1];
+    let n_axes = axes.len();
+    let (mut sines, mut cosines) = (vec![0.0; n_axes], vec![0.0; n_axes]);
+    sin_cos_all(&motion.angles_rad[..n_axes], &mut sines, &mut cosines);
     for (k, of) in axes.iter().enumerate() {
         let which = if of.axis == Axis::Yaw { 0 } else { 1 };
-        moves[of.joint_idx][which] =
-            [motion.angles_rad[k], motion.rates_rad_s[k], motion.accelerations_rad_s2[k]];
+        moves[of.joint_idx][which] = AxisMotion {
+            sine: sines[k],
+            cosine: cosines[k],
+            rate_rad_s: motion.rates_rad_s[k],
+            acceleration_rad_s2: motion.accelerations_rad_s2[k],
+        };
     }
     let mut link = Link {
         rotation: Matrix3::identity(),
         front_m: Vector3::zeros(),
         spin_rad_s: head_rad_s,
-        angular_acceleration: head_angular,
-        front_acceleration: head_linear,
+        angular_acceleration: Vector3::zeros(),
+        front_acceleration: Vector3::zeros(),
         yaw_axis: Vector3::zeros(),
         pitch_axis: Vector3::zeros(),
+        arm_m: Vector3::zeros(),
+        inertia_kg_m2: Matrix3::zeros(),
     };
-    let mut links = vec![link];
-    for (segment, [yaw, pitch]) in chain.segments().iter().zip(moves) {
+    let mut links = vec![link.loaded(&chain.inertials()[0])];
+    let behind = chain.segments().iter().zip(moves).zip(&chain.inertials()[1..]);
+    for ((segment, [yaw, pitch]), inertial) in behind {
         link = link.next(segment.length_m, yaw, pitch);
-        links.push(link);
+        links.push(link.loaded(inertial));
     }
     links
 }
 
+impl AxisMotion {
+    const NONE: Self = Self { sine: 0.0, cosine: 1.0, rate_rad_s: 0.0, acceleration_rad_s2: 0.0 };
+}
+
 impl Link {
-    /// The segment behind, from angle, rate and acceleration about the joint's axes.
-    fn next(&self, length_m: f64, yaw: [f64; 3], pitch: [f64; 3]) -> Self {
+    /// The segment behind, from what the joint's axes do.
+    fn next(&self, length_m: f64, yaw: AxisMotion, pitch: AxisMotion) -> Self {
         let to_rear_m = self.rotation.column(0) * -length_m;
         let mut next = *self;
         next.front_m += to_rear_m;
@@ -170,21 +196,33 @@ impl Link {
         let [mut x, mut y, mut z] = [0, 1, 2].map(|k| self.rotation.column(k).into_owned());
         next.yaw_axis = z;
         next.turn(z, yaw);
-        let (sine, cosine) = yaw[0].sin_cos();
-        (x, y) = (x * cosine + y * sine, y * cosine - x * sine);
+        (x, y) = (x * yaw.cosine + y * yaw.sine, y * yaw.cosine - x * yaw.sine);
         // Positive pitch turns about −y, so that the nose comes up.
         next.pitch_axis = -y;
         next.turn(-y, pitch);
-        let (sine, cosine) = pitch[0].sin_cos();
-        (x, z) = (x * cosine + z * sine, z * cosine - x * sine);
+        (x, z) = (x * pitch.cosine + z * pitch.sine, z * pitch.cosine - x * pitch.sine);
         next.rotation = Matrix3::from_columns(&[x, y, z]);
         next
     }
 
+    /// With its mass.
+    fn loaded(&self, inertial: &Inertial) -> Self {
+        let turned = self.rotation * inertial.inertia_kg_m2 * self.rotation.transpose();
+        Self { arm_m: self.rotation * inertial.centre_m, inertia_kg_m2: turned, ..*self }
+    }
+
     /// Adds a turn about an axis that moves with what is ahead of it.
-    fn turn(&mut self, axis: Vector3<f64>, [_, rate, acceleration]: [f64; 3]) {
-        self.angular_acceleration += axis * acceleration + self.spin_rad_s.cross(&axis) * rate;
-        self.spin_rad_s += axis * rate;
+    fn turn(&mut self, axis: Vector3<f64>, motion: AxisMotion) {
+        let turning = axis * motion.rate_rad_s;
+        self.angular_acceleration +=
+            axis * motion.acceleration_rad_s2 + self.spin_rad_s.cross(&turning);
+        self.spin_rad_s += turning;
+    }
+
+    /// Adds what a head's acceleration carries along.
+    fn accelerate(&mut self, linear: Vector3<f64>, angular: Vector3<f64>) {
+        self.front_acceleration += linear + angular.cross(&self.front_m);
+        self.angular_acceleration += angular;
     }
 
     /// Acceleration of a point of the segment, given from its front end.
@@ -208,8 +246,7 @@ fn needs(
         .zip(links)
         .zip(outside)
         .map(|((inertial, link), outside)| {
-            let arm_m = link.rotation * inertial.centre_m;
-            let inertia = link.rotation * inertial.inertia_kg_m2 * link.rotation.transpose();
+            let Link { arm_m, inertia_kg_m2: inertia, .. } = *link;
             let spin = link.spin_rad_s;
             let inertial_n = inertial.mass_kg * (link.acceleration_at(arm_m) - gravity_m_s2);
             let own_nm = inertia * link.angular_acceleration + spin.cross(&(inertia * spin));
@@ -229,18 +266,15 @@ fn head_accelerations(chain: &Chain, links: &[Link], needs: &[Need]) -> [Vector3
     let mass_kg = chain.mass_kg();
     let centres = || {
         let parts = chain.inertials().iter().zip(links);
-        parts.map(|(inertial, link)| {
-            (inertial, link, link.front_m + link.rotation * inertial.centre_m)
-        })
+        parts.map(|(inertial, link)| (inertial, link, link.front_m + link.arm_m))
     };
     let centre_m: Vector3<f64> =
         centres().map(|(inertial, _, at)| at * inertial.mass_kg).sum::<Vector3<f64>>() / mass_kg;
     let inertia: Matrix3<f64> = centres()
         .map(|(inertial, link, at_m)| {
             let arm_m = at_m - centre_m;
-            let about_own = link.rotation * inertial.inertia_kg_m2 * link.rotation.transpose();
             let far = Matrix3::identity() * arm_m.norm_squared() - arm_m * arm_m.transpose();
-            about_own + far * inertial.mass_kg
+            link.inertia_kg_m2 + far * inertial.mass_kg
         })
         .sum();
     let force_n: Vector3<f64> = needs.iter().map(|need| need.force_n).sum();

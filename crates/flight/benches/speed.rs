@@ -1,8 +1,9 @@
 //! What a derivative and a flight cost. `cargo bench -p undulift-flight`.
 
 use divan::Bencher;
+use rayon::prelude::*;
 use undulift_flight::{
-    Differs, Equations, Settings, State, draw, fly, fly_driven, fly_launches, release, summary,
+    Differs, Equations, Settings, State, draw, fly, fly_driven, release, summary,
 };
 use undulift_gait::{Commands, Instant};
 
@@ -77,15 +78,16 @@ fn batch(bencher: Bencher, threads: usize) {
     const LAUNCHES: usize = 512;
     let glider = robot(16);
     let differs = [Differs::Factor { sd: 0.05 }, Differs::Normal { sd: 0.05 }];
-    let make = |launch: usize| {
+    let fly_one = |launch: usize| {
         let changes = draw(&differs, 1, launch as u64);
         let mut glider = glider.clone();
         glider.launch.speed_m_s = changes[0].of(glider.launch.speed_m_s);
         glider.launch.roll_rad = changes[1].of(glider.launch.roll_rad);
-        glider
+        let mut flight = fly(&glider, &Settings::default()).expect("flies");
+        summary(&glider, &mut flight)
     };
     let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build().expect("threads");
     bencher.counter(divan::counter::ItemsCount::new(LAUNCHES)).bench_local(|| {
-        pool.install(|| fly_launches(LAUNCHES, &Settings::default(), make, || true))
+        pool.install(|| (0..LAUNCHES).into_par_iter().map(fly_one).collect::<Vec<_>>())
     });
 }

@@ -7,6 +7,7 @@ use undulift_gait::Instant;
 use crate::driving::Driving;
 use crate::flying::{Look, MOST_STEPS};
 use crate::integration::{Following, Loose, Steps, Watch, integrate};
+use crate::stepping::{self, Integrated};
 use crate::trajectory::Course;
 use crate::turning::Turning;
 use crate::{Drives, End, Equations, Flight, FlightError, Glider, Settings, State, Trajectory};
@@ -32,7 +33,7 @@ pub(crate) struct Flying {
     pub(crate) looks: Vec<Look>,
     pub(crate) inverted_at_s: Option<f64>,
     steps: u32,
-    /// That the last piece with loose axes began with, s.
+    /// That the last piece with loose axes had best begun with, s.
     first_step_s: f64,
 }
 
@@ -123,24 +124,26 @@ impl Flying {
         let mut steps = self.steps_of(from_s, until_s);
         let any_loose = turning.is_some();
         let inside_s = watch.inside_s;
-        let (course, stats) = match (turning, &self.driving) {
+        let (course, tried) = match (turning, &mut self.driving) {
             (Some(turning), Some(Driving { hybrid, .. })) => {
-                let system = Loose { watch, hybrid, turning: &turning };
                 // Pieces are short, and one is like the next.
                 steps.first_s = self.first_step_s;
-                let (model, stats) = integrate(system, steps, units.long(start, &turning.axes))?;
-                (Course::Loose(model, turning), stats)
+                let start = units.long(start, &turning.axes);
+                let mut system = Loose { watch, hybrid, turning: &turning };
+                let Integrated { path, tried, first_s } =
+                    stepping::integrate(&mut system, steps, start)?;
+                self.first_step_s = first_s;
+                (Course::Loose(path, turning), tried)
             }
             _ => {
-                let (model, stats) = integrate(Following(watch), steps, units.scaled(start))?;
-                (Course::Following(model), stats)
+                let (model, tried) = integrate(Following(watch), steps, units.scaled(start))?;
+                (Course::Following(model), tried)
             }
         };
-        self.steps += stats.accepted_steps + stats.rejected_steps;
+        self.steps += tried;
         self.trajectory.push(from_s, inside_s, course);
         let mut ends = ends.into_inner();
         if any_loose {
-            self.first_step_s = ends.first().map_or(0.0, |look| look.time_s - from_s);
             thin_out(&mut ends, from_s, steps.longest_s / LOOKS_PER_STEP);
         }
         Ok(ends)
@@ -173,7 +176,7 @@ impl Flying {
             trajectory: self.trajectory,
             steps: self.steps,
             equations: self.equations.into_inner(),
-            hybrid: self.driving.map(|driving| driving.hybrid.into_inner()),
+            hybrid: self.driving.map(|driving| driving.hybrid),
             looks: self.looks,
         }
     }

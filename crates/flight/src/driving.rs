@@ -1,7 +1,5 @@
 //! Drives on their way through a flight: frames, faults, voltage.
 
-use std::cell::RefCell;
-
 use undulift_chain::Chain;
 use undulift_gait::{Instant, Motion};
 use undulift_servo::{Load, Servo, Supply, Winding};
@@ -15,14 +13,17 @@ use crate::{Drives, Equations, Fault, Mode, State};
 /// Between looks at the battery where firmware gives no frames, s.
 const FRAME_S: f64 = 0.02;
 
-/// Unit of a driven axis's rate, in ω₀/full_at: so much that a driven flight still errs less than a
-/// commanded one does at the same tolerance (measured: 0.04 mm against 1 mm in 11 m).
-const RATE_UNITS: f64 = 10.0;
+/// Units of a driven axis's angle, rad, and of its rate, in ω₀/full_at. Its loop takes errors away
+/// again, so they may be larger than the body's, which stay: so much that a driven flight still errs
+/// less than a commanded one does at the same tolerance (measured on five designs: 0.1 to 2 mm
+/// against 0.3 to 4 mm, and less than its own commanded flight on each).
+const ANGLE_UNIT_RAD: f64 = 3.0;
+const RATE_UNITS: f64 = 30.0;
 
 /// Drives on their way.
 #[derive(Debug)]
 pub(crate) struct Driving {
-    pub(crate) hybrid: RefCell<Hybrid>,
+    pub(crate) hybrid: Hybrid,
     servos: Vec<Servo>,
     /// Of each servo, at the air's temperature, Ω.
     windings_ohm: Vec<f64>,
@@ -48,7 +49,7 @@ impl Driving {
         faults.sort_by(|a, b| b.at_s.total_cmp(&a.at_s));
         let winding_ohm = |servo| Winding::new(servo, air_k).resistance_ohm();
         Self {
-            hybrid: RefCell::new(Hybrid::new(chain, &drives.servos, drives.modes.len())),
+            hybrid: Hybrid::new(chain, &drives.servos, drives.modes.len()),
             servos: drives.servos.clone(),
             windings_ohm: drives.servos.iter().map(winding_ohm).collect(),
             modes: drives.modes.clone(),
@@ -97,7 +98,7 @@ impl Driving {
         let moves =
             |axis: &&LooseAxis| self.modes[axis.axis_idx] == Mode::Locked && axis.rate_rad_s != 0.0;
         if state.loose.iter().any(|axis| moves(&axis)) {
-            self.hybrid.get_mut().stop(equations, &self.modes, at, state);
+            self.hybrid.stop(equations, &self.modes, at, state);
         }
         if self.has_frames() && at.time_s >= self.frame as f64 * self.frame_s {
             self.start_frame(equations.motion(at), state);
@@ -151,13 +152,14 @@ impl Driving {
 
     /// - `free_rad_s`: unit of the rate of an axis that nothing holds
     fn turned(&self, axis_idx: usize, free_rad_s: f64) -> Turned {
-        let mut unit_rad_s = free_rad_s;
+        let (mut unit_rad, mut unit_rad_s) = (1.0, free_rad_s);
         let by = match self.modes[axis_idx] {
             Mode::Driven { servo_idx } => {
                 let servo = &self.servos[servo_idx];
                 let own_v = servo.at_voltage_v;
                 // A loop takes away an error of rate in some full_at/ω₀, before it moves much.
                 let loop_rad_s = servo.no_load_speed_rad_s / servo.position_loop.full_at_rad;
+                unit_rad = ANGLE_UNIT_RAD;
                 unit_rad_s = free_rad_s.max(RATE_UNITS * loop_rad_s);
                 let supply = Supply {
                     voltage_v: self.voltage_v.unwrap_or(own_v),
@@ -171,6 +173,6 @@ impl Driving {
             Mode::Limp => By::Nothing,
             Mode::Locked | Mode::Commanded => By::Lock,
         };
-        Turned { axis_idx, by, unit_rad_s }
+        Turned { axis_idx, by, unit_rad, unit_rad_s }
     }
 }

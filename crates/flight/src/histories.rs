@@ -102,20 +102,16 @@ pub fn histories(
     Ok(found)
 }
 
-/// Loads in the joints of a flying glider at one instant.
+/// Loads in the joints of a flying glider at one instant, with how its axes turn.
 ///
 /// # Errors
 ///
 /// [`FlightError::Impulses`] for a gait table with straight lines between its rows.
-pub fn loads_at(
-    glider: &Glider,
-    flight: &mut Flight,
-    time_s: f64,
-) -> Result<JointLoads, FlightError> {
+pub fn loads_at(glider: &Glider, flight: &mut Flight, time_s: f64) -> Result<Loaded, FlightError> {
     refuse_impulses(&glider.gait)?;
     let state = flight.trajectory.state(time_s);
     let at = flight.trajectory.instant(time_s);
-    Ok(flight.joint_loads(&glider.chain, at, &state).loads)
+    Ok(flight.joint_loads(&glider.chain, at, &state))
 }
 
 /// Straight lines between rows jump in rate, so their accelerations are impulses.
@@ -127,10 +123,14 @@ pub(crate) fn refuse_impulses(gait: &Gait) -> Result<(), FlightError> {
 }
 
 /// One instant of all joints.
-struct Loaded {
-    loads: JointLoads,
-    rates_rad_s: Vec<f64>,
-    accelerations_rad_s2: Vec<f64>,
+#[derive(Debug, Clone, PartialEq)]
+pub struct Loaded {
+    /// What goes through them.
+    pub loads: JointLoads,
+    /// By axis, rad/s.
+    pub rates_rad_s: Vec<f64>,
+    /// By axis, rad/s².
+    pub accelerations_rad_s2: Vec<f64>,
 }
 
 impl Histories {

@@ -1,22 +1,17 @@
 //! One smooth piece of a flight, integrated.
 
 use std::cell::RefCell;
-use std::ops::Mul;
 
-use nalgebra::allocator::Allocator;
-use nalgebra::{DefaultAllocator, Dim, OVector};
 use ode_solvers::continuous_output_model::ContinuousOutputModel;
-use ode_solvers::dop_shared::{IntegrationError, OutputType, Stats, System};
+use ode_solvers::dop_shared::{IntegrationError, OutputType, System};
 use ode_solvers::dopri5::Dopri5;
 use undulift_gait::Instant;
 
 use crate::flying::{Look, MOST_STEPS};
 use crate::state::Scaled;
-use crate::turning::{Hybrid, Long, Turning};
+use crate::stepping::Evolves;
+use crate::turning::{Hybrid, Turning};
 use crate::{Equations, FlightError, Settings, State};
-
-/// What the integrator leaves of a piece.
-type Model<D> = ContinuousOutputModel<f64, OVector<f64, D>>;
 
 /// What a piece is watched for.
 pub(crate) struct Watch<'a> {
@@ -45,7 +40,7 @@ pub(crate) struct Following<'a>(pub(crate) Watch<'a>);
 /// Some don't.
 pub(crate) struct Loose<'a> {
     pub(crate) watch: Watch<'a>,
-    pub(crate) hybrid: &'a RefCell<Hybrid>,
+    pub(crate) hybrid: &'a mut Hybrid,
     pub(crate) turning: &'a Turning,
 }
 
@@ -79,29 +74,26 @@ impl System<f64, Scaled> for Following<'_> {
     }
 }
 
-impl System<f64, Long> for Loose<'_> {
-    fn system(&self, time_s: f64, state: &Long, rates: &mut Long) {
+impl Evolves for Loose<'_> {
+    fn rates(&mut self, time_s: f64, state: &[f64], rates: &mut [f64]) {
         let mut equations = self.watch.equations.borrow_mut();
         let at = self.watch.at(time_s);
-        self.hybrid.borrow_mut().derivative(&mut equations, self.turning, at, state, rates);
+        self.hybrid.derivative(&mut equations, self.turning, at, state, rates);
     }
 
-    fn solout(&mut self, time_s: f64, long: &Long, _rates: &Long) -> bool {
+    fn stops(&mut self, time_s: f64, state: &[f64]) -> bool {
         let units = *self.watch.equations.borrow().units();
-        self.watch.stops(time_s, &units.long_state(long, &self.turning.axes))
+        self.watch.stops(time_s, &units.long_state(state, &self.turning.axes))
     }
 }
 
-/// Integrates a piece.
-pub(crate) fn integrate<D: Dim>(
-    system: impl System<f64, OVector<f64, D>>,
+/// Integrates a piece over which all joints follow their commands; returns what the integrator
+/// leaves of it and how many steps were tried.
+pub(crate) fn integrate(
+    system: Following<'_>,
     steps: Steps,
-    start: OVector<f64, D>,
-) -> Result<(Model<D>, Stats), FlightError>
-where
-    OVector<f64, D>: Mul<f64, Output = OVector<f64, D>>,
-    DefaultAllocator: Allocator<D>,
-{
+    start: Scaled,
+) -> Result<(ContinuousOutputModel<f64, Scaled>, u32), FlightError> {
     let mut stepper = Dopri5::from_param(
         system,
         steps.from_s,
@@ -131,5 +123,5 @@ where
         }
     };
     let stats = stepper.integrate_with_continuous_output_model(&mut model).map_err(refused)?;
-    Ok((model, stats))
+    Ok((model, stats.accepted_steps + stats.rejected_steps))
 }

@@ -2,8 +2,9 @@ use ode_solvers::continuous_output_model::ContinuousOutputModel;
 use undulift_gait::Instant;
 
 use crate::State;
+use crate::path::Path;
 use crate::state::{Scaled, Units};
-use crate::turning::{Long, Turning};
+use crate::turning::Turning;
 
 /// The integrator's own interpolant over a whole flight.
 #[derive(Debug, Clone)]
@@ -26,7 +27,7 @@ pub(crate) enum Course {
     /// All joints follow their commands.
     Following(ContinuousOutputModel<f64, Scaled>),
     /// Some don't.
-    Loose(ContinuousOutputModel<f64, Long>, Turning),
+    Loose(Path, Turning),
 }
 
 impl Trajectory {
@@ -65,11 +66,7 @@ impl Trajectory {
                 let (first_s, last_s) = model.bounds();
                 self.units.state(&model.evaluate(time_s.clamp(first_s, last_s)).expect(INSIDE))
             }
-            Course::Loose(model, turning) => {
-                let (first_s, last_s) = model.bounds();
-                let long = model.evaluate(time_s.clamp(first_s, last_s)).expect(INSIDE);
-                self.units.long_state(&long, &turning.axes)
-            }
+            Course::Loose(path, turning) => self.units.long_state(&path.at(time_s), &turning.axes),
         }
     }
 }

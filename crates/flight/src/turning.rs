@@ -3,7 +3,7 @@
 //! Torque is known of some axes, motion of the others; articulated bodies give the accelerations of
 //! both. Servos keep the temperature of the air.
 
-use nalgebra::{DVector, Vector3};
+use nalgebra::Vector3;
 use undulift_chain::Chain;
 use undulift_dynamics::{Articulated, Drive, Outside};
 use undulift_gait::{Instant, Motion};
@@ -13,10 +13,7 @@ use crate::equations::Moving;
 use crate::state::{LooseAxis, Scaled, Units};
 use crate::{Equations, Mode, State, Wrench};
 
-/// The scaled state with loose axes: the body's thirteen numbers, all angles, all rates.
-pub(crate) type Long = DVector<f64>;
-
-/// Numbers of the body.
+/// Numbers of the body in a long state: the scaled state, then angles of all loose axes, then rates.
 const BODY: usize = 13;
 
 /// What turns the loose axes over one smooth piece of a flight.
@@ -33,6 +30,8 @@ pub(crate) struct Turning {
 pub(crate) struct Turned {
     pub(crate) axis_idx: usize,
     pub(crate) by: By,
+    /// That its angle is scaled by, rad.
+    pub(crate) unit_rad: f64,
     /// That its rate is scaled by, rad/s.
     pub(crate) unit_rad_s: f64,
 }
@@ -80,8 +79,8 @@ impl Hybrid {
         equations: &mut Equations,
         turning: &Turning,
         at: Instant,
-        long: &Long,
-        rates: &mut Long,
+        long: &[f64],
+        rates: &mut [f64],
     ) {
         let mut state = std::mem::take(&mut self.state);
         let units = *equations.units();
@@ -89,11 +88,11 @@ impl Hybrid {
         let moving = equations.moving(at, &state);
         let loads = self.accelerate(equations, turning, at, &moving, &state);
         let body = equations.body_rates(&state, &moving, loads);
-        rates.rows_mut(0, BODY).copy_from(&body);
+        rates[..BODY].copy_from_slice(body.as_slice());
         let n = turning.axes.len();
         for (k, (axis, turned)) in state.loose.iter().zip(&turning.axes).enumerate() {
             let acceleration_rad_s2 = self.articulated.accelerations_rad_s2()[axis.axis_idx];
-            rates[BODY + k] = axis.rate_rad_s;
+            rates[BODY + k] = axis.rate_rad_s / turned.unit_rad;
             rates[BODY + n + k] = acceleration_rad_s2 / turned.unit_rad_s;
         }
         self.state = state;
@@ -203,28 +202,28 @@ impl Units {
         self.speed_m_s / self.length_m
     }
 
-    pub(crate) fn long(&self, state: &State, axes: &[Turned]) -> Long {
-        let angles = state.loose.iter().map(|axis| axis.angle_rad);
+    pub(crate) fn long(&self, state: &State, axes: &[Turned]) -> Vec<f64> {
         let pairs = state.loose.iter().zip(axes);
+        let angles = pairs.clone().map(|(axis, turned)| axis.angle_rad / turned.unit_rad);
         let rates = pairs.map(|(axis, turned)| axis.rate_rad_s / turned.unit_rad_s);
         let body = self.scaled(state);
         let body = body.iter().copied();
-        Long::from_iterator(BODY + 2 * state.loose.len(), body.chain(angles).chain(rates))
+        body.chain(angles).chain(rates).collect()
     }
 
-    pub(crate) fn long_state(&self, long: &Long, axes: &[Turned]) -> State {
+    pub(crate) fn long_state(&self, long: &[f64], axes: &[Turned]) -> State {
         let mut state = State::default();
         self.read_long(long, axes, &mut state);
         state
     }
 
-    pub(crate) fn read_long(&self, long: &Long, axes: &[Turned], state: &mut State) {
+    pub(crate) fn read_long(&self, long: &[f64], axes: &[Turned], state: &mut State) {
         let mut loose = std::mem::take(&mut state.loose);
-        *state = self.state(&Scaled::from_column_slice(&long.as_slice()[..BODY]));
+        *state = self.state(&Scaled::from_column_slice(&long[..BODY]));
         loose.clear();
         loose.extend(axes.iter().enumerate().map(|(k, turned)| LooseAxis {
             axis_idx: turned.axis_idx,
-            angle_rad: long[BODY + k],
+            angle_rad: long[BODY + k] * turned.unit_rad,
             rate_rad_s: long[BODY + axes.len() + k] * turned.unit_rad_s,
         }));
         state.loose = loose;

@@ -1,6 +1,6 @@
 use std::ops::{Add, Mul, Neg, Sub};
 
-use wide::f64x4;
+use wide::{f64x2, f64x4};
 
 /// Numbers that one vector register holds in the inner loop.
 pub const LANES: usize = 4;
@@ -11,12 +11,32 @@ pub trait Number:
 {
     /// The same value in every lane.
     fn splat(value: f64) -> Self;
+
+    /// Each lane, counted from 0, by itself.
+    fn filled(value: impl FnMut(usize) -> f64) -> Self;
 }
 
 impl Number for f64 {
     #[inline(always)]
     fn splat(value: f64) -> Self {
         value
+    }
+
+    #[inline(always)]
+    fn filled(mut value: impl FnMut(usize) -> f64) -> Self {
+        value(0)
+    }
+}
+
+impl Number for f64x2 {
+    #[inline(always)]
+    fn splat(value: f64) -> Self {
+        f64x2::splat(value)
+    }
+
+    #[inline(always)]
+    fn filled(value: impl FnMut(usize) -> f64) -> Self {
+        f64x2::new(std::array::from_fn(value))
     }
 }
 
@@ -25,9 +45,14 @@ impl Number for f64x4 {
     fn splat(value: f64) -> Self {
         f64x4::splat(value)
     }
+
+    #[inline(always)]
+    fn filled(value: impl FnMut(usize) -> f64) -> Self {
+        f64x4::new(std::array::from_fn(value))
+    }
 }
 
 /// A register filled from up to [`LANES`] items; lanes without one hold 0.
 pub fn lanes<I>(items: &[I], value: impl Fn(&I) -> f64) -> f64x4 {
-    f64x4::new(std::array::from_fn(|lane| items.get(lane).map_or(0.0, &value)))
+    f64x4::filled(|lane| items.get(lane).map_or(0.0, &value))
 }

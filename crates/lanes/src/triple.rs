@@ -1,7 +1,7 @@
 use std::ops::{Add, Sub};
 
 use nalgebra::Vector3;
-use wide::f64x4;
+use wide::{f64x2, f64x4};
 
 use crate::Number;
 
@@ -49,6 +49,22 @@ impl<T: Number> Triple<T> {
     #[inline(always)]
     pub fn times(self, factor: T) -> Self {
         Self::new(self.x * factor, self.y * factor, self.z * factor)
+    }
+}
+
+impl Triple<f64x2> {
+    /// Two side by side.
+    #[inline(always)]
+    pub fn pair(of: [Triple<f64>; 2]) -> Self {
+        let [a, b] = of;
+        Self::new(f64x2::new([a.x, b.x]), f64x2::new([a.y, b.y]), f64x2::new([a.z, b.z]))
+    }
+
+    /// Takes one lane.
+    #[inline(always)]
+    pub fn lane(&self, lane: usize) -> Triple<f64> {
+        let of = |two: &f64x2| two.as_array_ref()[lane];
+        Triple { x: of(&self.x), y: of(&self.y), z: of(&self.z) }
     }
 }
 

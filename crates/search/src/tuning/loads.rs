@@ -3,7 +3,7 @@
 
 use undulift_chain::{AxisOf, joint_axes};
 use undulift_design::Design;
-use undulift_flight::{Flight, FlightError, loads_at};
+use undulift_flight::{Flight, FlightError, Loaded, loads_at};
 use undulift_servo::{AxisHistory, Budget, Histories, Servo, budget};
 
 use crate::asked::{Drops, conditions, place, servo_idx};
@@ -17,14 +17,13 @@ pub(crate) fn budget_of(
 ) -> Result<Option<Budget>, FlightError> {
     let times_s = flight.row_times_s(every_s).collect();
     let mut histories = Histories { times_s, axes: axes(design) };
-    let mut motion = flight.commands().room();
     for &time_s in &histories.times_s {
-        let torques_nm = loads_at(&design.glider, flight, time_s)?.torques_nm;
-        flight.commands().accelerations(flight.trajectory.instant(time_s), &mut motion);
+        let Loaded { loads, rates_rad_s, accelerations_rad_s2 } =
+            loads_at(&design.glider, flight, time_s)?;
         for (axis_idx, axis) in histories.axes.iter_mut().enumerate() {
-            axis.joint_torque_nm.push(torques_nm[axis_idx]);
-            axis.rate_rad_s.push(motion.rates_rad_s[axis_idx]);
-            axis.acceleration_rad_s2.push(motion.accelerations_rad_s2[axis_idx]);
+            axis.joint_torque_nm.push(loads.torques_nm[axis_idx]);
+            axis.rate_rad_s.push(rates_rad_s[axis_idx]);
+            axis.acceleration_rad_s2.push(accelerations_rad_s2[axis_idx]);
         }
     }
     let servos: Vec<Servo> = design.servos.values().cloned().collect();
