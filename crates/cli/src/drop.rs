@@ -1,5 +1,6 @@
 //! `undulift drop`.
 
+mod how_many;
 mod object;
 mod people;
 mod rows;
@@ -19,6 +20,7 @@ use undulift_droptest::{
 use crate::args;
 use crate::tune::watch_for_ctrl_c;
 use crate::{Outcome, json, many, terminal};
+use how_many::HowMany;
 
 /// Drops from each lower rung of the ladder, at most.
 const DROPS_A_RUNG: usize = 200;
@@ -38,6 +40,8 @@ pub struct Told<'a> {
     rungs: Vec<Rung>,
     misfits: Vec<Misfit>,
     measuring: Measuring,
+    /// Absent where too few drops were flown to say.
+    how_many: Option<HowMany>,
     /// Of what was seen, where anything was.
     reading: Option<(Reading, &'a [SeenDrop])>,
     /// Whether all drops that were asked for were flown.
@@ -137,7 +141,8 @@ fn told<'a>(
     let drops = ladder.last().context("a hall has a release height")?;
     let plan = Plan::of(drops, &around).with_context(|| design.name.clone())?;
     let of_height = || heights_m.iter().zip(ladder);
-    let rungs = of_height().map(|(height_m, drops)| Rung::of(*height_m, drops, &around)).collect();
+    let rungs: Vec<Rung> =
+        of_height().map(|(height_m, drops)| Rung::of(*height_m, drops, &around)).collect();
     let flown = of_height().map(|(&height_m, drops)| Flown { height_m, drops });
     let flown: Vec<Flown<'_>> = flown.collect();
     let read = |seen: &'a Vec<SeenDrop>| Ok((Ladder::of(&flown).read(seen, args.seed)?, &seen[..]));
@@ -152,6 +157,7 @@ fn told<'a>(
         hall,
         misfits: misfits(&plan, &around, thickness_m, why_refused),
         plan,
+        how_many: HowMany::of(args, rungs.last().and_then(|rung| rung.distance_sd_m)),
         rungs,
         measuring: Measuring::of(design, hall.camera),
         reading: reading.with_context(|| design.name.clone())?,

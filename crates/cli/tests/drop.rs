@@ -62,6 +62,10 @@ fn analytic_a_bar_in_vacuum_lands_where_it_must() {
     let half_m = number(&region["semi_axes_m"][0]);
     assert!((0.97 * 2.4477 * sd..1.1 * 2.4477 * sd).contains(&half_m), "{half_m}");
     assert!(number(&region["semi_axes_m"][1]) < 1e-6);
+    // Nothing but the launch's speed scatters, whatever lift and drag are.
+    let how_many = &object["how_many"];
+    assert_relative_eq!(number(&how_many["distance_sd_m"]), sd, max_relative = 0.05);
+    assert_eq!(how_many["to_tell_apart"]["drops_each"], 17);
     // The outermost of some 800 such faults lies about 3.2 sd out.
     let furthest = number(&object["faults"]["furthest_m"]);
     assert!((mean + 2.3 * sd..mean + 4.8 * sd).contains(&furthest), "{furthest}");
@@ -179,4 +183,26 @@ fn twin_json_names_what_it_was_made_of() {
     assert_ne!(object["input_sha256"], alone["input_sha256"]);
     assert_eq!(object["flights"], 20);
     assert_eq!(object["ladder"].as_array().unwrap().len(), 4);
+}
+
+/// Berthouex & Brown, *Statistics for Environmental Engineers*: 27 a group for one standard deviation
+/// at power 0.95; for the mean to 0.5 of one, 18 by Student's t: 2.110/√18 = 0.497, 2.120/√17 = 0.514.
+#[test]
+fn published_how_many_drops() {
+    let object = Files::with("", "").json(&["--power", "0.95"]);
+    let how_many = &object["how_many"];
+    assert_eq!(how_many["to_tell_apart"]["drops_each"], 27);
+    assert_eq!(how_many["for_mean"]["drops"], 18);
+    let sd_m = how_many["distance_sd_m"].as_f64().unwrap();
+    let (two, half) = (format!("{}", 2.0 * sd_m), format!("{}", 0.5 * sd_m));
+    let more = ["--power", "0.95", "--difference-m", &two, "--within-m", &half];
+    let object = Files::with("", "").json(&more);
+    // As for 2 standard deviations: 8 each by the noncentral t of a general-purpose library (scipy).
+    assert_eq!(object["how_many"]["to_tell_apart"]["drops_each"], 8);
+    assert_eq!(object["how_many"]["for_mean"]["drops"], 18);
+    let output = Files::with("", "").drop(&["--difference-m", "1e-9", "--flights", "100"]);
+    assert!(answer(&output).contains("more than 100 000 each tell"), "{}", answer(&output));
+    for wrong in [["--power", "1"], ["--within-m", "0"], ["--difference-m", "far"]] {
+        assert_eq!(Files::with("", "").drop(&wrong).status.code(), Some(2), "{wrong:?}");
+    }
 }

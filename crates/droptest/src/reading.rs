@@ -99,11 +99,23 @@ struct Rung<'d> {
     likeness: Result<Likeness, DropError>,
 }
 
+/// Truths and outcomes of the sound drops that could be flown.
+fn sound(drops: &[Drop]) -> (Vec<Truth>, Vec<&Outcome>) {
+    let sound = drops.iter().filter(|drop| drop.fault.is_none());
+    sound.filter_map(|drop| Some((drop.truth, drop.result.as_ref().ok()?))).unzip()
+}
+
+/// How distances of one robot scatter from drop to drop (standard deviation), m.
+///
+/// - returns nothing where too few stayed upright
+pub(crate) fn distance_scatter_m(drops: &[Drop]) -> Option<f64> {
+    let (truths, outcomes) = sound(drops);
+    likeness::distance_scatter_m(&truths, &outcomes)
+}
+
 impl<'d> Rung<'d> {
     fn of(flown: &Flown<'d>) -> Self {
-        let sound = flown.drops.iter().filter(|drop| drop.fault.is_none());
-        let (truths, outcomes): (Vec<Truth>, Vec<&Outcome>) =
-            sound.filter_map(|drop| Some((drop.truth, drop.result.as_ref().ok()?))).unzip();
+        let (truths, outcomes) = sound(flown.drops);
         let likeness = Likeness::of(flown.height_m, &truths, &outcomes);
         Self { height_m: flown.height_m, truths, outcomes, likeness }
     }

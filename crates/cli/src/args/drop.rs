@@ -4,6 +4,8 @@ use std::path::PathBuf;
 
 use undulift_design::Override;
 
+use super::numbers::{metres, power};
+
 /// Plan drop tests in a hall: where drops and faults end, whether the hall holds them, and a ladder of
 /// release heights.
 ///
@@ -52,6 +54,20 @@ pub struct Drop {
     /// given again.
     #[arg(long = "sheet", value_name = "FILE")]
     pub sheets: Vec<PathBuf>,
+
+    /// Tell how many drops each tell two gaits apart by so many metres of distance [default: one standard
+    /// deviation].
+    #[arg(long, value_name = "M", value_parser = metres)]
+    pub difference_m: Option<f64>,
+
+    /// How often that difference is to be seen, where it is there.
+    #[arg(long, value_name = "P", default_value_t = 0.8, value_parser = power)]
+    pub power: f64,
+
+    /// Tell how many drops give the mean distance to ± so many metres [default: half a standard
+    /// deviation].
+    #[arg(long, value_name = "M", value_parser = metres)]
+    pub within_m: Option<f64>,
 
     /// Print JSON.
     #[arg(long)]

@@ -4,6 +4,14 @@ pub fn load_factor(text: &str) -> Result<f64, String> {
     within(text, [-1000.0, 1000.0])
 }
 
+pub fn metres(text: &str) -> Result<f64, String> {
+    above_0(text, 1000.0)
+}
+
+pub fn power(text: &str) -> Result<f64, String> {
+    within(text, [0.1, 0.999])
+}
+
 pub fn seconds(text: &str) -> Result<f64, String> {
     within(text, [0.0, 1e6])
 }

@@ -4,6 +4,7 @@ use serde_json::{Value, json};
 use undulift_droptest::{Area, Bands, Ellipse, Rung, held_by_outermost, mean_load_factor};
 use undulift_flight::Spread;
 
+use super::how_many::HowMany;
 use super::{Told, seen};
 use crate::json;
 
@@ -33,6 +34,7 @@ pub fn object(told: &Told<'_>) -> Value {
     let sink_m_s = plan.sound.bands.sink_m_s.p95;
     let weights = mean_load_factor(sink_m_s.max(0.0), told.hall.catch.stopping_m);
     put("mean_stop_weights", json!(weights));
+    put("how_many", told.how_many.as_ref().map_or(Value::Null, HowMany::object));
     put("ladder", told.rungs.iter().map(rung).collect());
     put(
         "camera",
@@ -125,6 +127,7 @@ fn rung(rung: &Rung) -> Value {
     object.insert("region95".into(), json!(rung.region.as_ref().map(ellipse)));
     object.insert("to_film".into(), area(&rung.to_film));
     object.insert("film_height_m".into(), json!(rung.film_height_m));
+    object.insert("distance_sd_m".into(), json!(rung.distance_sd_m));
     object.insert("mean_stop_weights".into(), json!(rung.stop_weights));
     Value::Object(object)
 }

@@ -2,8 +2,8 @@
 
 use undulift_design::CatchKind;
 use undulift_droptest::{
-    Area, Ellipse, REACTION_TIME_S, Rung, Scaled, catch_height_needed_m, drops_for_mean,
-    drops_to_tell_apart, fall_speed_m_s, held_by_outermost, mean_load_factor, most_failing_share,
+    Area, Ellipse, REACTION_TIME_S, Rung, Scaled, catch_height_needed_m, fall_speed_m_s,
+    held_by_outermost, mean_load_factor,
 };
 use undulift_flight::Spread;
 
@@ -18,7 +18,9 @@ pub fn answer(told: &Told<'_>) -> String {
     room(told, &mut text);
     stopping(told, &mut text);
     ladder(told, &mut text);
-    numbers(&mut text);
+    if let Some(how_many) = &told.how_many {
+        how_many.answer(&mut text);
+    }
     measuring(told, &mut text);
     if let Some((reading, _)) = &told.reading {
         seen::answer(reading, &mut text);
@@ -234,24 +236,6 @@ fn ladder(told: &Told<'_>, text: &mut String) {
         );
         line(text, "", &row);
     }
-}
-
-fn numbers(text: &mut String) {
-    // The statistics refuse no figure that stands here.
-    let (Ok(mean), Ok(apart)) = (drops_for_mean(0.5), drops_to_tell_apart(1.0, 0.05, 0.8)) else {
-        return;
-    };
-    let none = most_failing_share(mean);
-    let counts = format!(
-        "{mean} at a height give its mean to half a standard deviation; {apart} each tell two gaits apart \
-         by one (power 0.8)"
-    );
-    line(text, "How many drops", &counts);
-    let failing = format!(
-        "none failed in {mean}: at most {:.0} % fail, at 95 % confidence; in 59: at most 5 %",
-        100.0 * none
-    );
-    line(text, "", &failing);
 }
 
 fn measuring(told: &Told<'_>, text: &mut String) {

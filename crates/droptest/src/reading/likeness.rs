@@ -40,11 +40,7 @@ impl Likeness {
     ///
     /// [`DropError::TooFewToRead`] where too few of them stayed upright.
     pub fn of(height_m: f64, truths: &[Truth], outcomes: &[&Outcome]) -> Result<Self, DropError> {
-        let all = truths.iter().zip(outcomes);
-        let upright: Vec<(Truth, Measures)> = all
-            .filter(|(_, outcome)| !outcome.summary.inverted)
-            .map(|(truth, outcome)| (*truth, of_outcome(outcome)))
-            .collect();
+        let upright = upright(truths, outcomes);
         if upright.len() < FEWEST {
             return Err(DropError::TooFewToRead { found: upright.len(), needed: FEWEST, height_m });
         }
@@ -105,11 +101,32 @@ impl Likeness {
     }
 }
 
+/// How distances of one robot scatter from drop to drop (standard deviation), m: what is left over
+/// beside their mean for each truth.
+///
+/// - returns nothing where too few stayed upright
+pub fn distance_scatter_m(truths: &[Truth], outcomes: &[&Outcome]) -> Option<f64> {
+    let upright = upright(truths, outcomes);
+    if upright.len() < FEWEST {
+        return None;
+    }
+    let squares: f64 = Measured::of(&upright, 0).off.iter().map(|off| off * off).sum();
+    Some((squares / (upright.len() - TERMS) as f64).sqrt())
+}
+
+/// Drops that stayed upright.
+fn upright(truths: &[Truth], outcomes: &[&Outcome]) -> Vec<(Truth, Measures)> {
+    let all = truths.iter().zip(outcomes).filter(|(_, outcome)| !outcome.summary.inverted);
+    all.map(|(truth, outcome)| (*truth, of_outcome(outcome))).collect()
+}
+
 /// One measure of all drops.
 struct Measured {
     mean: SVector<f64, TERMS>,
     scatter: SVector<f64, SCATTER_TERMS>,
-    /// Shape (drops).
+    /// What is left over beside the mean: shape (drops).
+    off: DVector<f64>,
+    /// The same by the scatter.
     left: Vec<f64>,
 }
 
@@ -126,7 +143,7 @@ impl Measured {
         let scatter: SVector<f64, SCATTER_TERMS> = fitted(&doubts, &log);
         let scatters = (doubts * scatter).map(f64::exp);
         let left = off.component_div(&scatters).iter().copied().collect();
-        Self { mean, scatter, left }
+        Self { mean, scatter, off, left }
     }
 }
 
