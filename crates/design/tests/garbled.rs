@@ -11,10 +11,9 @@ use std::time::Instant;
 
 use common::garble::spoil;
 use common::random::{Dice, random_folder};
-use common::{Folder, SERVO, bits, cases, demos};
-use miette::{GraphicalReportHandler, NarratableReportHandler};
+use common::{Folder, SERVO, bits, cases, check_errors, demos};
 use proptest::prelude::*;
-use undulift_design::{Design, DesignErrors, Knob, Override, copy_for, read, read_text, starter};
+use undulift_design::{Design, Knob, Override, copy_for, read, read_text, starter};
 
 /// A folder with a sound design, and the names of all its files, the design's first.
 struct Bed {
@@ -107,20 +106,6 @@ fn check(path: &Path, text: Option<&str>, dice: &mut Dice) {
     }
     if dice.one_in(8) {
         let _ = copy_for(path, Path::new("/"));
-    }
-}
-
-fn check_errors(errors: &DesignErrors, dice: &mut Dice) {
-    assert!(!errors.mistakes().is_empty());
-    for mistake in errors.mistakes() {
-        let line = mistake.line();
-        assert!(!line.contains('\n') && !line.ends_with(": "), "{line:?}");
-        assert!(mistake.remedy().is_none_or(|remedy| !remedy.is_empty()));
-    }
-    if dice.one_in(20) {
-        let mut drawn = String::new();
-        GraphicalReportHandler::new().render_report(&mut drawn, errors).unwrap();
-        NarratableReportHandler::new().render_report(&mut drawn, errors).unwrap();
     }
 }
 

@@ -7,6 +7,7 @@ pub mod random;
 
 use std::path::{Path, PathBuf};
 
+use miette::{GraphicalReportHandler, NarratableReportHandler};
 use undulift_design::{Design, DesignErrors, Override, read};
 use undulift_flight::Glider;
 
@@ -149,4 +150,19 @@ pub fn demos() -> Vec<(PathBuf, Design)> {
         files.filter(is_design).map(|path| (path.clone(), read(&path, &[]).unwrap())).collect();
     assert!(read.len() >= 5);
     read
+}
+
+/// Mistakes are lines of their own, with what to do, and can be drawn.
+pub fn check_errors(errors: &DesignErrors, dice: &mut random::Dice) {
+    assert!(!errors.mistakes().is_empty());
+    for mistake in errors.mistakes() {
+        let line = mistake.line();
+        assert!(!line.contains('\n') && !line.ends_with(": "), "{line:?}");
+        assert!(mistake.remedy().is_none_or(|remedy| !remedy.is_empty()));
+    }
+    if dice.one_in(20) {
+        let mut drawn = String::new();
+        GraphicalReportHandler::new().render_report(&mut drawn, errors).unwrap();
+        NarratableReportHandler::new().render_report(&mut drawn, errors).unwrap();
+    }
 }
