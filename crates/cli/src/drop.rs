@@ -67,7 +67,16 @@ pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
     if let (Some(path), Some(drops)) = (&args.csv, ladder.last()) {
         rows::write(path, drops, complete)?;
     }
-    let told = threads.install(|| told(args, &asked, &dropping, &ladder, complete))?;
+    let told = threads.install(|| told(args, &asked, &dropping, &ladder, complete));
+    if !complete && told.is_err() {
+        let flown = ladder.last().map_or(0, Vec::len);
+        terminal::tell_warning(&format!(
+            "ended by Ctrl-C: {flown} of {} drops were flown, too few to tell anything of",
+            args.flights
+        ));
+        return Ok(Outcome::Interrupted);
+    }
+    let told = told?;
     sheets::write(&told)?;
     tell(&told)
 }
@@ -146,7 +155,9 @@ fn told<'a>(
     let flown = of_height().map(|(&height_m, drops)| Flown { height_m, drops });
     let flown: Vec<Flown<'_>> = flown.collect();
     let read = |seen: &'a Vec<SeenDrop>| Ok((Ladder::of(&flown).read(seen, args.seed)?, &seen[..]));
-    let reading: Result<_, DropError> = asked.seen.as_ref().map(read).transpose();
+    // Heights that Ctrl-C left out tell nothing.
+    let seen = asked.seen.as_ref().filter(|_| complete);
+    let reading: Result<_, DropError> = seen.map(read).transpose();
     let refused = drops.iter().find_map(|drop| drop.result.as_ref().err());
     let thick = design.glider.chain.segments().iter().map(|segment| segment.thickness_m);
     let thickness_m = thick.fold(0.0, f64::max);
@@ -200,8 +211,10 @@ fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
     terminal::tell_warning(&cautions_in_a_line());
     if !told.complete {
         terminal::tell_warning(&format!(
-            "ended by Ctrl-C: {} of {} drops were flown, and what is told is of those alone",
-            told.plan.drops, told.args.flights
+            "ended by Ctrl-C: {} of {} drops were flown, and what is told is of those alone{}",
+            told.plan.drops,
+            told.args.flights,
+            if told.args.seen.is_some() { "; what was seen isn't read by so few" } else { "" }
         ));
         return Ok(Outcome::Interrupted);
     }

@@ -1,5 +1,6 @@
 //! Where words go: answers to standard output, all else to standard error.
 
+use std::borrow::Cow;
 use std::io::{self, Write};
 
 use anstyle::{AnsiColor, Style};
@@ -15,9 +16,26 @@ const WIDEST: usize = 100;
 /// When standard output can't take it; a pipe that was closed is told by [`is_closed_pipe`].
 pub fn answer(text: &str) -> anyhow::Result<()> {
     let mut out = anstream::stdout().lock();
-    out.write_all(text.as_bytes())?;
+    out.write_all(harmless(text).as_bytes())?;
     out.flush()?;
     Ok(())
+}
+
+/// Words with what names of files may hold besides letters made visible: what would steer a terminal, or
+/// turn the order of others around.
+fn harmless(text: &str) -> Cow<'_, str> {
+    let steers = |letter: char| {
+        letter.is_control() && !matches!(letter, '\n' | '\t')
+            || matches!(letter, '\u{200e}' | '\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}')
+    };
+    if !text.contains(steers) {
+        return text.into();
+    }
+    let shown = |letter| match steers(letter) {
+        true => format!("⟨U+{:04X}⟩", u32::from(letter)),
+        false => String::from(letter),
+    };
+    text.chars().map(shown).collect::<String>().into()
 }
 
 /// Whether an error only says that nobody reads the answer any more.
@@ -46,6 +64,7 @@ pub fn tell_hint(text: &str) {
 }
 
 fn tell(kind: &str, style: Style, text: &str) {
+    let text = &harmless(text);
     let text = match error_width() {
         Some(width) => {
             let indent = " ".repeat(kind.len() + 2);
@@ -53,7 +72,7 @@ fn tell(kind: &str, style: Style, text: &str) {
             textwrap::wrap(text, options).join(&format!("\n{indent}"))
         }
         // A file or a pipe gets whole lines, to search in.
-        None => text.to_owned(),
+        None => text.clone().into_owned(),
     };
     // Nothing is left to be done where standard error itself is gone.
     let _ = writeln!(anstream::stderr().lock(), "{style}{kind}{style:#}: {text}");
@@ -80,4 +99,15 @@ pub fn tell_diagnostic(diagnostic: &dyn miette::Diagnostic) {
         drawn = diagnostic.to_string();
     }
     let _ = writeln!(anstream::stderr().lock(), "{}", drawn.trim_end());
+}
+
+#[cfg(test)]
+mod tests {
+    use super::harmless;
+
+    #[test]
+    fn analytic_steering_letters_are_shown() {
+        assert_eq!(harmless("Ada\n\tλ"), "Ada\n\tλ");
+        assert_eq!(harmless("A\u{1b}[31mda\u{202e}"), "A⟨U+001B⟩[31mda⟨U+202E⟩");
+    }
 }
