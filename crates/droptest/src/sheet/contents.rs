@@ -39,6 +39,8 @@ pub(super) enum Block {
     ToFill(Vec<&'static str>),
     /// One sentence each.
     List(Vec<Words>),
+    /// The same, of short ones, side by side where there is room.
+    Short(Vec<Words>),
     /// Rows under columns.
     Table(Table),
     /// What is drawn.
@@ -185,5 +187,5 @@ fn plan(sheet: &Sheet<'_>) -> Section {
 
 fn cautions() -> Section {
     let list = CAUTIONS.iter().map(|caution| (*caution).into()).collect();
-    together("Cautions", vec![Block::List(list)])
+    together("Cautions", vec![Block::Short(list)])
 }

@@ -62,6 +62,7 @@ fn block(sheet: &Sheet<'_>, block: &Block) -> Markup {
             Block::ToFill(names) => ul class="to-fill" {
                 @for name in names { li { span { (name) } span class="line" {} } }
             },
+            Block::Short(list) => ul class="short" { @for told in list { li { (words(told, "bdi")) } } },
             Block::List(list) => ul { @for told in list { li { (words(told, "bdi")) } } },
             Block::Table(rows) => (table(rows, "")),
             Block::Plan { title, told, drawing } => {

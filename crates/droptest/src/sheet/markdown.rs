@@ -38,7 +38,7 @@ fn put_block(block: &Block, text: &mut String) {
                 *text += &format!("- {name}: ____________________\n");
             }
         }
-        Block::List(list) => {
+        Block::List(list) | Block::Short(list) => {
             for told in list {
                 *text += &format!("- {}\n", words(told));
             }
