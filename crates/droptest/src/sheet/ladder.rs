@@ -18,9 +18,10 @@ pub(super) const COLUMNS: [&str; 7] =
     ["drop", "height_m", "distance_m", "side_m", "time_s", "peak_tilt_deg", "ended"];
 
 pub(super) fn ladder(sheet: &Sheet<'_>) -> Section {
-    let how = "Five drops or more a rung; go higher only when they lie within the bands (5 % to 95 %: nine in \
-               ten should) and none surprised you. Distance is measured on the floor, from below the \
-               release straight to the middle of the body; side is how far of it is left of the launch.";
+    let how = "Five drops or more a rung; go higher only when they lie within the bands (5 % to 95 %: nine in ten \
+               should; outside is by more than 5 cm, 0.02 s or 2°, as measuring goes) and none surprised you. \
+               Distance is measured on the floor, from below the release straight to the middle of the body; \
+               side is how far of it is left of the launch.";
     let mut blocks = vec![Block::Text(how.into())];
     blocks.extend((0..sheet.rungs.len()).map(|rung_idx| rung(sheet, rung_idx)));
     let heading = Words::from("Release ladder of ").and_name(&sheet.design.name);
