@@ -155,10 +155,10 @@ impl<'d> Ladder<'d> {
     ///
     /// [`DropError::TooFewToRead`] where too few drops from a height that was seen were flown.
     pub fn read(&self, seen: &[SeenDrop], seed: u64) -> Result<Reading, DropError> {
-        // What went wrong tells of no truth.
+        // What missed the catch flew as it would; what went wrong otherwise tells of no truth.
         let counted: Vec<Counted> = seen
             .iter()
-            .filter(|drop| drop.ended == Ended::Landed)
+            .filter(|drop| matches!(drop.ended, Ended::Landed | Ended::MissedCatch))
             .map(|drop| (drop.rung_idx, of_seen(drop)))
             .collect();
         for (rung_idx, _) in &counted {
