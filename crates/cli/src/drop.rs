@@ -19,7 +19,7 @@ use undulift_droptest::{
 
 use crate::args;
 use crate::tune::watch_for_ctrl_c;
-use crate::{Outcome, json, many, terminal};
+use crate::{Outcome, json, many, terminal, whole_file};
 use how_many::HowMany;
 
 /// Drops from each lower rung of the ladder, at most.
@@ -30,6 +30,9 @@ const DROPS_READ_BY: usize = 20_000;
 
 /// Faults whose outermost holds 95 % of all, at 95 % confidence.
 const FAULTS_WANTED: usize = 59;
+
+/// Sound drops that may turn over without a word, %.
+const MOST_TURNED_OVER: f64 = 2.0;
 
 /// All that is told of a plan.
 pub struct Told<'a> {
@@ -51,6 +54,8 @@ pub struct Told<'a> {
 
 pub fn run(args: &args::Drop) -> anyhow::Result<Outcome> {
     sheets::check(&args.sheets)?;
+    let read = [&args.design, &args.hall].into_iter().chain(&args.seen);
+    whole_file::ensure_apart(read, args.csv.iter().chain(&args.sheets))?;
     let asked = match Asked::read(args) {
         Ok(asked) => asked,
         Err(refused) => {
@@ -166,7 +171,7 @@ fn told<'a>(
         args,
         design,
         hall,
-        misfits: misfits(&plan, &around, thickness_m, why_refused),
+        misfits: misfits(&plan, &rungs, &around, thickness_m, why_refused),
         plan,
         how_many: HowMany::of(args, rungs.last().and_then(|rung| rung.distance_sd_m)),
         rungs,
@@ -177,29 +182,52 @@ fn told<'a>(
     })
 }
 
+impl Told<'_> {
+    /// What to doubt.
+    fn warnings(&self) -> Vec<String> {
+        let mut warnings = Vec::new();
+        let launch_m = self.design.glider.launch.height_m;
+        let highest_m = self.rungs.last().map_or(launch_m, |rung| rung.height_m);
+        if (highest_m - launch_m).abs() > 1e-9 {
+            warnings.push(format!(
+                "the design is let go at {launch_m:.1} m, but the hall's highest release is {highest_m:.1} m, \
+                 which is what was flown"
+            ));
+        }
+        if self.rungs.len() == 1 {
+            warnings.push(format!(
+                "{highest_m:.1} m is the only height: a ladder of lower ones shows a wrong model where it is \
+                 harmless"
+            ));
+        }
+        let faults = self.plan.furthest.map_or(0, |furthest| furthest.of);
+        if self.hall.faults.share > 0.0 && faults < FAULTS_WANTED {
+            let flights = (FAULTS_WANTED as f64 / self.hall.faults.share * 1.3).ceil();
+            warnings.push(format!(
+                "{faults} faults say little of where all of them end: {FAULTS_WANTED} hold 95 % at 95 % \
+                 confidence; --flights {flights:.0} gives about as many"
+            ));
+        }
+        let sound = &self.plan.sound;
+        let turned_over = 100.0 * sound.turned_over as f64 / sound.flown.max(1) as f64;
+        if turned_over > MOST_TURNED_OVER {
+            warnings.push(format!(
+                "{turned_over:.0} % of sound drops from {highest_m:.1} m turn over: tune the gait or stay lower \
+                 before anyone drops it from there"
+            ));
+        }
+        warnings.extend(self.reading.iter().flat_map(|(reading, _)| seen::warnings(reading)));
+        warnings
+    }
+}
+
 fn tell(told: &Told<'_>) -> anyhow::Result<Outcome> {
     if told.args.json {
         json::print(vec![object::object(told)], 1)?;
     } else {
         terminal::answer(&people::answer(told))?;
     }
-    let launch_m = told.design.glider.launch.height_m;
-    let highest_m = told.rungs.last().map_or(launch_m, |rung| rung.height_m);
-    if (highest_m - launch_m).abs() > 1e-9 {
-        terminal::tell_warning(&format!(
-            "the design is let go at {launch_m:.1} m, but the hall's highest release is {highest_m:.1} m, \
-             which is what was flown"
-        ));
-    }
-    let faults = told.plan.furthest.map_or(0, |furthest| furthest.of);
-    if told.hall.faults.share > 0.0 && faults < FAULTS_WANTED {
-        let flights = (FAULTS_WANTED as f64 / told.hall.faults.share * 1.3).ceil();
-        terminal::tell_warning(&format!(
-            "{faults} faults say little of where all of them end: {FAULTS_WANTED} hold 95 % at 95 % \
-             confidence; --flights {flights:.0} gives about as many"
-        ));
-    }
-    for warning in told.reading.iter().flat_map(|(reading, _)| seen::warnings(reading)) {
+    for warning in told.warnings() {
         terminal::tell_warning(&warning);
     }
     for stop in told.reading.iter().flat_map(|(reading, _)| &reading.stops) {

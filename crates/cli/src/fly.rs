@@ -13,6 +13,7 @@ use crate::flown::{Flown, Missed};
 use crate::launches;
 use crate::{
     Outcome, Refused, doubts as words, driven, joints, json, people, terminal, trace_file,
+    whole_file,
 };
 
 pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
@@ -22,6 +23,7 @@ pub fn run(args: &Fly) -> anyhow::Result<Outcome> {
             anyhow::bail!("{flag} takes one design, not {n_designs}; run them one by one");
         }
     }
+    whole_file::ensure_apart(&args.designs, args.trace.iter().chain(&args.csv))?;
     let settings = Settings {
         tolerance: args.tolerance,
         max_time_s: args.max_time_s,

@@ -24,6 +24,7 @@ pub fn run(args: &Args) -> anyhow::Result<Outcome> {
         Ok(catalogue) => catalogue,
         Err(errors) => return Ok(refuse(errors)),
     };
+    whole_file::ensure_apart([&args.design, &args.from], &args.write)?;
     let sized = search(&design, &catalogue, args)?;
     if args.json {
         json::print(vec![object(&design, &catalogue, &sized, args)], 1)?;

@@ -28,6 +28,7 @@ pub fn run(args: &Args) -> anyhow::Result<Outcome> {
             return Ok(Outcome::CouldNotRun);
         }
     };
+    whole_file::ensure_apart([&args.design], [&args.out].into_iter().chain(&args.trade))?;
     let commands = Commands::new(&design.glider.gait, &design.glider.chain)
         .with_context(|| design.name.clone())?;
     let pool = rayon::ThreadPoolBuilder::new()

@@ -111,6 +111,13 @@ fn analytic_a_plate_with_drag_lands_below_its_release() {
 fn twin_what_doesnt_fit_is_told() {
     let net = "kind = \"net\"\nheight_m = 0.4\nlength_m = 9\nwidth_m = 9\nfrom_release_m = -1";
     let far = net.replace("0.4", "1.0").replace("-1", "3.2");
+    let mat = |from_m: f64, long_m: f64, wide_m: f64| {
+        format!(
+            "kind = \"mat\"\nheight_m = 0.1\nlength_m = {long_m}\nwidth_m = {wide_m}\nfrom_release_m = {from_m}"
+        )
+    };
+    // Ada stands at (1, 11), the release is at (3, 6): she is 2 m behind it and 5 m left.
+    let (near, long, under) = (mat(2.4, 4.0, 4.0), mat(-1.0, 19.8, 4.0), mat(-2.3, 10.0, 11.0));
     for (from, to, told) in [
         ("length_m = 20", "length_m = 6.2", "hall too small"),
         ("height_m = 6", "height_m = 3.1", "ladder above the ceiling: 3.0 m"),
@@ -122,6 +129,10 @@ fn twin_what_doesnt_fit_is_told() {
         ),
         ("kind = \"floor\"", &far, "catch too small"),
         ("[2.0, 3.0]", "[0.2, 3.0]", "ladder too low: 0.2 m"),
+        // From 2 m it lands at 2.6 m, beside what holds all from 3 m.
+        ("kind = \"floor\"", &near, "the 95 % region from 2.0 m reaches"),
+        ("kind = \"floor\"", &long, "reaches 1.8 m through a wall"),
+        ("kind = \"floor\"", &under, "`Ada` stands 0.8 m inside of the catch's edge"),
     ] {
         let output = Files::with(from, to).drop(&["--flights", "100"]);
         let complaint = complaint(&output);
@@ -198,6 +209,28 @@ fn twin_an_end_by_ctrl_c_is_told() {
     assert_eq!(object["complete"], false);
     assert!(object["flights"].as_u64().unwrap() < 1_000_000);
     assert!(complaint(&output).contains("ended by Ctrl-C"));
+}
+
+/// Nothing that was read is written over, and no file is written twice.
+#[test]
+fn twin_inputs_are_never_written_over() {
+    let files = Files::with("", "");
+    std::fs::write(files.path("hall.html"), HALL).unwrap();
+    let [bar, hall, page, csv] =
+        ["bar.toml", "hall.toml", "hall.html", "x.csv"].map(|name| files.path(name));
+    let detour = files.path("./hall.html");
+    for (args, told) in [
+        (vec![&bar, &hall, "--csv", &hall], "it is read, too"),
+        (vec![&bar, &page, "--sheet", &detour], "it is read, too"),
+        (vec![&bar, &hall, "--csv", &csv, "--seen", &csv], "it is read, too"),
+        (vec![&bar, &hall, "--csv", &page, "--sheet", &detour], "is to be written twice"),
+    ] {
+        let output = undulift(&[&["drop"], &args[..]].concat());
+        assert_eq!(output.status.code(), Some(2), "{args:?}");
+        assert!(complaint(&output).contains(told), "{args:?}: {}", complaint(&output));
+    }
+    assert_eq!(std::fs::read_to_string(hall).unwrap(), HALL);
+    assert_eq!(std::fs::read_to_string(page).unwrap(), HALL);
 }
 
 #[test]

@@ -52,6 +52,36 @@ fn number(value: &Value) -> f64 {
     value.as_f64().unwrap_or_else(|| panic!("{value}"))
 }
 
+/// Too few drops say go on at the same height; what wasn't measured doesn't count.
+#[test]
+fn twin_too_little_was_seen_to_go_higher() {
+    for (rows, height_m, drops) in [
+        ("2.0,2.51,,,,landed\n", 2.0, 2),
+        ("2.0,,,,,landed\n2.0,,,,,landed\n2.0,,,,,landed\n", 2.0, 3),
+        // A height was left out.
+        ("3.0,3.1,,,,landed\n3.0,3.2,,,,landed\n3.0,3.0,,,,landed\n", 2.0, 3),
+    ] {
+        let output = Files::with(&format!("{HEADER}{rows}")).drop(&["--json"]);
+        let object: Value = serde_json::from_str(&answer(&output)).unwrap();
+        assert_eq!(object["seen"]["verdict"], "go_on", "{rows}");
+        assert_eq!(object["seen"]["next_height_m"], height_m, "{rows}");
+        assert_eq!(object["seen"]["next_drops"], drops, "{rows}");
+    }
+}
+
+/// One drop that tilts further than any that was flown, here not at all, measuring included, says
+/// stop: 0.2 × 20° = 4.4° by ln(tilt + 20°) ± 0.2.
+#[test]
+fn analytic_a_tilt_beyond_all_says_stop() {
+    for (tilt_deg, status) in [(4.0, 0), (5.0, 1)] {
+        let rows = rows(2.0, [-0.1, 0.2, 0.0, -0.2, 0.1], "landed");
+        let rows = rows.replacen(",0,landed", &format!(",{tilt_deg},landed"), 1);
+        let output = Files::with(&format!("{HEADER}{rows}")).drop(&[]);
+        assert_eq!(output.status.code(), Some(status), "{tilt_deg}: {}", complaint(&output));
+        assert_eq!(complaint(&output).contains("further than any that was computed"), status == 1);
+    }
+}
+
 /// Drops as they must be say go on, to the next height. They tell nothing of lift and drag: those keep
 /// the percentiles of the plan's own distribution, 1.54^±0.9 and 0.71^±0.9. The bands from 4 m stay
 /// 4t ± 1.645 × 0.2t, t = √(2 × 3.8975/g) = 0.891 550 s.
@@ -91,6 +121,7 @@ fn analytic_drops_too_far_say_stop() {
     assert_eq!(output.status.code(), Some(1));
     let told = complaint(&output);
     assert!(told.contains("most of all distance from 2.0 m, 2.89 m in the mean of 5"), "{told}");
+    assert!(!answer(&output).contains("by what was seen, 5 %"), "{}", answer(&output));
     assert!(answer(&output).contains("STOP"));
 }
 
@@ -119,8 +150,9 @@ fn twin_what_ended_badly_says_stop() {
 /// isn't tried.
 #[test]
 fn analytic_the_next_height_must_fit() {
-    let files =
-        Files::with(&format!("{HEADER}{}", rows(3.0, [-0.1, 0.2, 0.0, -0.2, 0.1], "landed")));
+    let off_m = [-0.1, 0.2, 0.0, -0.2, 0.1];
+    let [low, high] = [2.0, 3.0].map(|height_m| rows(height_m, off_m, "landed"));
+    let files = Files::with(&format!("{HEADER}{low}{high}"));
     std::fs::write(files.path("hall.toml"), HALL.replace("length_m = 8", "length_m = 4.57"))
         .unwrap();
     let output = files.drop(&["--json"]);
@@ -160,7 +192,7 @@ fn twin_a_sheet_for_the_second_rung() {
     let object: Value =
         serde_json::from_str(&answer(&files.drop(&["--json", "--sheet", &sheet]))).unwrap();
     let text = std::fs::read_to_string(sheet).unwrap();
-    assert!(text.contains("Go on, to 3 m"), "{text}");
+    assert!(text.contains("Go on at 2 m: 1 drops or more before going higher"), "{text}");
     let cells = |line: &str| line.split('|').map(|cell| cell.trim().to_owned()).collect::<Vec<_>>();
     let rows: Vec<Vec<String>> = text.lines().map(cells).collect();
     let has = |row: &[&str]| rows.iter().any(|own| own.iter().eq(row.iter()));

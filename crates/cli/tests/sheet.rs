@@ -245,7 +245,7 @@ fn twin_what_cant_be_written_is_refused_first() {
         ("sheet", "FILE.html, or Markdown, FILE.md"),
         ("folder.md", "it is a folder"),
         ("missing/sheet.md", "there is no such folder"),
-        ("good.html", "given twice"),
+        ("good.html", "is to be written twice"),
     ] {
         let bad = folder.path(name);
         let args = ["drop", REED, GANTRY, "--flights", "1000000", "--sheet", &good];

@@ -30,6 +30,11 @@ pub(crate) enum Cells {
     Word(&'static [&'static str]),
 }
 
+/// Whether a cell holds a word, in small or large letters, with any of the usual dashes in it.
+fn is_word(word: &str, field: &str) -> bool {
+    field.replace([' ', '-'], "_").eq_ignore_ascii_case(word)
+}
+
 impl Cells {
     fn remedy(self) -> &'static str {
         match self {
@@ -51,7 +56,7 @@ impl Cells {
                 Err(_) if field.is_empty() => Err("the number is missing here".to_owned()),
                 Err(_) => Err(format!("\"{}\" isn't a number", shortened(field))),
             },
-            Self::Word(words) => match words.iter().position(|word| *word == field) {
+            Self::Word(words) => match words.iter().position(|word| is_word(word, field)) {
                 Some(place) => Ok(place as f64),
                 None if field.is_empty() => {
                     Err(format!("the word is missing here: one of {}", words.join(", ")))
@@ -140,6 +145,10 @@ impl<'s> Columns<'s> {
         rules: &[Option<&ColumnRule>],
         mistakes: &mut Vec<Mistake>,
     ) {
+        // Spreadsheets leave rows of commas behind.
+        if record.len() == self.names.len() && record.iter().all(str::is_empty) {
+            return;
+        }
         let start = record.position().map_or(0, start_of);
         self.starts.push(start);
         if record.len() != self.names.len() {

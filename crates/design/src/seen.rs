@@ -13,6 +13,9 @@ use crate::{DesignError, DesignErrors};
 /// How far a release may be off the height of its rung, m.
 const OFF_RUNG_M: f64 = 0.1;
 
+/// How far a side may exceed the distance that it is a part of, m: measuring.
+const OFF_SIDE_M: f64 = 0.1;
+
 /// Most drops that are read.
 const MOST_ROWS: usize = 1000;
 
@@ -99,10 +102,19 @@ fn seen(source: &Source, heights_m: &[f64]) -> Result<Vec<SeenDrop>, Vec<Mistake
             mistakes.push(columns.mistake(row, "height_m", no_rung(height_m, heights_m)));
             continue;
         };
+        let (distance_m, side_m) = (number("distance_m", row), number("side_m", row));
+        if side_m.abs() > distance_m + OFF_SIDE_M {
+            let why =
+                format!("{side_m} m to the side is further than the {distance_m} m of distance");
+            let remedy =
+                "distance goes straight to the body, side is a part of it; correct one of them";
+            mistakes.push(columns.mistake(row, "side_m", DesignError::Row { why, remedy }));
+            continue;
+        }
         drops.push(SeenDrop {
             rung_idx,
-            distance_m: given(number("distance_m", row)),
-            side_m: given(number("side_m", row)),
+            distance_m: given(distance_m),
+            side_m: given(side_m),
             time_s: given(number("time_s", row)),
             peak_tilt_rad: given(number("peak_tilt_deg", row)).map(f64::to_radians),
             ended: Ended::ALL[number("ended", row) as usize],
@@ -123,6 +135,8 @@ fn no_rung(height_m: f64, heights_m: &[f64]) -> DesignError {
 fn rules() -> Vec<ColumnRule> {
     let rule = |name: &str, cells, needed| ColumnRule { name: name.to_owned(), cells, needed };
     vec![
+        // As on the sheet; not used.
+        rule("drop", Cells::NumberOrNothing(Range::within(1e9)), false),
         rule("height_m", Cells::Number(Range::above_0_to(1000.0)), true),
         rule("distance_m", Cells::NumberOrNothing(Range::from_to(0.0, 10_000.0)), true),
         rule("side_m", Cells::NumberOrNothing(Range::within(10_000.0)), false),

@@ -33,6 +33,19 @@ impl Area {
         [self.along_m, self.across_m].map(|[from, to]| to - from)
     }
 
+    /// Behind, ahead, right and left of the point of release, each rounded to 0.1 m so that the area is
+    /// no smaller, m.
+    pub fn outward_m(&self) -> [f64; 4] {
+        let up = |at_m: f64| (10.0 * at_m - 1e-9).ceil() / 10.0 + 0.0;
+        [up(-self.along_m[0]), up(self.along_m[1]), up(-self.across_m[0]), up(self.across_m[1])]
+    }
+
+    /// How far a place lies within its edges, m; below 0 outside.
+    pub fn within_m(&self, [x, y]: [f64; 2]) -> f64 {
+        let within = |[from, to]: [f64; 2], at: f64| (at - from).min(to - at);
+        within(self.along_m, x).min(within(self.across_m, y))
+    }
+
     /// From its edge to a place in the launch's frame, m; below 0 within.
     pub fn to_m(&self, [x, y]: [f64; 2]) -> f64 {
         let out = |[from, to]: [f64; 2], at: f64| (from - at).max(at - to);
@@ -57,6 +70,9 @@ mod tests {
             assert_relative_eq!(area.to_m(place_m), to_m, epsilon = 1e-12);
         }
         assert_eq!(area.size_m(), [11.0, 5.0]);
+        assert_eq!([[5.0, 0.0], [12.0, 0.0]].map(|place_m| area.within_m(place_m)), [2.0, -2.0]);
+        let uneven = Area { along_m: [-1.01, 7.31], across_m: [-0.3, -0.12] };
+        assert_eq!(uneven.outward_m(), [1.1, 7.4, 0.3, -0.1]);
         assert_eq!(Area::POINT.with_all(&area, 0.5).along_m, [-1.5, 10.5]);
     }
 }

@@ -47,6 +47,25 @@ impl Around<'_> {
         [release.from_wall_m + x * cos - y * sin, release.across_m + x * sin + y * cos]
     }
 
+    /// A place in a flight's frame, from one in the hall.
+    pub fn in_launch(&self, [x, y]: [f64; 2]) -> [f64; 2] {
+        let release = &self.hall.release;
+        let (sin, cos) = release.direction_rad.sin_cos();
+        let (x, y) = (x - release.from_wall_m, y - release.across_m);
+        [x * cos + y * sin, y * cos - x * sin]
+    }
+
+    /// What the catch covers, along the launch; absent for the floor.
+    pub fn catch_area(&self) -> Option<Area> {
+        let catch = &self.hall.catch;
+        let (long_m, wide_m) = (catch.length_m?, catch.width_m?);
+        let from_m = catch.from_release_m;
+        self.has_catch().then(|| Area {
+            along_m: [from_m, from_m + long_m],
+            across_m: [-0.5 * wide_m, 0.5 * wide_m],
+        })
+    }
+
     /// To the nearest wall from a place in a flight's frame, the body's reach taken off, m.
     pub fn to_walls_m(&self, place_m: [f64; 2]) -> f64 {
         let [x, y] = self.in_hall(place_m);
@@ -64,17 +83,8 @@ impl Around<'_> {
     }
 
     /// How far a place lies within the edges of the catch, m; below 0 outside.
-    pub fn within_catch_m(&self, [x, y]: [f64; 2]) -> f64 {
-        let catch = &self.hall.catch;
-        if !self.has_catch() {
-            return f64::INFINITY;
-        }
-        let along = catch.length_m.map_or(f64::INFINITY, |length_m| {
-            let from = x - catch.from_release_m;
-            from.min(length_m - from)
-        });
-        let across = catch.width_m.map_or(f64::INFINITY, |width_m| 0.5 * width_m - y.abs());
-        along.min(across)
+    pub fn within_catch_m(&self, place_m: [f64; 2]) -> f64 {
+        self.catch_area().map_or(f64::INFINITY, |area| area.within_m(place_m))
     }
 
     /// Whether something other than the floor is there to end a flight.
@@ -123,6 +133,8 @@ mod tests {
         hall.release.direction_rad = std::f64::consts::FRAC_PI_2;
         let around = Around { hall: &hall, reach_m: 0.5 };
         let [x, y] = around.in_hall([2.0, 1.0]);
+        assert_relative_eq!(around.in_launch([x, y])[0], 2.0, epsilon = 1e-12);
+        assert_relative_eq!(around.in_launch([x, y])[1], 1.0, epsilon = 1e-12);
         assert_relative_eq!(x, 5.0, epsilon = 1e-12);
         assert_relative_eq!(y, 22.0, epsilon = 1e-12);
         assert_relative_eq!(around.to_walls_m([2.0, 1.0]), 4.5, epsilon = 1e-12);

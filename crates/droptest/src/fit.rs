@@ -2,7 +2,7 @@
 
 use undulift_design::{CatchKind, Hall};
 
-use crate::{Around, Plan, catch_height_needed_m};
+use crate::{Area, Around, Plan, Rung, catch_height_needed_m};
 
 /// Something that doesn't fit.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
@@ -10,10 +10,12 @@ use crate::{Around, Plan, catch_height_needed_m};
 pub enum Misfit {
     /// The region reaches through a wall.
     #[error(
-        "hall too small: the 95 % region, with the body, reaches {by_m:.1} m beyond a wall; let it go \
-         lower, move or turn the release, or find a larger hall"
+        "hall too small: the 95 % region from {height_m:.1} m, with the body, reaches {by_m:.1} m beyond a wall; \
+         let it go lower, move or turn the release, or find a larger hall"
     )]
     Region {
+        /// From where, m.
+        height_m: f64,
         /// How far, m.
         by_m: f64,
     },
@@ -81,16 +83,19 @@ pub enum Misfit {
         /// Lowest that would do, m.
         least_m: f64,
     },
-    /// The region reaches over the catch's edges.
+    /// A region reaches over the catch's edges.
     #[error(
-        "catch too small: the 95 % region reaches {by_m:.1} m over its edge; it must lie from {:.1} to \
-         {:.1} m along the launch and {width_m:.1} m wide, or let it go lower",
+        "catch too small: the 95 % region from {height_m:.1} m reaches {by_m:.1} m over its edge; for all heights \
+         it must lie from {:.1} to {:.1} m along the launch and {width_m:.1} m wide, or move it from height to \
+         height, or let it go lower",
         along_m[0], along_m[1]
     )]
     Catch {
+        /// From where the worst is let go, m.
+        height_m: f64,
         /// How far, m.
         by_m: f64,
-        /// From where to where it is needed, m.
+        /// From where to where it is needed for all heights, m.
         along_m: [f64; 2],
         /// How wide, m.
         width_m: f64,
@@ -111,6 +116,23 @@ pub enum Misfit {
         /// The area, m.
         across_m: [f64; 2],
     },
+    /// The catch doesn't fit into the hall.
+    #[error("catch too large: it reaches {by_m:.1} m through a wall; move, turn or shorten it")]
+    CatchThroughWall {
+        /// How far, m.
+        by_m: f64,
+    },
+    /// Someone stands in or under the catch.
+    #[error(
+        "`{name}` stands {by_m:.1} m inside of the catch's edge; nobody may be in or under it: move them, and \
+         behind something that stops it"
+    )]
+    PersonInCatch {
+        /// Who.
+        name: String,
+        /// How far, m.
+        by_m: f64,
+    },
     /// What isn't flown isn't known.
     #[error(
         "{refused} of {of} drops couldn't be flown, so where they end isn't known ({why}); look at the \
@@ -128,10 +150,12 @@ pub enum Misfit {
 
 /// All that doesn't fit; empty where the hall holds it.
 ///
+/// - `rungs`: of the whole ladder
 /// - `why_refused`: of the first drop that couldn't be flown
 /// - `thickness_m`: of the body
 pub fn misfits(
     plan: &Plan,
+    rungs: &[Rung],
     around: &Around<'_>,
     thickness_m: f64,
     why_refused: Option<String>,
@@ -139,8 +163,8 @@ pub fn misfits(
     let hall = around.hall;
     let mut misfits = Vec::new();
     misfits.extend(ladder(hall, around.reach_m));
-    misfits.extend(walls(plan, around));
-    misfits.extend(catch(plan, around, thickness_m));
+    misfits.extend(walls(plan, rungs, around));
+    misfits.extend(catch(rungs, around, thickness_m));
     misfits.extend(people(plan, around));
     if let Some(why) = why_refused {
         let refused = plan.sound.refused + plan.faults.iter().map(|row| row.refused).sum::<usize>();
@@ -163,13 +187,11 @@ pub fn ladder(hall: &Hall, reach_m: f64) -> Vec<Misfit> {
     low.into_iter().chain((top_m > hall_m).then_some(high)).collect()
 }
 
-fn walls(plan: &Plan, around: &Around<'_>) -> Vec<Misfit> {
-    let edge_m = plan.sound.region.edge_m(180).map(|place_m| around.to_walls_m(place_m));
-    let region_m = edge_m.fold(f64::INFINITY, f64::min);
+fn walls(plan: &Plan, rungs: &[Rung], around: &Around<'_>) -> Vec<Misfit> {
     let least = &plan.least;
     let mut misfits = Vec::new();
-    if region_m < 0.0 {
-        misfits.push(Misfit::Region { by_m: -region_m });
+    if let Some((height_m, by_m)) = furthest_over(rungs, |place_m| around.to_walls_m(place_m)) {
+        misfits.push(Misfit::Region { height_m, by_m });
     }
     if least.walls_m < 0.0 {
         let faults = plan.faults.iter().map(|row| row.flown).sum::<usize>();
@@ -189,7 +211,19 @@ fn walls(plan: &Plan, around: &Around<'_>) -> Vec<Misfit> {
     misfits
 }
 
-fn catch(plan: &Plan, around: &Around<'_>, thickness_m: f64) -> Vec<Misfit> {
+/// The rung whose region reaches furthest over an edge, and how far.
+///
+/// - `within_m`: how far a place is from the edge, below 0 beyond
+fn furthest_over(rungs: &[Rung], within_m: impl Fn([f64; 2]) -> f64) -> Option<(f64, f64)> {
+    let over_m = |rung: &Rung| {
+        let edge_m = rung.region.as_ref()?.edge_m(180).map(|place_m| -within_m(place_m));
+        Some((rung.height_m, edge_m.fold(f64::NEG_INFINITY, f64::max)))
+    };
+    let furthest = rungs.iter().filter_map(over_m).max_by(|(_, a), (_, b)| a.total_cmp(b));
+    furthest.filter(|&(_, by_m)| by_m > 0.0)
+}
+
+fn catch(rungs: &[Rung], around: &Around<'_>, thickness_m: f64) -> Vec<Misfit> {
     let catch = &around.hall.catch;
     let mut misfits = Vec::new();
     let least_m = catch_height_needed_m(catch.stopping_m, thickness_m);
@@ -200,30 +234,42 @@ fn catch(plan: &Plan, around: &Around<'_>, thickness_m: f64) -> Vec<Misfit> {
     if !around.has_catch() {
         return misfits;
     }
-    let region = &plan.sound.region;
     let reach_m = around.reach_m;
     let within = |place_m| around.within_catch_m(place_m) - reach_m;
-    let least_within_m = region.edge_m(180).map(within).fold(f64::INFINITY, f64::min);
-    if least_within_m < 0.0 {
-        let [x, y] = region.centre_m;
-        let long_m = region.reach_m(0.0) + reach_m;
-        let wide_m = region.reach_m(std::f64::consts::FRAC_PI_2) + reach_m;
-        misfits.push(Misfit::Catch {
-            by_m: -least_within_m,
-            along_m: [x - long_m, x + long_m],
-            width_m: 2.0 * (y.abs() + wide_m),
-        });
+    if let Some((height_m, by_m)) = furthest_over(rungs, within) {
+        let edges_m = rungs.iter().filter_map(|rung| rung.region.as_ref());
+        let mut edges_m = edges_m.flat_map(|region| region.edge_m(180));
+        let first_m = edges_m.next().unwrap_or_default();
+        let first = Area { along_m: [first_m[0]; 2], across_m: [first_m[1]; 2] };
+        let all = edges_m.fold(first.with(first_m, reach_m), |all, at_m| all.with(at_m, reach_m));
+        let width_m = 2.0 * all.across_m[0].abs().max(all.across_m[1].abs());
+        misfits.push(Misfit::Catch { height_m, by_m, along_m: all.along_m, width_m });
     }
+    misfits.extend(catch_in_hall(around));
     misfits
 }
 
+/// Walls through the catch, and people in it.
+fn catch_in_hall(around: &Around<'_>) -> Vec<Misfit> {
+    let hall = around.hall;
+    let Some(outline) = around.catch_area() else { return Vec::new() };
+    let [[from_x, to_x], [from_y, to_y]] = [outline.along_m, outline.across_m];
+    let corners_m = [[from_x, from_y], [from_x, to_y], [to_x, from_y], [to_x, to_y]];
+    // The body's reach is no matter here.
+    let to_walls_m = corners_m.map(|corner_m| around.to_walls_m(corner_m) + around.reach_m);
+    let by_m = -to_walls_m.into_iter().fold(f64::INFINITY, f64::min);
+    let through = (by_m > 0.0).then_some(Misfit::CatchThroughWall { by_m });
+    let inside = hall.people.iter().filter_map(|person| {
+        let by_m = person.radius_m - outline.to_m(around.in_launch([person.x_m, person.y_m]));
+        (by_m > 0.0).then(|| Misfit::PersonInCatch { name: person.name.clone(), by_m })
+    });
+    through.into_iter().chain(inside).collect()
+}
+
 fn people(plan: &Plan, around: &Around<'_>) -> Vec<Misfit> {
-    let release = &around.hall.release;
-    let (sin, cos) = release.direction_rad.sin_cos();
     let keep_out = plan.keep_out;
     let one = |person: &undulift_design::Person| {
-        let (x, y) = (person.x_m - release.from_wall_m, person.y_m - release.across_m);
-        let to_m = keep_out.to_m([x * cos + y * sin, y * cos - x * sin]) - person.radius_m;
+        let to_m = keep_out.to_m(around.in_launch([person.x_m, person.y_m])) - person.radius_m;
         (to_m < 0.0).then(|| Misfit::Person {
             name: person.name.clone(),
             by_m: -to_m,

@@ -38,7 +38,7 @@ pub use fault::FaultKind;
 pub use fit::{Misfit, ladder, misfits};
 pub use measuring::Measuring;
 pub use plan::{Bands, FaultRow, Furthest, Least, Plan, Sound};
-pub use reading::{Flown, Ladder, Narrowed, Reading, Stop};
+pub use reading::{Flown, Ladder, Narrowed, Next, Reading, Stop};
 pub use region::{Ellipse, Scaled, normal_region_scale, region};
 pub use rung::Rung;
 pub use sample_size::{

@@ -18,7 +18,7 @@ use undulift_flight::Spread;
 use crate::{Bands, Drop, DropError, Outcome, Truth};
 use evidence::{Evidence, grid};
 use likeness::Likeness;
-use measures::{Counted, MEASURES, of_seen, tilt_deg};
+use measures::{Counted, MEASURES, of_seen, tilt_deg, tilt_rad, with_error_rad};
 pub use stop::Stop;
 use weights::Weights;
 
@@ -27,6 +27,10 @@ const SURPRISING: f64 = 0.01;
 /// Shares of the next rung's drops that may miss the catch, and that may touch anything.
 const MOST_MISSING: f64 = 0.05;
 const MOST_TOUCHING: f64 = 0.01;
+/// Standard errors by which one measure must be off to be called the reason.
+const ALONE: f64 = 2.0;
+/// Drops with a distance from a height, before the next.
+const ENOUGH: usize = 3;
 
 /// Drops that were flown from one height.
 #[derive(Debug, Clone, Copy)]
@@ -44,8 +48,8 @@ pub struct Reading {
     pub stops: Vec<Stop>,
     /// Drops that were seen.
     pub seen: usize,
-    /// The next height; absent after the last.
-    pub next_m: Option<f64>,
+    /// Where to drop next, if not to stop; absent where enough was seen from every height.
+    pub next: Option<Next>,
     /// Heights below the highest seen of which nothing was seen, m.
     pub skipped_m: Vec<f64>,
     /// Share of ladders by robots that the plan allows for that go as badly with it, or worse.
@@ -62,6 +66,15 @@ pub struct Reading {
     pub rungs: Vec<Narrowed>,
 }
 
+/// The lowest height from which too little was seen.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Next {
+    /// m.
+    pub height_m: f64,
+    /// Drops that are missing there before going higher.
+    pub drops: usize,
+}
+
 /// What drops to come from one height will be like.
 #[derive(Debug, Clone)]
 pub struct Narrowed {
@@ -69,6 +82,8 @@ pub struct Narrowed {
     pub height_m: f64,
     /// Drops that were seen.
     pub seen: usize,
+    /// Those among them whose distance was measured and that went well enough to tell something.
+    pub measured: usize,
     /// Sound drops that were flown.
     pub flown: usize,
     /// Of the plan; absent where no sound drop could be flown.
@@ -120,7 +135,17 @@ impl<'d> Rung<'d> {
         Self { height_m: flown.height_m, truths, outcomes, likeness }
     }
 
-    fn narrowed(&self, weights: &Weights, seen: usize) -> Narrowed {
+    /// The most that a drop may tilt, where none of those flown turned over, rad: the most of any, with
+    /// what measuring misses.
+    fn most_tilt_rad(&self) -> Option<f64> {
+        if self.outcomes.iter().any(|outcome| outcome.summary.inverted) {
+            return None;
+        }
+        let tilts_rad = self.outcomes.iter().map(|outcome| tilt_rad(outcome));
+        tilts_rad.reduce(f64::max).map(with_error_rad)
+    }
+
+    fn narrowed(&self, weights: &Weights, [seen, measured]: [usize; 2]) -> Narrowed {
         let whole: f64 = weights.each.iter().sum();
         let share = |holds: fn(&Outcome) -> bool| {
             let holding = self.outcomes.iter().zip(&weights.each).filter(|(o, _)| holds(o));
@@ -131,6 +156,7 @@ impl<'d> Rung<'d> {
         Narrowed {
             height_m: self.height_m,
             seen,
+            measured,
             flown: self.outcomes.len(),
             before: Bands::of(&self.outcomes),
             now: Bands::to_come(&self.outcomes, &weights.each),
@@ -172,19 +198,26 @@ impl<'d> Ladder<'d> {
             .map(|rung| Weights::of(&rung.truths, &likenesses, &counted))
             .collect();
         let of_rung = |rung_idx: usize| seen.iter().filter(move |drop| drop.rung_idx == rung_idx);
+        let counts = |rung_idx: usize| {
+            let has_distance = |(idx, m): &&Counted| *idx == rung_idx && !m[0].is_nan();
+            [of_rung(rung_idx).count(), counted.iter().filter(has_distance).count()]
+        };
         let both = self.rungs.iter().zip(&weights).enumerate();
-        let narrowed: Vec<Narrowed> = both
-            .map(|(idx, (rung, weights))| rung.narrowed(weights, of_rung(idx).count()))
-            .collect();
+        let narrowed: Vec<Narrowed> =
+            both.map(|(idx, (rung, weights))| rung.narrowed(weights, counts(idx))).collect();
         let surprise = Evidence::new(&likenesses, &counted).surprise(seed);
-        let highest_idx = seen.iter().map(|drop| drop.rung_idx).max().unwrap_or(0);
-        let next = narrowed.get(highest_idx + 1);
-        let surprising = (surprise < SURPRISING).then(|| self.furthest_off(surprise, &counted));
-        let mut stops: Vec<Stop> = surprising.flatten().into_iter().collect();
-        for (rung_idx, now) in narrowed.iter().enumerate() {
-            stops.extend(badly_ended(&of_rung(rung_idx).collect::<Vec<_>>(), now));
+        let next = narrowed.iter().find(|rung| rung.measured < ENOUGH);
+        let mut stops = Vec::new();
+        if surprise < SURPRISING {
+            stops.push(self.surprising(surprise, &counted));
+        }
+        for (rung_idx, (rung, now)) in self.rungs.iter().zip(&narrowed).enumerate() {
+            let of_rung: Vec<&SeenDrop> = of_rung(rung_idx).collect();
+            stops.extend(badly_ended(&of_rung, now));
+            stops.extend(tilted(&of_rung, rung));
         }
         stops.extend(next.into_iter().flat_map(ahead));
+        let highest_idx = seen.iter().map(|drop| drop.rung_idx).max().unwrap_or(0);
         let skipped = narrowed[..highest_idx].iter().filter(|rung| rung.seen == 0);
         let top = self.rungs.last().zip(weights.last());
         let of_truth = |value: fn(&Truth) -> f64| {
@@ -195,7 +228,7 @@ impl<'d> Ladder<'d> {
         Ok(Reading {
             stops,
             seen: seen.len(),
-            next_m: next.map(|rung| rung.height_m),
+            next: next.map(|rung| Next { height_m: rung.height_m, drops: ENOUGH - rung.measured }),
             skipped_m: skipped.map(|rung| rung.height_m).collect(),
             surprise,
             lift: of_truth(Truth::lift),
@@ -206,44 +239,52 @@ impl<'d> Ladder<'d> {
         })
     }
 
-    /// The measure that goes worst with every truth.
-    fn furthest_off(&self, surprise: f64, counted: &[Counted]) -> Option<Stop> {
-        let truths = grid();
-        let mut worst: Option<(f64, Stop)> = None;
-        for (rung_idx, rung) in self.rungs.iter().enumerate() {
-            let Ok(likeness) = &rung.likeness else { continue };
-            for measure in 0..MEASURES {
-                let of_rung = counted.iter().filter(|(idx, _)| *idx == rung_idx);
-                let values = of_rung.map(|(_, m)| m[measure]).filter(|value| !value.is_nan());
-                let values: Vec<f64> = values.collect();
-                if values.is_empty() {
-                    continue;
-                }
-                let off = |truth: &Truth| likeness.off(*truth, measure, &values);
-                let least = truths.iter().map(off).fold(f64::INFINITY, f64::min);
-                if worst.as_ref().is_none_or(|(most, _)| least > *most) {
-                    worst = rung.surprising(surprise, measure, &values).map(|stop| (least, stop));
-                }
-            }
-        }
-        worst.map(|(_, stop)| stop)
+    /// By the measure that goes worst with every truth, if one does by itself.
+    fn surprising(&self, surprise: f64, counted: &[Counted]) -> Stop {
+        let per_mille = 1000.0 * surprise;
+        let of_measure = |(rung_idx, rung): (usize, &Rung<'d>), measure: usize| {
+            let of_rung = counted.iter().filter(|(idx, _)| *idx == rung_idx);
+            let values = of_rung.map(|(_, m)| m[measure]).filter(|value| !value.is_nan());
+            off_of(rung, measure, &values.collect::<Vec<f64>>(), per_mille)
+        };
+        let all =
+            self.rungs.iter().enumerate().flat_map(|rung| {
+                (0..MEASURES).filter_map(move |measure| of_measure(rung, measure))
+            });
+        let worst = all.max_by(|(a, _), (b, _)| a.total_cmp(b));
+        let worst = worst.filter(|(off, _)| *off > ALONE);
+        worst.map_or(Stop::Together { per_mille }, |(_, stop)| stop)
     }
 }
 
-impl Rung<'_> {
-    fn surprising(&self, surprise: f64, measure: usize, values: &[f64]) -> Option<Stop> {
-        let bands = Bands::of(&self.outcomes)?;
-        let mean = values.iter().sum::<f64>() / values.len() as f64;
-        let tilt = bands.peak_tilt_rad;
-        let (what, unit, [low, high], mean) = match measure {
-            0 => ("distance", "m", [bands.distance_m.p05, bands.distance_m.p95], mean),
-            1 => ("side", "m", [bands.side_m.p05, bands.side_m.p95], mean),
-            2 => ("time", "s", [bands.time_s.p05, bands.time_s.p95], mean),
-            _ => ("largest tilt", "°", [tilt.p05, tilt.p95].map(f64::to_degrees), tilt_deg(mean)),
-        };
-        let (per_mille, height_m, drops) = (1000.0 * surprise, self.height_m, values.len());
-        Some(Stop::Surprise { per_mille, what, unit, height_m, drops, mean, low, high })
-    }
+/// How far the mean of some values of one measure is off with the truth that goes best, by its own
+/// scatter, and what to say of it.
+///
+/// - returns nothing where there are no values
+fn off_of(rung: &Rung<'_>, measure: usize, values: &[f64], per_mille: f64) -> Option<(f64, Stop)> {
+    let likeness = rung.likeness.as_ref().ok().filter(|_| !values.is_empty())?;
+    let (truths, drops) = (grid(), values.len());
+    let off = |truth: &Truth| likeness.off(*truth, measure, values);
+    let least = truths.iter().map(off).fold(f64::INFINITY, f64::min);
+    let means = truths.iter().map(|truth| likeness.means_of(*truth, measure, drops));
+    let [low, high] = means.fold([f64::INFINITY, f64::NEG_INFINITY], |[low, high], of| {
+        [low.min(of[0]), high.max(of[1])]
+    });
+    let mean = values.iter().sum::<f64>() / drops as f64;
+    let (what, unit) =
+        [("distance", "m"), ("side", "m"), ("time", "s"), ("largest tilt", "°")][measure];
+    let shown = |value: f64| if measure == 3 { tilt_deg(value) } else { value };
+    let [mean, low, high] = [mean, low, high].map(shown);
+    let height_m = rung.height_m;
+    Some((least, Stop::Surprise { per_mille, what, unit, height_m, drops, mean, low, high }))
+}
+
+/// Drops that tilted further than any that was flown.
+fn tilted(seen: &[&SeenDrop], rung: &Rung<'_>) -> Option<Stop> {
+    let tilts_rad = seen.iter().filter_map(|drop| drop.peak_tilt_rad);
+    let (tilt_rad, most_rad) = (tilts_rad.reduce(f64::max)?, rung.most_tilt_rad()?);
+    let [tilt_deg, most_deg] = [tilt_rad, most_rad].map(f64::to_degrees);
+    (tilt_rad > most_rad).then_some(Stop::Tilted { height_m: rung.height_m, tilt_deg, most_deg })
 }
 
 /// Drops that ended otherwise than they were meant to.

@@ -29,6 +29,8 @@ pub struct Sheet<'a> {
     pub hall: &'a Hall,
     /// The name of the hall's file.
     pub hall_name: &'a str,
+    /// Values that were set beside the design's file.
+    pub set: &'a [String],
     /// Of the program.
     pub version: &'a str,
     /// Of the drops.

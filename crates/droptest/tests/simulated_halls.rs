@@ -115,7 +115,7 @@ fn twin_bands_are_narrower_and_still_hold() {
     let one = |hall: usize| {
         let truth = truth_of(hall);
         let reading = halls.ladder.read(&halls.seen_at(truth, hall, 2), 5).unwrap();
-        assert_eq!(reading.next_m, Some(7.0));
+        assert_eq!(reading.next.map(|next| next.height_m), Some(7.0));
         let came = (0..SEEN).map(|k| halls.outcome(truth, 3, number(hall) + 50 + k));
         (rows(&reading.rungs[3], &came.collect::<Vec<_>>()), reading.stops.len())
     };

@@ -10,7 +10,7 @@ mod remedies;
 use anyhow::bail;
 
 use crate::args::{Budget as Args, Case};
-use crate::{Outcome, Refused, json, terminal};
+use crate::{Outcome, Refused, json, terminal, whole_file};
 use asking::judge;
 use launches::Launches;
 use remedies::Remedies;
@@ -21,6 +21,7 @@ pub fn run(args: &Args) -> anyhow::Result<Outcome> {
         Ok(design) => design,
         Err(errors) => return Ok(refuse(errors)),
     };
+    whole_file::ensure_apart([&args.design], &args.histories)?;
     let mut judged = match judge(&design, args)? {
         Ok(judged) => judged,
         Err(errors) => return Ok(refuse(errors)),

@@ -13,6 +13,8 @@ pub fn object(told: &Told<'_>) -> Value {
     let plan = &told.plan;
     let mut put = |key: &str, value: Value| object.insert(key.into(), value);
     put("input_sha256", json!(told.design.input_sha256_with(&told.hall.text)));
+    put("design_sha256", json!(told.design.input_sha256));
+    put("hall_sha256", json!(told.hall.sha256()));
     put("seed", json!(told.args.seed));
     put("complete", json!(told.complete));
     put("flights", json!(plan.drops));
@@ -48,8 +50,10 @@ pub fn object(told: &Told<'_>) -> Value {
     if let Some((reading, _)) = &told.reading {
         put("seen", seen::object(reading));
     }
-    put("fits", json!(told.misfits.is_empty()));
-    put("reasons", told.misfits.iter().map(ToString::to_string).collect());
+    put("fits", json!(told.misfits.is_empty() && told.complete));
+    let early = (!told.complete).then(|| "ended early: not all drops were flown".to_owned());
+    put("reasons", told.misfits.iter().map(ToString::to_string).chain(early).collect());
+    put("warnings", json!(told.warnings()));
     Value::Object(object)
 }
 

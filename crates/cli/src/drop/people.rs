@@ -25,8 +25,11 @@ pub fn answer(told: &Told<'_>) -> String {
     if let Some((reading, _)) = &told.reading {
         seen::answer(reading, &mut text);
     }
-    let fits =
-        if told.misfits.is_empty() { "all of it, as computed" } else { "not all; see below" };
+    let fits = match (told.complete, told.misfits.is_empty()) {
+        (false, _) => "not known: ended early",
+        (true, true) => "all of it, as computed",
+        (true, false) => "not all; see below",
+    };
     line(&mut text, "The hall holds", fits);
     for path in told.args.csv.iter().chain(&told.args.sheets) {
         line(&mut text, "Wrote", &path.display().to_string());
@@ -136,13 +139,15 @@ fn room(told: &Told<'_>, text: &mut String) {
     let area = format!("{long_m:.1} × {wide_m:.1} m: {} of the release", around_release(keep_out));
     line(text, "Keep-out area", &area);
     let people = if least.people_m.is_finite() {
-        format!("people {:.1} m", least.people_m)
+        format!("people {:.1} m", down(least.people_m))
     } else {
         "no people given".into()
     };
     let clear = format!(
         "walls {:.1} m, {people}, ceiling {:.1} m, of all drops, half the body's length ({:.2} m) taken off",
-        least.walls_m, least.ceiling_m, told.reach_m
+        down(least.walls_m),
+        down(least.ceiling_m),
+        told.reach_m
     );
     line(text, "Least clearances", &clear);
     let rig = if least.behind_m > 0.0 {
@@ -157,12 +162,16 @@ fn room(told: &Told<'_>, text: &mut String) {
     line(text, "Rig", &room);
 }
 
-/// An area in words that go on with "of the release" or the like.
+/// A clearance, rounded to 0.1 m so that it is no larger.
+fn down(clearance_m: f64) -> f64 {
+    (10.0 * clearance_m + 1e-9).floor() / 10.0 + 0.0
+}
+
+/// An area in words that go on with "of the release" or the like, rounded outward.
 fn around_release(area: &Area) -> String {
-    let Area { along_m, across_m } = area;
+    let [behind, ahead, right, left] = area.outward_m();
     format!(
-        "{:.1} m behind to {:.1} m ahead, {:.1} m to the right to {:.1} m to the left",
-        -along_m[0], along_m[1], -across_m[0], across_m[1]
+        "{behind:.1} m behind to {ahead:.1} m ahead, {right:.1} m to the right to {left:.1} m to the left"
     )
 }
 
@@ -225,7 +234,8 @@ fn ladder(told: &Told<'_>, text: &mut String) {
             format!("{:.digits$} to {:.digits$}", spread.p05, spread.p95)
         };
         let [long_m, wide_m] = rung.to_film.size_m();
-        let film = format!("{long_m:.0} × {wide_m:.0} × {:.0}", rung.film_height_m);
+        let up = |size_m: f64| (size_m - 1e-9).ceil();
+        let film = format!("{} × {} × {}", up(long_m), up(wide_m), up(rung.film_height_m));
         let row = format!(
             "{height_m:>6.1}{:>16}{:>16}{:>16}{:>12}{:>9.0}{film:>16}",
             pair(&bands.distance_m, 1),

@@ -1,31 +1,29 @@
 //! What was seen at the rungs so far, in words and as JSON.
 
 use serde_json::{Value, json};
-use undulift_droptest::{Narrowed, Reading};
+use undulift_droptest::{Narrowed, Next, Reading};
 use undulift_flight::Spread;
 
 use super::object;
 use crate::json;
 use crate::people::line;
 
-/// Drops from a height that say more than chance.
-const FEW: usize = 3;
-
 /// For people.
 pub fn answer(reading: &Reading, text: &mut String) {
     let goes = format!(
-        "{} drops; chance that a robot of the plan goes with it as badly or worse {:.3} (below 0.01: stop)",
-        reading.seen, reading.surprise
+        "{} drops; of ladders by robots of the plan, {:.1} in 100 go as badly with it or worse; below 1 means stop",
+        reading.seen,
+        100.0 * reading.surprise
     );
     line(text, "Seen so far", &goes);
+    if !reading.stops.is_empty() {
+        line(text, "Verdict", "STOP; see below. What is to come can't be told by it");
+        return;
+    }
     if let (Some(lift), Some(drag)) = (&reading.lift, &reading.drag) {
         let factor = |Spread { p05, p50, p95 }: &Spread| format!("{p50:.2} ({p05:.2} to {p95:.2})");
-        let like = format!(
-            "lift × {} and drag × {} of what is computed; as much is known as from {:.0} flown drops",
-            factor(lift),
-            factor(drag),
-            reading.effective
-        );
+        let like =
+            format!("lift × {} and drag × {} of what is computed", factor(lift), factor(drag));
         line(text, "This robot", &like);
     }
     line(text, "Drops to come", "by what was seen, 5 % to 95 %; in brackets by the plan:");
@@ -37,10 +35,13 @@ pub fn answer(reading: &Reading, text: &mut String) {
     for rung in &reading.rungs {
         line(text, "", &row(rung));
     }
-    let verdict = match (reading.stops.is_empty(), reading.next_m) {
-        (true, Some(next_m)) => format!("go on, to {next_m:.1} m, with drops as they are to come"),
-        (true, None) => "go on from the highest release, with drops as they are to come".into(),
-        (false, _) => "STOP; see below".into(),
+    let verdict = match reading.next {
+        Some(Next { height_m, drops }) => {
+            format!(
+                "go on at {height_m:.1} m: {drops} drops or more from there before going higher"
+            )
+        }
+        None => "go on from the highest release, with drops as they are to come".into(),
     };
     line(text, "Verdict", &verdict);
 }
@@ -74,13 +75,6 @@ pub fn warnings(reading: &Reading) -> Vec<String> {
             skipped_m.join(", ")
         ));
     }
-    let highest = reading.rungs.iter().rfind(|rung| rung.seen > 0);
-    if let Some(rung) = highest.filter(|rung| rung.seen < FEW) {
-        warnings.push(format!(
-            "{} of {FEW} drops or more was seen from {:.1} m: that says little; drop it again before going higher",
-            rung.seen, rung.height_m
-        ));
-    }
     if reading.power < 1.0 {
         warnings.push(
             "what was seen says more than the flown drops can tell, so bands are wider than they could be; \
@@ -108,7 +102,8 @@ pub fn object(reading: &Reading) -> Value {
         "verdict": if reading.stops.is_empty() { "go_on" } else { "stop" },
         "reasons": reading.stops.iter().map(ToString::to_string).collect::<Vec<_>>(),
         "drops": reading.seen,
-        "next_height_m": reading.next_m,
+        "next_height_m": reading.next.map(|next| next.height_m),
+        "next_drops": reading.next.map(|next| next.drops),
         "chance": reading.surprise,
         "lift_scale": reading.lift.as_ref().map(json::percentiles),
         "drag_scale": reading.drag.as_ref().map(json::percentiles),

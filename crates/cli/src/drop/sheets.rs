@@ -29,18 +29,13 @@ impl Format {
 
 /// Refuses paths that no sheet can be written to, before anything is flown.
 pub fn check(paths: &[PathBuf]) -> anyhow::Result<()> {
-    for (n, path) in paths.iter().enumerate() {
+    for path in paths {
         anyhow::ensure!(!path.is_dir(), "can't write {}: it is a folder", path.display());
         Format::of(path)?;
         let folder = path.parent().filter(|folder| !folder.as_os_str().is_empty());
         anyhow::ensure!(
             folder.is_none_or(Path::is_dir),
             "can't write {}: there is no such folder",
-            path.display()
-        );
-        anyhow::ensure!(
-            !paths[..n].contains(path),
-            "{} is given twice, but each sheet needs a file of its own",
             path.display()
         );
     }
@@ -50,10 +45,12 @@ pub fn check(paths: &[PathBuf]) -> anyhow::Result<()> {
 /// Writes all sheets that were asked for, or none.
 pub fn write(told: &Told<'_>) -> anyhow::Result<()> {
     let hall_name = told.args.hall.file_name().map(|name| name.to_string_lossy());
+    let set: Vec<String> = told.args.sets.iter().map(|set| set.text().to_owned()).collect();
     let sheet = Sheet {
         design: told.design,
         hall: told.hall,
         hall_name: &hall_name.unwrap_or_default(),
+        set: &set,
         version: env!("CARGO_PKG_VERSION"),
         seed: told.args.seed,
         asked: told.args.flights as usize,

@@ -80,6 +80,13 @@ impl Likeness {
         off.abs() * n.sqrt() / scatter
     }
 
+    /// Between what the mean of so many drops should be, at 90 %.
+    pub fn means_of(&self, truth: Truth, measure: usize, drops: usize) -> [f64; 2] {
+        let scatter = self.scatter(truth)[measure].hypot(MEASURED_TO[measure]);
+        let off = 1.645 * scatter / (drops as f64).sqrt();
+        [self.mean(truth)[measure] - off, self.mean(truth)[measure] + off]
+    }
+
     /// For drops of a robot like this of which those things were measured.
     pub fn chances(&self, truth: Truth, measured: [bool; MEASURES]) -> Chances {
         let scatter = Matrix4::from_diagonal(&self.scatter(truth));

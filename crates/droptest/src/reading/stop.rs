@@ -8,8 +8,8 @@ pub enum Stop {
     #[error(
         "what was seen doesn't go with the plan: of drops by robots that it allows for, {per_mille:.0} in 1000 \
          go as badly with it or worse; most of all {what} from {height_m:.1} m, {mean:.2} {unit} in the mean of \
-         {drops}, where {low:.2} to {high:.2} were to be seen; find out why (release, robot, measuring, \
-         model) before the next drop"
+         {drops}, where a mean of {low:.2} to {high:.2} was to be seen; find out why (release, robot, \
+         measuring, units, model) before the next drop"
     )]
     Surprise {
         /// In a thousand.
@@ -24,15 +24,38 @@ pub enum Stop {
         drops: usize,
         /// Their mean.
         mean: f64,
-        /// 5 % band of the plan.
+        /// Least mean that goes with a robot of the plan, nine times in ten.
         low: f64,
-        /// 95 % band of the plan.
+        /// Largest such mean.
         high: f64,
+    },
+    /// Each measure by itself would do, but not all of them in one robot.
+    #[error(
+        "what was seen doesn't go with the plan: of drops by robots that it allows for, {per_mille:.0} in 1000 \
+         go as badly with it or worse; each measure by itself would do, but not all together or not so \
+         far apart from drop to drop; find out why (release, robot, measuring, model) before the next drop"
+    )]
+    Together {
+        /// In a thousand.
+        per_mille: f64,
+    },
+    /// A drop tilted further than any that was flown.
+    #[error(
+        "a drop from {height_m:.1} m tilted by {tilt_deg:.0}°, further than any that was computed, measuring \
+         included ({most_deg:.0}°); find out why before the next drop"
+    )]
+    Tilted {
+        /// From where, m.
+        height_m: f64,
+        /// °.
+        tilt_deg: f64,
+        /// °.
+        most_deg: f64,
     },
     /// A drop touched something.
     #[error(
-        "{drops} of {of} drops from {height_m:.1} m touched something on the way; find out why, and go on only \
-         when it can't happen again"
+        "{drops} of {of} drops from {height_m:.1} m touched something on the way; find out why, go on only when it \
+         can't happen again, and then with a new file of the drops after"
     )]
     Touched {
         /// How many.
@@ -44,7 +67,8 @@ pub enum Stop {
     },
     /// Something of robot or release didn't do as it should.
     #[error(
-        "{drops} of {of} drops from {height_m:.1} m failed; mend it, and begin again at the lowest height"
+        "{drops} of {of} drops from {height_m:.1} m failed; mend it, and begin again at the lowest height, with a \
+         new file"
     )]
     Failed {
         /// How many.

@@ -91,13 +91,17 @@ fn heading(sheet: &Sheet<'_>) -> Section {
     );
     let computed =
         format!("{} drops with undulift {}, seed {}", sheet.plan.drops, sheet.version, sheet.seed);
-    let facts = vec![
+    let mut facts = vec![
         ("Robot", body.into()),
         ("Hall", size.into()),
         ("Computed", computed.into()),
+        // With what was set, and the files that the design names.
         ("Design's SHA-256", Words::exact(&sheet.design.input_sha256)),
         ("Hall's SHA-256", Words::exact(&sheet.hall.sha256())),
     ];
+    if !sheet.set.is_empty() {
+        facts.insert(1, ("Set by hand", Words::exact(&sheet.set.join("; "))));
+    }
     let fill = vec!["Date", "Operator", "Remote stop", "Observer", "Watches the door"];
     Section {
         heading: Words::default(),

@@ -1,7 +1,5 @@
 //! The plan of the hall: what is drawn where, in millimetres of paper.
 
-use undulift_design::CatchKind;
-
 use super::Sheet;
 use super::labels::{LETTERS_MM, Label, Taken, Wanted, place, with_short_names};
 use super::scale::{Paper, corners_m, step_m};
@@ -89,7 +87,9 @@ impl Drawing {
         let ahead_m = ARROW_MM / paper.length_mm(1.0);
         let mut drawing = Self {
             hall_mm,
-            catch_mm: catch_m(sheet).map(|corners_m| corners_m.map(|at_m| paper.at_mm(at_m))),
+            catch_mm: around
+                .catch_area()
+                .map(|area| corners_m(&around, &area).map(|at_m| paper.at_mm(at_m))),
             keep_out_mm: corners_m(&around, &sheet.plan.keep_out).map(|at_m| paper.at_mm(at_m)),
             regions: regions(sheet, &paper),
             fault_mm: sheet.plan.furthest.map(|furthest| at_mm(furthest.place_m)),
@@ -237,21 +237,6 @@ fn circle(paper: &Paper, person: &undulift_design::Person) -> Circle {
         centre_mm: paper.at_mm([person.x_m, person.y_m]),
         radius_mm: paper.length_mm(person.radius_m),
     }
-}
-
-/// Its corners in the hall; absent for the floor.
-fn catch_m(sheet: &Sheet<'_>) -> Option<[[f64; 2]; 4]> {
-    let (catch, around) = (&sheet.hall.catch, sheet.around());
-    if catch.kind == CatchKind::Floor {
-        return None;
-    }
-    // What has no size given is everywhere.
-    let most_m = 2.0 * sheet.hall.length_m.hypot(sheet.hall.width_m);
-    let from_m = catch.length_m.map_or(-most_m, |_| catch.from_release_m);
-    let to_m = catch.length_m.map_or(most_m, |length_m| catch.from_release_m + length_m);
-    let half_m = catch.width_m.map_or(most_m, |width_m| 0.5 * width_m);
-    let area = crate::Area { along_m: [from_m, to_m], across_m: [-half_m, half_m] };
-    Some(corners_m(&around, &area))
 }
 
 /// Along the hall's lower edge and its left one, with both ends where there is room for them.

@@ -21,26 +21,35 @@ pub(super) fn ladder(sheet: &Sheet<'_>) -> Section {
     let how = "Five drops or more a rung; go higher only when they lie within the bands (5 % to 95 %: nine in ten \
                should; outside is by more than 5 cm, 0.02 s or 2°, as measuring goes) and none surprised you. \
                Distance is measured on the floor, from below the release straight to the middle of the body; \
-               side is how far of it is left of the launch.";
+               side is how far of it is left of the launch. Ended: landed, inverted (turned over), missed_catch, touched \
+               (anything on the way) or failed (robot or release).";
     let mut blocks = vec![Block::Text(how.into())];
-    blocks.extend((0..sheet.rungs.len()).map(|rung_idx| rung(sheet, rung_idx)));
+    // Nobody climbs on after a stop.
+    let stopped = sheet.seen.is_some_and(|seen| !seen.reading.stops.is_empty());
+    let rungs = (0..sheet.rungs.len()).filter(|&rung_idx| {
+        !stopped || sheet.seen.is_some_and(|seen| seen.reading.rungs[rung_idx].seen > 0)
+    });
+    blocks.extend(rungs.map(|rung_idx| rung(sheet, rung_idx, if stopped { 0 } else { ROWS })));
     let heading = Words::from("Release ladder of ").and_name(&sheet.design.name);
     Section { heading, blocks, page: Page::New }
 }
 
-fn rung(sheet: &Sheet<'_>, rung_idx: usize) -> Block {
+/// - `least_rows`: to fill in or filled in, at least
+fn rung(sheet: &Sheet<'_>, rung_idx: usize, least_rows: usize) -> Block {
     let rung = &sheet.rungs[rung_idx];
     let name = format!("{} m", height(rung.height_m));
     let columns = COLUMNS.map(Words::exact).to_vec();
     let mut rows = Vec::new();
-    let narrowed = sheet.seen.and_then(|seen| seen.reading.rungs[rung_idx].now);
+    // What goes with no robot of the plan narrows nothing.
+    let seen = sheet.seen.filter(|seen| seen.reading.stops.is_empty());
+    let narrowed = seen.and_then(|seen| seen.reading.rungs[rung_idx].now);
     if let Some(bands) = narrowed.or(rung.bands) {
         rows.push(bands_row(&bands, rung.height_m, sheet.hall.catch.kind));
     }
     let filled = sheet.seen.map_or_else(Vec::new, |seen| seen.rows(rung_idx, rung.height_m));
     let first_empty = filled.len() + 1;
     rows.extend(filled);
-    rows.extend((first_empty..=ROWS).map(|drop| {
+    rows.extend((first_empty..=least_rows).map(|drop| {
         let cells = [drop.to_string(), height(rung.height_m)];
         let empty = vec![Words::default(); COLUMNS.len() - cells.len()];
         cells.into_iter().map(Words::from).chain(empty).collect()
@@ -50,9 +59,13 @@ fn rung(sheet: &Sheet<'_>, rung_idx: usize) -> Block {
         None => format!("none of {} drops could be flown: don't drop from here", rung.drops),
     };
     let [long_m, wide_m] = rung.to_film.size_m();
+    let up = |size_m: f64| (size_m - 1e-9).ceil();
     let about = format!(
-        "{stop}; film {long_m:.0} m along, {wide_m:.0} m across, {:.0} m high; of {} computed drops",
-        rung.film_height_m, rung.drops
+        "{stop}; film {} m along, {} m across, {} m high; of {} computed drops",
+        up(long_m),
+        up(wide_m),
+        up(rung.film_height_m),
+        rung.drops
     );
     Block::Rung {
         name: name.into(),
@@ -64,7 +77,12 @@ fn rung(sheet: &Sheet<'_>, rung_idx: usize) -> Block {
 
 fn bands_row(bands: &Bands, height_m: f64, catch: CatchKind) -> Vec<Words> {
     let pair = |Spread { p05, p95, .. }: Spread, digits: usize| {
-        Words::from(format!("{p05:.digits$} to {p95:.digits$}"))
+        // No zero has a sign.
+        let [low, high] = [p05, p95].map(|end| format!("{end:.digits$}"));
+        let plain = |text: String| {
+            if text.trim_matches(['-', '0', '.']).is_empty() { text.replace('-', "") } else { text }
+        };
+        Words::from(format!("{} to {}", plain(low), plain(high)))
     };
     let [low_deg, high_deg] =
         [bands.peak_tilt_rad.p05, bands.peak_tilt_rad.p95].map(f64::to_degrees);
@@ -85,7 +103,7 @@ fn bands_row(bands: &Bands, height_m: f64, catch: CatchKind) -> Vec<Words> {
 
 fn limits_of(rung: &Rung) -> String {
     let outside = drops_outside_to_stop(ROWS).map_or_else(String::new, |least| {
-        format!("Stop if {least} of {ROWS} lie outside of one band")
+        format!("Stop if {least} of {ROWS} lie outside of one band, and read them by --seen")
     });
     match (rung.turned_over, rung.largest_tilt_rad) {
         (0, Some(tilt_rad)) => {

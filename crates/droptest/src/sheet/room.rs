@@ -23,6 +23,19 @@ pub(super) fn places(sheet: &Sheet<'_>) -> Section {
         sheet.around().in_hall(middle_m(&sheet.plan.keep_out)),
         format!("{}, from the release", sides(&sheet.plan.keep_out)),
     ));
+    if let Some(catch) = sheet.around().catch_area() {
+        let kind = match sheet.hall.catch.kind {
+            CatchKind::Net => "net",
+            _ => "mat",
+        };
+        let [long_m, wide_m] = catch.size_m();
+        let size = format!(
+            "{long_m:.1} m along the launch, {wide_m:.1} m across, upper side at {:.2} m; {}",
+            sheet.hall.catch.height_m,
+            sides(&catch)
+        );
+        rows.push(row(kind.into(), sheet.around().in_hall(middle_m(&catch)), size));
+    }
     for rung in sheet.rungs {
         let Some(region) = &rung.region else { continue };
         let name = format!("95 % region from {} m", height(rung.height_m));
@@ -57,11 +70,10 @@ fn middle_m(area: &Area) -> [f64; 2] {
 }
 
 fn sides(area: &Area) -> String {
-    let ([back, ahead], [right, left]) = (area.along_m, area.across_m);
-    format!(
-        "{:.1} m behind to {ahead:.1} m ahead, {:.1} m right to {left:.1} m left",
-        -back, -right
-    )
+    let [back, ahead, right, left] = area.outward_m();
+    let back =
+        if back < 0.0 { format!("{:.1} m ahead", -back) } else { format!("{back:.1} m behind") };
+    format!("{back} to {ahead:.1} m ahead, {right:.1} m right to {left:.1} m left")
 }
 
 pub(super) fn stopping(sheet: &Sheet<'_>) -> Section {

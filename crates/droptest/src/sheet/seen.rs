@@ -6,7 +6,7 @@ use super::contents::{Block, Page, Section};
 use super::drawing::height;
 use super::ladder::COLUMNS;
 use super::words::Words;
-use crate::Reading;
+use crate::{Next, Reading};
 
 /// What was seen, and what it comes to.
 #[derive(Debug, Clone, Copy)]
@@ -21,21 +21,29 @@ impl Seen<'_> {
     pub(super) fn section(&self) -> Section {
         let reading = self.reading;
         let holds = reading.stops.is_empty();
-        let words = match (holds, reading.next_m) {
+        let words = match (holds, reading.next) {
             (false, _) => "STOP".into(),
-            (true, Some(next_m)) => format!("Go on, to {} m", height(next_m)),
+            (true, Some(Next { height_m, drops })) => {
+                format!(
+                    "Go on at {} m: {drops} drops or more before going higher",
+                    height(height_m)
+                )
+            }
             (true, None) => "Go on from the highest release".into(),
         };
         let mut blocks = vec![Block::Verdict { holds, words: words.into() }];
         if !holds {
             blocks.push(Block::List(reading.stops.iter().map(|s| s.to_string().into()).collect()));
         }
-        let (next, seen) =
-            ("The ladder's bands are those of drops to come, by what was seen.", reading.seen);
-        let chance = reading.surprise;
+        let ladder = match holds {
+            true => "The ladder's bands are those of drops to come, by what was seen.",
+            false => "The ladder holds what was seen; there are no rows for more.",
+        };
         let told = format!(
-            "{seen} drops were seen; chance that a robot of the plan goes with it as badly or worse: \
-             {chance:.3} (below 0.01: stop). {next}"
+            "{} drops were seen. If a robot of the plan made such ladders, {:.1} in 100 would go as badly \
+             with it or worse; below 1 means stop. {ladder}",
+            reading.seen,
+            100.0 * reading.surprise
         );
         blocks.push(Block::Text(told.into()));
         Section { heading: "By what was seen".into(), blocks, page: Page::Together }
