@@ -135,7 +135,8 @@ fn faults(told: &Told<'_>, text: &mut String) {
 
 fn room(told: &Told<'_>, text: &mut String) {
     let (keep_out, least) = (&told.plan.keep_out, &told.plan.least);
-    let [long_m, wide_m] = keep_out.size_m();
+    let [behind, ahead, right, left] = keep_out.outward_m();
+    let (long_m, wide_m) = (behind + ahead, right + left);
     let area = format!("{long_m:.1} × {wide_m:.1} m: {} of the release", around_release(keep_out));
     line(text, "Keep-out area", &area);
     let people = if least.people_m.is_finite() {

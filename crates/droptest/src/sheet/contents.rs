@@ -164,7 +164,8 @@ fn rests_on(sheet: &Sheet<'_>) -> String {
 
 fn plan(sheet: &Sheet<'_>) -> Section {
     let drawing = Drawing::of(sheet);
-    let [long_m, wide_m] = sheet.plan.keep_out.size_m();
+    let [behind, ahead, right, left] = sheet.plan.keep_out.outward_m();
+    let (long_m, wide_m) = (behind + ahead, right + left);
     let catch = match sheet.hall.catch.kind {
         CatchKind::Net => "a net",
         CatchKind::Mat => "a mat",
