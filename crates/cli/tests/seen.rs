@@ -192,7 +192,10 @@ fn twin_a_sheet_for_the_second_rung() {
     let object: Value =
         serde_json::from_str(&answer(&files.drop(&["--json", "--sheet", &sheet]))).unwrap();
     let text = std::fs::read_to_string(sheet).unwrap();
-    assert!(text.contains("Go on at 2 m: 1 drops or more before going higher"), "{text}");
+    assert!(
+        text.contains("Go on at 2.0 m: 1 drop or more from there before going higher"),
+        "{text}"
+    );
     let cells = |line: &str| line.split('|').map(|cell| cell.trim().to_owned()).collect::<Vec<_>>();
     let rows: Vec<Vec<String>> = text.lines().map(cells).collect();
     let has = |row: &[&str]| rows.iter().any(|own| own.iter().eq(row.iter()));

@@ -75,6 +75,17 @@ pub struct Next {
     pub drops: usize,
 }
 
+impl std::fmt::Display for Next {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        let drops = if self.drops == 1 { "drop" } else { "drops" };
+        write!(
+            f,
+            "go on at {:.1} m: {} {drops} or more from there before going higher",
+            self.height_m, self.drops
+        )
+    }
+}
+
 /// What drops to come from one height will be like.
 #[derive(Debug, Clone)]
 pub struct Narrowed {

@@ -57,16 +57,17 @@ pub struct Drop {
 
     /// Tell how many drops each tell two gaits apart by so many metres of distance [default: one standard
     /// deviation].
-    #[arg(long, value_name = "M", value_parser = metres)]
+    #[arg(long, value_name = "M", value_parser = metres, allow_hyphen_values = true)]
     pub difference_m: Option<f64>,
 
     /// How often that difference is to be seen, where it is there.
-    #[arg(long, value_name = "P", default_value_t = 0.8, value_parser = power)]
+    #[arg(long, value_name = "P", default_value_t = 0.8, value_parser = power,
+        allow_hyphen_values = true)]
     pub power: f64,
 
     /// Tell how many drops give the mean distance to ± so many metres [default: half a standard
     /// deviation].
-    #[arg(long, value_name = "M", value_parser = metres)]
+    #[arg(long, value_name = "M", value_parser = metres, allow_hyphen_values = true)]
     pub within_m: Option<f64>,
 
     /// Print JSON.

@@ -1,7 +1,7 @@
 //! What was seen at the rungs so far, in words and as JSON.
 
 use serde_json::{Value, json};
-use undulift_droptest::{Narrowed, Next, Reading};
+use undulift_droptest::{Narrowed, Reading};
 use undulift_flight::Spread;
 
 use super::object;
@@ -36,11 +36,7 @@ pub fn answer(reading: &Reading, text: &mut String) {
         line(text, "", &row(rung));
     }
     let verdict = match reading.next {
-        Some(Next { height_m, drops }) => {
-            format!(
-                "go on at {height_m:.1} m: {drops} drops or more from there before going higher"
-            )
-        }
+        Some(next) => next.to_string(),
         None => "go on from the highest release, with drops as they are to come".into(),
     };
     line(text, "Verdict", &verdict);

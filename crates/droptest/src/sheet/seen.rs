@@ -6,7 +6,7 @@ use super::contents::{Block, Page, Section};
 use super::drawing::height;
 use super::ladder::COLUMNS;
 use super::words::Words;
-use crate::{Next, Reading};
+use crate::Reading;
 
 /// What was seen, and what it comes to.
 #[derive(Debug, Clone, Copy)]
@@ -23,12 +23,7 @@ impl Seen<'_> {
         let holds = reading.stops.is_empty();
         let words = match (holds, reading.next) {
             (false, _) => "STOP".into(),
-            (true, Some(Next { height_m, drops })) => {
-                format!(
-                    "Go on at {} m: {drops} drops or more before going higher",
-                    height(height_m)
-                )
-            }
+            (true, Some(next)) => next.to_string().replacen('g', "G", 1),
             (true, None) => "Go on from the highest release".into(),
         };
         let mut blocks = vec![Block::Verdict { holds, words: words.into() }];
