@@ -13,7 +13,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 use anyhow::Context;
 use undulift_design::{Design, DesignErrors, Hall, SeenDrop, read_seen};
 use undulift_droptest::{
-    Drop, DropError, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung,
+    Drop, DropError, Dropping, Flown, Ladder, Measuring, Misfit, Plan, Reading, Rung, Truth,
     cautions_in_a_line, misfits,
 };
 
@@ -159,7 +159,12 @@ fn told<'a>(
         of_height().map(|(height_m, drops)| Rung::of(*height_m, drops, &around)).collect();
     let flown = of_height().map(|(&height_m, drops)| Flown { height_m, drops });
     let flown: Vec<Flown<'_>> = flown.collect();
-    let read = |seen: &'a Vec<SeenDrop>| Ok((Ladder::of(&flown).read(seen, args.seed)?, &seen[..]));
+    let read = |seen: &'a Vec<SeenDrop>| {
+        // None of the launches that were flown is flown again.
+        let first = args.flights as usize;
+        let fly = |height_m: f64, truths: &[Truth]| dropping.fly_such(truths, height_m, first);
+        Ok((Ladder::of(&flown).read(seen, args.seed, fly)?, &seen[..]))
+    };
     // Heights that Ctrl-C left out tell nothing.
     let seen = asked.seen.as_ref().filter(|_| complete);
     let reading: Result<_, DropError> = seen.map(read).transpose();

@@ -170,6 +170,14 @@ impl<'h> Dropping<'h> {
         Settings { max_time_s: LONGEST_S, through_inversion: true, floor_m, ..Settings::default() }
     }
 
+    /// Sound drops of robots that are like these, in parallel.
+    ///
+    /// - `first`: number of the first drop's launch
+    pub fn fly_such(&self, truths: &[Truth], height_m: f64, first: usize) -> Vec<Drop> {
+        let one = |(k, truth): (usize, &Truth)| self.fly_one(*truth, height_m, first + k);
+        truths.par_iter().enumerate().map(one).collect()
+    }
+
     /// A sound drop of a robot that is like this, with the launch of that number.
     pub fn fly_one(&self, truth: Truth, height_m: f64, number: usize) -> Drop {
         let (mut design, mut random) = self.launch(height_m, number);

@@ -2,7 +2,8 @@
 //!
 //! A robot's truth (how far the model is off, what its servos reach) is the same in all its drops.
 //! So drops that were seen tell which truths are likely, and every flown drop counts by the
-//! chance of what was seen, were its truth the real one. Nothing is flown anew. Whether any truth goes
+//! chance of what was seen, were its truth the real one; where too few count, more are flown of robots
+//! drawn by those chances. Whether any truth goes
 //! with what was seen at all is judged beside ladders drawn of truths that do.
 
 mod evidence;
@@ -20,17 +21,22 @@ use evidence::{Evidence, grid};
 use likeness::Likeness;
 use measures::{Counted, MEASURES, of_seen, tilt_deg, tilt_rad, with_error_rad};
 pub use stop::Stop;
-use weights::Weights;
+use weights::{Likely, Weights};
 
 /// Chance below which something seen is a surprise.
 const SURPRISING: f64 = 0.01;
-/// Shares of the next rung's drops that may miss the catch, and that may touch anything.
+/// Shares of the next rung's drops that may miss the catch, turn over, and touch anything.
 const MOST_MISSING: f64 = 0.05;
+const MOST_TURNING: f64 = 0.05;
 const MOST_TOUCHING: f64 = 0.01;
 /// Standard errors by which one measure must be off to be called the reason.
 const ALONE: f64 = 2.0;
 /// Drops with a distance from a height, before the next.
 const ENOUGH: usize = 3;
+/// Flown drops of equal weight that must be left for a height's shares and bands.
+const LEFT: f64 = 400.0;
+/// Drops that are flown anew where fewer are.
+const ANEW: usize = 1000;
 
 /// Drops that were flown from one height.
 #[derive(Debug, Clone, Copy)]
@@ -58,10 +64,6 @@ pub struct Reading {
     pub lift: Option<Spread>,
     /// Real drag over computed drag, likewise.
     pub drag: Option<Spread>,
-    /// Flown drops of equal weight that would tell as much as those of the highest rung do.
-    pub effective: f64,
-    /// Power to which chances were taken, so that enough flown drops count; 1 where enough do.
-    pub power: f64,
     /// What drops to come will be like.
     pub rungs: Vec<Narrowed>,
 }
@@ -101,6 +103,10 @@ pub struct Narrowed {
     pub before: Option<Bands>,
     /// By what was seen.
     pub now: Option<Bands>,
+    /// Flown drops of equal weight that would tell as much as those that `now` is of.
+    pub effective: f64,
+    /// Shares of the plan that turn over and that miss the catch.
+    pub planned: [f64; 2],
     /// Share that turns over.
     pub turned_over: f64,
     /// Share that misses the catch.
@@ -156,26 +162,44 @@ impl<'d> Rung<'d> {
         tilts_rad.reduce(f64::max).map(with_error_rad)
     }
 
-    fn narrowed(&self, weights: &Weights, [seen, measured]: [usize; 2]) -> Narrowed {
-        let whole: f64 = weights.each.iter().sum();
-        let share = |holds: fn(&Outcome) -> bool| {
-            let holding = self.outcomes.iter().zip(&weights.each).filter(|(o, _)| holds(o));
-            // A sum of nothing is −0.
-            (0.0 + holding.map(|(_, weight)| weight).sum::<f64>()) / whole.max(f64::MIN_POSITIVE)
-        };
+    /// - `now`: drops to come, by their weights
+    fn narrowed(
+        &self,
+        now: &[&Outcome],
+        weights: &Weights,
+        [seen, measured]: [usize; 2],
+    ) -> Narrowed {
         let touches = |o: &Outcome| o.clearances.walls_m < 0.0 || o.clearances.people_m < 0.0;
+        let even = Weights::even(self.outcomes.len());
         Narrowed {
             height_m: self.height_m,
             seen,
             measured,
             flown: self.outcomes.len(),
             before: Bands::of(&self.outcomes),
-            now: Bands::to_come(&self.outcomes, &weights.each),
-            turned_over: share(|outcome| outcome.summary.inverted),
-            missed_catch: share(|outcome| !outcome.caught),
-            touching: share(touches),
+            now: Bands::to_come(now, &weights.each),
+            effective: weights.effective,
+            planned: [turns_over, misses].map(|holds| share(&self.outcomes, &even, holds)),
+            turned_over: share(now, weights, turns_over),
+            missed_catch: share(now, weights, misses),
+            touching: share(now, weights, touches),
         }
     }
+}
+
+fn turns_over(outcome: &Outcome) -> bool {
+    outcome.summary.inverted
+}
+
+fn misses(outcome: &Outcome) -> bool {
+    !outcome.caught
+}
+
+fn share(outcomes: &[&Outcome], weights: &Weights, holds: fn(&Outcome) -> bool) -> f64 {
+    let whole: f64 = weights.each.iter().sum();
+    let holding = outcomes.iter().zip(&weights.each).filter(|(outcome, _)| holds(outcome));
+    // A sum of nothing is −0.
+    (0.0 + holding.map(|(_, weight)| weight).sum::<f64>()) / whole.max(f64::MIN_POSITIVE)
 }
 
 impl<'d> Ladder<'d> {
@@ -187,11 +211,18 @@ impl<'d> Ladder<'d> {
     /// What was seen comes to.
     ///
     /// - `seed`: of the ladders that are drawn to compare with
+    /// - `fly`: sound drops of such robots from a height, flown where too few of those that were flown
+    ///   beforehand count
     ///
     /// # Errors
     ///
     /// [`DropError::TooFewToRead`] where too few drops from a height that was seen were flown.
-    pub fn read(&self, seen: &[SeenDrop], seed: u64) -> Result<Reading, DropError> {
+    pub fn read(
+        &self,
+        seen: &[SeenDrop],
+        seed: u64,
+        fly: impl Fn(f64, &[Truth]) -> Vec<Drop>,
+    ) -> Result<Reading, DropError> {
         // What missed the catch flew as it would; what went wrong otherwise tells of no truth.
         let counted: Vec<Counted> = seen
             .iter()
@@ -203,21 +234,28 @@ impl<'d> Ladder<'d> {
         }
         let likenesses: Vec<Option<&Likeness>> =
             self.rungs.iter().map(|rung| rung.likeness.as_ref().ok()).collect();
-        let weights: Vec<Weights> = self
-            .rungs
-            .iter()
-            .map(|rung| Weights::of(&rung.truths, &likenesses, &counted))
-            .collect();
         let of_rung = |rung_idx: usize| seen.iter().filter(move |drop| drop.rung_idx == rung_idx);
         let counts = |rung_idx: usize| {
             let has_distance = |(idx, m): &&Counted| *idx == rung_idx && !m[0].is_nan();
             [of_rung(rung_idx).count(), counted.iter().filter(has_distance).count()]
         };
-        let both = self.rungs.iter().zip(&weights).enumerate();
-        let narrowed: Vec<Narrowed> =
-            both.map(|(idx, (rung, weights))| rung.narrowed(weights, counts(idx))).collect();
         let surprise = Evidence::new(&likenesses, &counted).surprise(seed);
-        let next = narrowed.iter().find(|rung| rung.measured < ENOUGH);
+        let likely = Likely::of(&likenesses, &counted, seed);
+        let next_idx = (0..self.rungs.len()).find(|&rung_idx| counts(rung_idx)[1] < ENOUGH);
+        let narrowed: Vec<Narrowed> = (0..self.rungs.len())
+            .map(|rung_idx| {
+                let (rung, counts) = (&self.rungs[rung_idx], counts(rung_idx));
+                let weights = Weights::of(&rung.truths, &likenesses, &counted);
+                // Nothing is to come from below, or where no robot goes with what was seen.
+                let to_come = next_idx.is_none_or(|next_idx| rung_idx >= next_idx);
+                if weights.effective >= LEFT || !to_come || surprise < SURPRISING {
+                    return rung.narrowed(&rung.outcomes, &weights, counts);
+                }
+                let drops = fly(rung.height_m, &likely.draw(ANEW));
+                let (_, anew) = sound(&drops);
+                rung.narrowed(&anew, &Weights::even(anew.len()), counts)
+            })
+            .collect();
         let mut stops = Vec::new();
         if surprise < SURPRISING {
             stops.push(self.surprising(surprise, &counted));
@@ -227,15 +265,21 @@ impl<'d> Ladder<'d> {
             stops.extend(badly_ended(&of_rung, now));
             stops.extend(tilted(&of_rung, rung));
         }
-        stops.extend(next.into_iter().flat_map(ahead));
+        // Once enough was seen from every height, more come from the highest.
+        stops.extend(
+            next_idx
+                .map_or(narrowed.last(), |idx| narrowed.get(idx))
+                .map(ahead)
+                .into_iter()
+                .flatten(),
+        );
         let highest_idx = seen.iter().map(|drop| drop.rung_idx).max().unwrap_or(0);
         let skipped = narrowed[..highest_idx].iter().filter(|rung| rung.seen == 0);
-        let top = self.rungs.last().zip(weights.last());
         let of_truth = |value: fn(&Truth) -> f64| {
-            let (rung, weights) = top?;
-            let values = rung.truths.iter().map(value).zip(weights.each.iter().copied());
+            let values = likely.truths.iter().map(value).zip(likely.weights.each.iter().copied());
             Spread::to_come(&values.collect::<Vec<_>>())
         };
+        let next = next_idx.map(|idx| &narrowed[idx]);
         Ok(Reading {
             stops,
             seen: seen.len(),
@@ -244,8 +288,6 @@ impl<'d> Ladder<'d> {
             surprise,
             lift: of_truth(Truth::lift),
             drag: of_truth(Truth::drag),
-            effective: top.map_or(0.0, |(_, weights)| weights.effective),
-            power: top.map_or(1.0, |(_, weights)| weights.power),
             rungs: narrowed,
         })
     }
@@ -309,37 +351,42 @@ fn badly_ended(seen: &[&SeenDrop], now: &Narrowed) -> Vec<Stop> {
     if let drops @ 1.. = ended(Ended::Failed) {
         stops.push(Stop::Failed { drops, of, height_m });
     }
-    // One of those that were flown more than there was, so that no share is 0.
-    let share = |share: f64| {
-        let flown = now.flown as f64;
-        (share * flown + 1.0) / (flown + 1.0)
-    };
     let (inverted, missed) = (ended(Ended::Inverted), ended(Ended::MissedCatch));
-    if is_surprising(inverted, of, share(now.turned_over)) {
-        let expected = 100.0 * now.turned_over;
+    let [turning, missing] = now.planned;
+    if is_surprising(inverted, of, turning) {
+        let expected = 100.0 * turning;
         stops.push(Stop::TurnedOver { drops: inverted, of, height_m, expected });
     }
-    if is_surprising(missed, of, share(now.missed_catch)) {
-        let expected = 100.0 * now.missed_catch;
+    if is_surprising(missed, of, missing) {
+        let expected = 100.0 * missing;
         stops.push(Stop::MissedCatch { drops: missed, of, height_m, expected });
     }
     stops
 }
 
-/// Whether so many of all are too many for a share.
+/// Whether so many of all are too many for a share; one is where none of those flown did so.
 fn is_surprising(drops: usize, of: usize, share: f64) -> bool {
-    let as_many = Binomial::new(share.clamp(0.0, 1.0), of as u64)
-        .map_or(1.0, |binomial| drops.checked_sub(1).map_or(1.0, |k| binomial.sf(k as u64)));
-    as_many < SURPRISING
+    if drops == 0 || share <= 0.0 {
+        return drops > 0;
+    }
+    let as_many = Binomial::new(share.min(1.0), of as u64);
+    as_many.map_or(1.0, |binomial| binomial.sf(drops as u64 - 1)) < SURPRISING
 }
 
 /// What the next rung must not bring.
 fn ahead(next: &Narrowed) -> Vec<Stop> {
-    let Narrowed { height_m, touching, missed_catch, .. } = *next;
+    let Narrowed { height_m, touching, missed_catch, turned_over, .. } = *next;
+    if next.now.is_none() {
+        return vec![Stop::NextUnknown { height_m }];
+    }
     let mut stops = Vec::new();
     if touching > MOST_TOUCHING {
         let (share, most) = (100.0 * touching, 100.0 * MOST_TOUCHING);
         stops.push(Stop::NextTouches { height_m, share, most });
+    }
+    if turned_over > MOST_TURNING {
+        let (share, most) = (100.0 * turned_over, 100.0 * MOST_TURNING);
+        stops.push(Stop::NextTurnsOver { height_m, share, most });
     }
     if missed_catch > MOST_MISSING {
         let (share, most) = (100.0 * missed_catch, 100.0 * MOST_MISSING);
@@ -353,12 +400,13 @@ mod tests {
     use super::*;
 
     /// By hand, 1 − 0.99⁵ = 4.9 % for one of five at 1 %, 10·0.01² = 0.1 % for two of them; none of any
-    /// surprises nobody.
+    /// surprises nobody, one where none was to be does, however many went well.
     #[test]
     fn analytic_too_many_of_five() {
         assert!(!is_surprising(1, 5, 0.01));
         assert!(is_surprising(2, 5, 0.01));
         assert!(is_surprising(1, 5, 0.001));
+        assert!(is_surprising(1, 500, 0.0));
         assert!(!is_surprising(0, 5, 0.0));
         assert!(!is_surprising(5, 5, 1.0));
     }

@@ -7,12 +7,12 @@ use rand::SeedableRng;
 use rand_xoshiro::Xoshiro256PlusPlus;
 use rayon::prelude::*;
 use undulift_design::{Ended, Hall, SeenDrop};
-use undulift_droptest::{Bands, Dropping, Flown, Ladder, Narrowed, Outcome, Truth};
+use undulift_droptest::{Bands, Dropping, Flown, Ladder, Narrowed, Outcome, Reading, Truth};
 use undulift_flight::{Spread, Summary};
 
 const HALLS: usize = 200;
 /// Drops that are flown beforehand from each height.
-const FLOWN: usize = 1500;
+const FLOWN: usize = 2500;
 /// Drops that are seen from each height.
 const SEEN: usize = 5;
 
@@ -61,6 +61,12 @@ impl Halls {
             peak_tilt_rad: Some(summary.peak_roll_rad.max(summary.peak_pitch_rad)),
             ended,
         }
+    }
+
+    fn read(&self, seen: &[SeenDrop]) -> Reading {
+        let fly =
+            |height_m: f64, truths: &[Truth]| self.dropping.fly_such(truths, height_m, 500_000);
+        self.ladder.read(seen, 5, fly).unwrap()
     }
 
     /// Seen at the lowest rungs of one hall.
@@ -114,7 +120,7 @@ fn twin_bands_are_narrower_and_still_hold() {
     let halls = halls();
     let one = |hall: usize| {
         let truth = truth_of(hall);
-        let reading = halls.ladder.read(&halls.seen_at(truth, hall, 2), 5).unwrap();
+        let reading = halls.read(&halls.seen_at(truth, hall, 2));
         assert_eq!(reading.next.map(|next| next.height_m), Some(7.0));
         let came = (0..SEEN).map(|k| halls.outcome(truth, 3, number(hall) + 50 + k));
         (rows(&reading.rungs[3], &came.collect::<Vec<_>>()), reading.stops.len())
@@ -147,7 +153,7 @@ fn twin_a_truth_outside_of_the_spread_says_stop() {
         let stops = |hall: &usize| {
             let truth = Truth { doubt, ..truth_of(*hall) };
             let seen = halls.seen_at(truth, *hall, 3);
-            !halls.ladder.read(&seen, 5).unwrap().stops.is_empty()
+            !halls.read(&seen).stops.is_empty()
         };
         let stopped = (0..HALLS).into_par_iter().filter(stops).count();
         println!("doubt {doubt}: {stopped} of {HALLS} stop");

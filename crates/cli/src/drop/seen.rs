@@ -71,13 +71,6 @@ pub fn warnings(reading: &Reading) -> Vec<String> {
             skipped_m.join(", ")
         ));
     }
-    if reading.power < 1.0 {
-        warnings.push(
-            "what was seen says more than the flown drops can tell, so bands are wider than they could be; \
-             more --flights make them narrower"
-                .into(),
-        );
-    }
     warnings
 }
 
@@ -88,6 +81,7 @@ pub fn object(reading: &Reading) -> Value {
         let before = rung.before.as_ref().map(object::bands);
         object.insert("height_m".into(), json!(rung.height_m));
         object.insert("seen".into(), json!(rung.seen));
+        object.insert("effective_flights".into(), json!(rung.effective));
         object.insert("turned_over_share".into(), json!(rung.turned_over));
         object.insert("missed_catch_share".into(), json!(rung.missed_catch));
         object.insert("touching_share".into(), json!(rung.touching));
@@ -103,7 +97,6 @@ pub fn object(reading: &Reading) -> Value {
         "chance": reading.surprise,
         "lift_scale": reading.lift.as_ref().map(json::percentiles),
         "drag_scale": reading.drag.as_ref().map(json::percentiles),
-        "effective_flights": reading.effective,
         "warnings": warnings(reading),
         "ladder": reading.rungs.iter().map(rung).collect::<Vec<_>>(),
     })

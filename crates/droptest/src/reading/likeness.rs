@@ -10,8 +10,8 @@ use rand::Rng;
 use super::measures::{MEASURED_TO, MEASURES, Measures, of_outcome};
 use crate::{DropError, Outcome, Truth};
 
-/// Terms of a mean: up to the cube of the doubt, the square of the wave, and both together.
-const TERMS: usize = 7;
+/// Terms of a mean: up to the fifth power of the doubt, the square of the wave, and both together.
+const TERMS: usize = 10;
 /// Terms of a logarithm of scatter: up to the square of the doubt.
 const SCATTER_TERMS: usize = 3;
 /// Least number of drops that they are found from.
@@ -27,6 +27,8 @@ pub struct Likeness {
     means: [SVector<f64, TERMS>; MEASURES],
     /// Of the logarithms of the scatters.
     scatters: [SVector<f64, SCATTER_TERMS>; MEASURES],
+    /// Ends of those logarithms among the drops that were flown: beyond, nothing is known.
+    ends: [[f64; 2]; MEASURES],
     /// Of what is left over, by the scatter.
     together: Matrix4<f64>,
     /// What is left over of every drop, by the scatter.
@@ -52,7 +54,8 @@ impl Likeness {
         let together = squares / upright.len() as f64;
         let (means, scatters) =
             (rows.each_ref().map(|r| r.mean), rows.each_ref().map(|r| r.scatter));
-        Ok(Self { means, scatters, together, left })
+        let ends = rows.each_ref().map(|row| row.ends);
+        Ok(Self { means, scatters, ends, together, left })
     }
 
     /// What a drop measures on average.
@@ -69,7 +72,10 @@ impl Likeness {
 
     fn scatter(&self, truth: Truth) -> Vector4<f64> {
         let terms = scatter_terms(truth);
-        Vector4::from_fn(|measure, _| self.scatters[measure].dot(&terms).exp())
+        Vector4::from_fn(|measure, _| {
+            let [low, high] = self.ends[measure];
+            self.scatters[measure].dot(&terms).clamp(low, high).exp()
+        })
     }
 
     /// How far the mean of some values is off that of a truth, by its own scatter.
@@ -131,6 +137,8 @@ fn upright(truths: &[Truth], outcomes: &[&Outcome]) -> Vec<(Truth, Measures)> {
 struct Measured {
     mean: SVector<f64, TERMS>,
     scatter: SVector<f64, SCATTER_TERMS>,
+    /// Of its logarithm.
+    ends: [f64; 2],
     /// What is left over beside the mean: shape (drops).
     off: DVector<f64>,
     /// The same by the scatter.
@@ -148,9 +156,11 @@ impl Measured {
         let least = 0.1 * MEASURED_TO[measure];
         let log = off.map(|off| 0.5 * ((off * off + least * least).ln() - MEAN_LOG_SQUARE));
         let scatter: SVector<f64, SCATTER_TERMS> = fitted(&doubts, &log);
-        let scatters = (doubts * scatter).map(f64::exp);
+        let logs = doubts * scatter;
+        let ends = [logs.min(), logs.max()];
+        let scatters = logs.map(f64::exp);
         let left = off.component_div(&scatters).iter().copied().collect();
-        Self { mean, scatter, off, left }
+        Self { mean, scatter, ends, off, left }
     }
 }
 
@@ -193,7 +203,7 @@ fn evened(truth: Truth) -> f64 {
 
 fn terms(truth: Truth) -> SVector<f64, TERMS> {
     let (u, w) = (truth.doubt, evened(truth));
-    SVector::from([1.0, u, u * u, u * u * u, w, w * w, u * w])
+    SVector::from([1.0, u, u * u, u.powi(3), u.powi(4), u.powi(5), w, w * w, u * w, u * u * w])
 }
 
 fn scatter_terms(truth: Truth) -> SVector<f64, SCATTER_TERMS> {
@@ -230,6 +240,7 @@ mod tests {
         Likeness {
             means: [first(4.0), first(0.1), first(0.8), first(3.0)],
             scatters: [-1.0, -2.0, -3.0, -1.5].map(|log: f64| SVector::from([log, 0.3, 0.0])),
+            ends: [[-9.0, 9.0]; 4],
             together: Matrix4::from_fn(|a, b| if a == b { 1.0 } else { 0.4 }),
             left: vec![Vector4::repeat(0.5)],
         }

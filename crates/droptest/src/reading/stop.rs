@@ -121,6 +121,27 @@ pub enum Stop {
         /// %.
         most: f64,
     },
+    /// Nothing is known of the next height.
+    #[error(
+        "no drop from {height_m:.1} m could be flown, so what it would do there isn't known; don't go as high"
+    )]
+    NextUnknown {
+        /// m.
+        height_m: f64,
+    },
+    /// By what was seen, too many of the next height's drops turn over.
+    #[error(
+        "from {height_m:.1} m, {share:.1} % of drops by robots like this one would turn over, but at most \
+         {most:.0} % may; tune the gait, or don't go as high"
+    )]
+    NextTurnsOver {
+        /// m.
+        height_m: f64,
+        /// %.
+        share: f64,
+        /// %.
+        most: f64,
+    },
     /// By what was seen, too many of the next height's drops miss the catch.
     #[error(
         "from {height_m:.1} m, {share:.1} % of drops by robots like this one would miss the catch, but at most \

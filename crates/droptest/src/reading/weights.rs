@@ -1,5 +1,7 @@
 //! How much each flown drop still counts after what was seen.
 
+use rand::SeedableRng;
+use rand_xoshiro::Xoshiro256PlusPlus;
 use rayon::prelude::*;
 
 use super::evidence::likeness;
@@ -7,11 +9,8 @@ use super::likeness::Likeness;
 use super::measures::{Counted, Kinds, MEASURES};
 use crate::Truth;
 
-/// As many drops of equal weight must be left, or half of what there are.
-const LEFT: f64 = 100.0;
-
-/// Halvings in the search for how far chances count.
-const HALVINGS: usize = 40;
+/// Truths that the likely ones are drawn from.
+const DRAWN_FROM: usize = 8000;
 
 /// Weights of drops.
 #[derive(Debug, Clone)]
@@ -20,42 +19,61 @@ pub struct Weights {
     pub each: Vec<f64>,
     /// Drops of equal weight that would tell as much.
     pub effective: f64,
-    /// Power to which the chances were taken, 0 to 1.
-    pub power: f64,
 }
 
 impl Weights {
     /// By the chances of what was seen, were each drop's truth the real one.
-    ///
-    /// Where that leaves few drops, the chances are taken to a power below 1, so that enough are left:
-    /// bands are wider then than they could be.
     pub fn of(truths: &[Truth], likenesses: &[Option<&Likeness>], seen: &[Counted]) -> Self {
         let kinds = Kinds::among(seen);
         let logs: Vec<f64> =
             truths.par_iter().map(|&truth| log_of(truth, likenesses, seen, &kinds)).collect();
-        Self::leaving_enough(&logs)
+        Self::from_logs(&logs)
     }
 
-    fn leaving_enough(logs: &[f64]) -> Self {
-        let enough = LEFT.min(0.5 * logs.len() as f64);
-        let full = Self::to_power(logs, 1.0);
-        if full.effective >= enough {
-            return full;
-        }
-        let (mut low, mut high) = (0.0, 1.0);
-        for _ in 0..HALVINGS {
-            let power = 0.5 * (low + high);
-            if Self::to_power(logs, power).effective >= enough { low = power } else { high = power }
-        }
-        Self::to_power(logs, low)
+    /// All alike.
+    pub fn even(drops: usize) -> Self {
+        Self { each: vec![1.0; drops], effective: drops as f64 }
     }
 
-    fn to_power(logs: &[f64], power: f64) -> Self {
+    fn from_logs(logs: &[f64]) -> Self {
         let most = logs.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-        let each: Vec<f64> = logs.iter().map(|log| (power * (log - most)).exp()).collect();
+        let each: Vec<f64> = logs.iter().map(|log| (log - most).exp()).collect();
         let (sum, squares) = each.iter().fold((0.0, 0.0), |(s, q), w| (s + w, q + w * w));
         let effective = if squares > 0.0 { sum * sum / squares } else { 0.0 };
-        Self { each, effective, power }
+        Self { each, effective }
+    }
+}
+
+/// Truths as what was seen makes them likely.
+#[derive(Debug, Clone)]
+pub struct Likely {
+    /// Evenly over all that a plan allows for.
+    pub truths: Vec<Truth>,
+    /// Of each.
+    pub weights: Weights,
+}
+
+impl Likely {
+    /// By what was seen.
+    pub fn of(likenesses: &[Option<&Likeness>], seen: &[Counted], seed: u64) -> Self {
+        let mut random = Xoshiro256PlusPlus::seed_from_u64(seed ^ 0x6c69_6b65);
+        let truths: Vec<Truth> = (0..DRAWN_FROM).map(|_| Truth::draw(&mut random)).collect();
+        let weights = Weights::of(&truths, likenesses, seen);
+        Self { truths, weights }
+    }
+
+    /// So many of them, each as often as it is likely: at even steps of the running sum.
+    pub fn draw(&self, drops: usize) -> Vec<Truth> {
+        let step = self.weights.each.iter().sum::<f64>() / drops as f64;
+        let mut drawn = Vec::with_capacity(drops);
+        let mut running = 0.0;
+        for (truth, weight) in self.truths.iter().zip(&self.weights.each) {
+            running += weight;
+            while drawn.len() < drops && (drawn.len() as f64 + 0.5) * step < running {
+                drawn.push(*truth);
+            }
+        }
+        drawn
     }
 }
 
@@ -73,28 +91,24 @@ mod tests {
     use super::*;
     use approx::assert_relative_eq;
 
-    /// By hand: weights 1, ½ and ½ tell as much as 2²/(1 + ¼ + ¼) = 2.667 alike; to the power 0 all
-    /// count alike.
+    /// By hand: weights 1, ½ and ½ tell as much as 2²/(1 + ¼ + ¼) = 2.667 alike.
     #[test]
     fn analytic_effective_drops() {
         let logs = [-3.0, -3.0 - 2.0_f64.ln(), -3.0 - 2.0_f64.ln()];
-        let full = Weights::to_power(&logs, 1.0);
-        assert_relative_eq!(full.effective, 8.0 / 3.0, epsilon = 1e-12);
-        assert_relative_eq!(full.each[1], 0.5, epsilon = 1e-12);
-        assert_relative_eq!(Weights::to_power(&logs, 0.0).effective, 3.0);
+        let weights = Weights::from_logs(&logs);
+        assert_relative_eq!(weights.effective, 8.0 / 3.0, epsilon = 1e-12);
+        assert_relative_eq!(weights.each[1], 0.5, epsilon = 1e-12);
+        assert_relative_eq!(Weights::even(3).effective, 3.0);
     }
 
-    /// 1000 drops of which one alone is likely: chances are flattened until 100 are left.
+    /// Of weights 1, 0, ½ and ½, eight are drawn 4, 0, 2 and 2 times.
     #[test]
-    fn analytic_enough_drops_are_left() {
-        let logs: Vec<f64> = (0..1000).map(|k| -0.5 * f64::from(k * k)).collect();
-        let weights = Weights::leaving_enough(&logs);
-        assert_relative_eq!(weights.effective, 100.0, max_relative = 1e-6);
-        assert!(weights.power < 0.01, "{}", weights.power);
-        // Half a normal distribution of this scatter tells as much as √π times it.
-        let scatter = weights.power.sqrt().recip();
-        assert_relative_eq!(std::f64::consts::PI.sqrt() * scatter, 100.0, max_relative = 0.02);
-        let even = Weights::leaving_enough(&[-7.0; 30]);
-        assert_eq!((even.effective, even.power), (30.0, 1.0));
+    fn analytic_likely_truths_are_drawn_as_often() {
+        let truths: Vec<Truth> =
+            [0.1, 0.2, 0.3, 0.4].map(|doubt| Truth { doubt, wave: 1.0 }).to_vec();
+        let each = vec![1.0, 0.0, 0.5, 0.5];
+        let likely = Likely { truths, weights: Weights { each, effective: 2.0 } };
+        let drawn: Vec<f64> = likely.draw(8).iter().map(|truth| truth.doubt).collect();
+        assert_eq!(drawn, [0.1, 0.1, 0.1, 0.1, 0.3, 0.3, 0.4, 0.4]);
     }
 }
