@@ -28,8 +28,8 @@ const DROPS_A_RUNG: usize = 200;
 /// And at most, where what was seen is read by them.
 const DROPS_READ_BY: usize = 20_000;
 
-/// Faults whose outermost holds 95 % of all, at 95 % confidence.
-const FAULTS_WANTED: usize = 59;
+/// Drops whose outermost holds 95 % of all, at 95 % confidence.
+const FOR_RANKS: usize = 59;
 
 /// Sound drops that may turn over without a word, %.
 const MOST_TURNED_OVER: f64 = 2.0;
@@ -152,7 +152,8 @@ fn told<'a>(
     let Asked { design, hall, .. } = asked;
     let around = dropping.around();
     let heights_m = &hall.release.heights_m;
-    let drops = ladder.last().context("a hall has a release height")?;
+    let (drops, highest_m) =
+        ladder.last().zip(heights_m.last().copied()).context("a hall has a release height")?;
     let plan = Plan::of(drops, &around).with_context(|| design.name.clone())?;
     let of_height = || heights_m.iter().zip(ladder);
     let rungs: Vec<Rung> =
@@ -178,7 +179,7 @@ fn told<'a>(
         hall,
         misfits: misfits(&plan, &rungs, &around, thickness_m, why_refused),
         plan,
-        how_many: HowMany::of(args, rungs.last().and_then(|rung| rung.distance_sd_m)),
+        how_many: HowMany::of(args, dropping.scatter_m(drops, highest_m, args.flights as usize)),
         rungs,
         measuring: Measuring::of(design, hall.camera),
         reading: reading.with_context(|| design.name.clone())?,
@@ -206,14 +207,21 @@ impl Told<'_> {
             ));
         }
         let faults = self.plan.furthest.map_or(0, |furthest| furthest.of);
-        if self.hall.faults.share > 0.0 && faults < FAULTS_WANTED {
-            let flights = (FAULTS_WANTED as f64 / self.hall.faults.share * 1.3).ceil();
+        if self.hall.faults.share > 0.0 && faults < FOR_RANKS {
+            let flights = (FOR_RANKS as f64 / self.hall.faults.share * 1.3).ceil();
             warnings.push(format!(
-                "{faults} faults say little of where all of them end: {FAULTS_WANTED} hold 95 % at 95 % \
+                "{faults} faults say little of where all of them end: {FOR_RANKS} hold 95 % at 95 % \
                  confidence; --flights {flights:.0} gives about as many"
             ));
         }
         let sound = &self.plan.sound;
+        if sound.flown < FOR_RANKS {
+            warnings.push(format!(
+                "{} sound drops are too few for a region that asks for no distribution, and for anything \
+                 rare: fly {FOR_RANKS} or more, better thousands",
+                sound.flown
+            ));
+        }
         let turned_over = 100.0 * sound.turned_over as f64 / sound.flown.max(1) as f64;
         if turned_over > MOST_TURNED_OVER {
             warnings.push(format!(

@@ -56,9 +56,26 @@ impl Scatter {
     /// - `design`: the one that the scatter is of, or one with the same keys
     /// - `launch`: from 0
     pub fn launch(&self, design: &Design, seed: u64, launch: u64) -> (Design, Vec<f64>) {
+        self.launch_of(design, seed, launch, launch)
+    }
+
+    /// One launch of one of many robots: what is a robot's own, such as its mass, is the same in all of
+    /// its launches; the release, the gait's phase and the wind aren't.
+    ///
+    /// - `robot`, `launch`: from 0; with the same number for both as [`Self::launch`]
+    pub fn launch_of(
+        &self,
+        design: &Design,
+        seed: u64,
+        robot: u64,
+        launch: u64,
+    ) -> (Design, Vec<f64>) {
         let mut changed = design.clone();
         let mut drawn = Vec::new();
-        for (item, change) in self.items.iter().zip(draw(&self.differs, seed, launch)) {
+        let changes = draw(&self.differs, seed, robot).into_iter();
+        let changes = changes.zip(draw(&self.differs, seed, launch));
+        for (item, (own, new)) in self.items.iter().zip(changes) {
+            let change = if item.is_own() { own } else { new };
             match item {
                 Item::Knobs(knobs) => {
                     for knob in knobs {
@@ -75,6 +92,18 @@ impl Scatter {
             }
         }
         (changed, drawn)
+    }
+}
+
+impl Item {
+    /// Whether it is a robot's own.
+    fn is_own(&self) -> bool {
+        let differs = ["launch.", "gait.", "air.wind"];
+        let is_own = |knob: &Knob| !differs.iter().any(|start| knob.key().starts_with(start));
+        match self {
+            Self::Knobs(knobs) => knobs.iter().all(is_own),
+            Self::Mass => true,
+        }
     }
 }
 

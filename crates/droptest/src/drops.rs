@@ -9,8 +9,8 @@
 //! - **servo strength**: the wave's amplitudes × 0.9 to 1;
 //! - **draught**: level wind from anywhere, uniform up to the hall's.
 //!
-//! Doubt and strength are one robot's [`Truth`], the same in all of its drops; the rest differs from
-//! drop to drop.
+//! Doubt and strength are one robot's [`Truth`], the same in all of its drops, and so are its mass, lift,
+//! drag and pressure centre, where the spread has them; release and draught differ from drop to drop.
 
 use std::f64::consts::TAU;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -32,8 +32,12 @@ pub const DRAG_DOUBT: f64 = 0.71;
 /// Least that servos leave of the wave's amplitudes.
 pub const WEAKEST_WAVE: f64 = 0.9;
 
+/// Pairs of drops that scatter is found from, at most and at least.
+const MOST_PAIRS: usize = 1000;
+const FEWEST_PAIRS: usize = 20;
+
 /// Longest drop that is followed, s.
-const LONGEST_S: f64 = 20.0;
+const LONGEST_S: f64 = 300.0;
 /// Absolute temperature of 0 °C, K (exact).
 const ZERO_CELSIUS_K: f64 = 273.15;
 
@@ -170,17 +174,42 @@ impl<'h> Dropping<'h> {
         Settings { max_time_s: LONGEST_S, through_inversion: true, floor_m, ..Settings::default() }
     }
 
-    /// Sound drops of robots that are like these, in parallel.
+    /// Sound drops of as many robots that are like these, in parallel.
     ///
-    /// - `first`: number of the first drop's launch
+    /// - `first`: number of the first robot, and of its launch
     pub fn fly_such(&self, truths: &[Truth], height_m: f64, first: usize) -> Vec<Drop> {
-        let one = |(k, truth): (usize, &Truth)| self.fly_one(*truth, height_m, first + k);
+        let one =
+            |(k, truth): (usize, &Truth)| self.fly_one(*truth, first + k, height_m, first + k);
         truths.par_iter().enumerate().map(one).collect()
     }
 
-    /// A sound drop of a robot that is like this, with the launch of that number.
-    pub fn fly_one(&self, truth: Truth, height_m: f64, number: usize) -> Drop {
-        let (mut design, mut random) = self.launch(height_m, number);
+    /// How distances of one robot scatter from drop to drop (standard deviation), m: each of some sound
+    /// drops again, by the same robot with another launch.
+    ///
+    /// - `first`: number of the first such launch
+    /// - returns nothing where too few stayed upright
+    pub fn scatter_m(&self, drops: &[Drop], height_m: f64, first: usize) -> Option<f64> {
+        let upright_m = |drop: &Drop| {
+            let summary = drop.result.as_ref().ok()?.summary;
+            (!summary.inverted).then_some(summary.distance_m)
+        };
+        let sound: Vec<&Drop> =
+            drops.iter().filter(|drop| drop.fault.is_none()).take(MOST_PAIRS).collect();
+        let apart = |(k, drop): (usize, &&Drop)| {
+            let again = self.fly_one(drop.truth, drop.number, height_m, first + k);
+            Some((upright_m(drop)? - upright_m(&again)?).powi(2))
+        };
+        let squares: Vec<f64> = sound.par_iter().enumerate().filter_map(apart).collect();
+        let pairs = squares.len();
+        (pairs >= FEWEST_PAIRS).then(|| (0.5 * squares.iter().sum::<f64>() / pairs as f64).sqrt())
+    }
+
+    /// A sound drop of a robot that is like this.
+    ///
+    /// - `robot`: what is its own is drawn by this
+    /// - `number`: of its launch
+    pub fn fly_one(&self, truth: Truth, robot: usize, height_m: f64, number: usize) -> Drop {
+        let (mut design, mut random) = self.launch(height_m, robot, number);
         // What all truths have in common is drawn after theirs.
         Truth::draw(&mut random);
         self.widen(&mut design, truth, &mut random);
@@ -188,7 +217,7 @@ impl<'h> Dropping<'h> {
     }
 
     fn one(&self, height_m: f64, number: usize, with_faults: bool, longest_s: f64) -> Drop {
-        let (mut design, mut random) = self.launch(height_m, number);
+        let (mut design, mut random) = self.launch(height_m, number, number);
         let truth = Truth::draw(&mut random);
         self.widen(&mut design, truth, &mut random);
         let fault = FaultKind::draw(&self.around.hall.faults, &mut random);
@@ -200,8 +229,9 @@ impl<'h> Dropping<'h> {
     }
 
     /// The design of one launch, and what the rest of its drop is drawn from.
-    fn launch(&self, height_m: f64, number: usize) -> (Design, Xoshiro256PlusPlus) {
-        let (mut design, _) = self.scatter.launch(&self.design, self.seed, number as u64);
+    fn launch(&self, height_m: f64, robot: usize, number: usize) -> (Design, Xoshiro256PlusPlus) {
+        let (robot, launch) = (robot as u64, number as u64);
+        let (mut design, _) = self.scatter.launch_of(&self.design, self.seed, robot, launch);
         let mut random = Xoshiro256PlusPlus::seed_from_u64(self.seed ^ 0x6472_6f70);
         // Each drop its own stream, far from all others.
         let own: u64 = random.random::<u64>() ^ (number as u64).wrapping_mul(0x9e37_79b9_7f4a_7c15);

@@ -137,14 +137,6 @@ fn sound(drops: &[Drop]) -> (Vec<Truth>, Vec<&Outcome>) {
     sound.filter_map(|drop| Some((drop.truth, drop.result.as_ref().ok()?))).unzip()
 }
 
-/// How distances of one robot scatter from drop to drop (standard deviation), m.
-///
-/// - returns nothing where too few stayed upright
-pub(crate) fn distance_scatter_m(drops: &[Drop]) -> Option<f64> {
-    let (truths, outcomes) = sound(drops);
-    likeness::distance_scatter_m(&truths, &outcomes)
-}
-
 impl<'d> Rung<'d> {
     fn of(flown: &Flown<'d>) -> Self {
         let (truths, outcomes) = sound(flown.drops);

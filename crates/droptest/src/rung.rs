@@ -1,6 +1,5 @@
 //! One height of the release ladder: what must be seen there before the next.
 
-use crate::reading::distance_scatter_m;
 use crate::{Area, Around, Bands, Drop, Ellipse, mean_load_factor, region};
 
 /// Sound drops from one height.
@@ -22,9 +21,6 @@ pub struct Rung {
     pub largest_tilt_rad: Option<f64>,
     /// How many turned over on the way.
     pub turned_over: usize,
-    /// How distances of one robot scatter from drop to drop (standard deviation), m; absent where too
-    /// few drops stayed upright to say.
-    pub distance_sd_m: Option<f64>,
     /// Mean force of the stop over weight, from the sink that 95 % stay under.
     pub stop_weights: Option<f64>,
 }
@@ -53,7 +49,6 @@ impl Rung {
             region,
             to_film: ends_m.iter().fold(Area::POINT.with([0.0; 2], reach_m), film),
             film_height_m: height_m + reach_m,
-            distance_sd_m: distance_scatter_m(drops),
             stop_weights: bands.as_ref().map(stop),
             bands,
         }

@@ -131,7 +131,6 @@ fn rung(rung: &Rung) -> Value {
     object.insert("region95".into(), json!(rung.region.as_ref().map(ellipse)));
     object.insert("to_film".into(), area(&rung.to_film));
     object.insert("film_height_m".into(), json!(rung.film_height_m));
-    object.insert("distance_sd_m".into(), json!(rung.distance_sd_m));
     object.insert("mean_stop_weights".into(), json!(rung.stop_weights));
     Value::Object(object)
 }

@@ -7,7 +7,7 @@ use undulift_droptest::{
 };
 use undulift_flight::Spread;
 
-use super::{Told, seen};
+use super::{FOR_RANKS, Told, seen};
 use crate::people::line;
 
 /// The whole answer.
@@ -87,7 +87,7 @@ fn landing(told: &Told<'_>, text: &mut String) {
     line(text, "  at the end", &end);
     line(text, "  tilt at the end", &degrees(bands.end_tilt_rad));
     line(text, "  largest tilt", &degrees(bands.peak_tilt_rad));
-    line(text, "95 % region", &region(&sound.region, sound.scaled));
+    line(text, "95 % region", &region(&sound.region, sound.scaled, sound.flown));
 }
 
 fn degrees(spread: Spread) -> String {
@@ -95,10 +95,13 @@ fn degrees(spread: Spread) -> String {
     format!("{p50:.0}° ({p05:.0} to {p95:.0}°)")
 }
 
-fn region(region: &Ellipse, scaled: Scaled) -> String {
+fn region(region: &Ellipse, scaled: Scaled, landings: usize) -> String {
     let [x, y] = region.centre_m;
     let [a, b] = region.semi_axes_m;
     let why = match scaled {
+        Scaled::Normal if landings < FOR_RANKS => {
+            " if landings are normally distributed, which so few can't show"
+        }
         Scaled::Normal => "",
         Scaled::Ranks => ", made larger for tails longer than a normal distribution's",
     };

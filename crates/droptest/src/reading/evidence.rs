@@ -1,5 +1,6 @@
 //! How well what was seen goes with any of the truths that a plan allows for.
 
+use nalgebra::Vector4;
 use rand::{Rng, SeedableRng};
 use rand_distr::StandardNormal;
 use rand_xoshiro::Xoshiro256PlusPlus;
@@ -48,9 +49,7 @@ impl<'a> Evidence<'a> {
                 let stream = seed ^ number.wrapping_mul(0x9e37_79b9_7f4a_7c15) ^ 0x7365_656e;
                 let mut random = Xoshiro256PlusPlus::seed_from_u64(stream);
                 let truth = Truth::draw(&mut random);
-                let seen = self.seen.iter();
-                let drawn: Vec<Measures> =
-                    seen.map(|counted| self.draw(truth, counted, &mut random)).collect();
+                let drawn = self.draw(truth, &mut random);
                 [self.by_means(&drawn), self.by_each(&drawn)]
             })
             .collect();
@@ -91,17 +90,21 @@ impl<'a> Evidence<'a> {
         -most - logs.iter().map(|log| (log - most).exp()).sum::<f64>().ln()
     }
 
-    fn draw(&self, truth: Truth, (rung_idx, seen): &Counted, random: &mut impl Rng) -> Measures {
-        let of = likeness(self.likenesses, *rung_idx);
-        let drawn = of.drawn(truth, random);
-        let mut measures = [f64::NAN; MEASURES];
-        for k in 0..MEASURES {
-            let error: f64 = random.sample(StandardNormal);
-            if !seen[k].is_nan() {
-                measures[k] = drawn[k] + MEASURED_TO[k] * error;
-            }
-        }
-        measures
+    /// Measures of as many drops of one robot, where anything was measured.
+    fn draw(&self, truth: Truth, random: &mut impl Rng) -> Vec<Measures> {
+        let rungs = self.likenesses.iter();
+        let common: Vec<Option<Vector4<f64>>> =
+            rungs.map(|rung| rung.map(|likeness| likeness.left(random))).collect();
+        let one = |(rung_idx, seen): &Counted| {
+            let of = likeness(self.likenesses, *rung_idx);
+            let own = of.left(random);
+            let drawn = of.drawn(truth, common[*rung_idx].unwrap_or_default(), own);
+            std::array::from_fn(|k| {
+                let error: f64 = random.sample(StandardNormal);
+                if seen[k].is_nan() { f64::NAN } else { drawn[k] + MEASURED_TO[k] * error }
+            })
+        };
+        self.seen.iter().map(one).collect()
     }
 }
 

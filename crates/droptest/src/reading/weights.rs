@@ -5,7 +5,7 @@ use rand_xoshiro::Xoshiro256PlusPlus;
 use rayon::prelude::*;
 
 use super::evidence::likeness;
-use super::likeness::Likeness;
+use super::likeness::{Likeness, telling};
 use super::measures::{Counted, Kinds, MEASURES};
 use crate::Truth;
 
@@ -81,7 +81,8 @@ fn log_of(truth: Truth, likenesses: &[Option<&Likeness>], seen: &[Counted], kind
     let of_kind = |(place, &(rung_idx, measured)): (usize, &(usize, [bool; MEASURES]))| {
         let chances = likeness(likenesses, rung_idx).chances(truth, measured);
         let of = seen.iter().zip(&kinds.of).filter(|(_, kind)| **kind == place);
-        of.map(|((_, measures), _)| chances.log(measures)).sum::<f64>()
+        let drops = seen.iter().filter(|(other, _)| *other == rung_idx).count() as f64;
+        telling(drops) / drops * of.map(|((_, measures), _)| chances.log(measures)).sum::<f64>()
     };
     kinds.known.iter().enumerate().map(of_kind).sum()
 }
