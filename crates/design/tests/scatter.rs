@@ -47,6 +47,24 @@ fn analytic_masses_share_a_factor() {
     }
 }
 
+/// What is a robot's own is the same in all of its launches, the rest isn't; robots differ in both.
+#[test]
+fn twin_a_robot_keeps_what_is_its_own() {
+    for (path, design) in demos() {
+        let scatter = Scatter::of(&design);
+        let columns = scatter.columns();
+        let drawn = |robot, launch| scatter.launch_of(&design, 1, robot, launch).1;
+        let (first, again, other) = (drawn(7, 3), drawn(7, 4), drawn(8, 3));
+        assert_eq!(scatter.launch(&design, 1, 7).1, drawn(7, 7));
+        for (n, name) in columns.iter().enumerate() {
+            let own = ["mass_factor", "air.lift_scale", "air.drag_scale"].contains(&name.as_str())
+                || name.starts_with("section.");
+            assert_eq!(first[n] == again[n], own, "{name} of {}", path.display());
+            assert_eq!(first[n] == other[n], !own, "{name} of {}", path.display());
+        }
+    }
+}
+
 #[test]
 fn spread_none_draws_nothing() {
     let still = design(&format!("spread = \"none\"\n{SOUND}")).read(&[]).unwrap();
