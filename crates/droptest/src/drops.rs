@@ -102,6 +102,13 @@ pub struct Outcome {
     pub clearances: Clearances,
 }
 
+impl Outcome {
+    /// Larger of roll and pitch on the way, rad.
+    pub fn peak_tilt_rad(&self) -> f64 {
+        self.summary.peak_roll_rad.max(self.summary.peak_pitch_rad)
+    }
+}
+
 /// What is dropped, and where.
 #[derive(Debug, Clone)]
 pub struct Dropping<'h> {

@@ -174,7 +174,7 @@ impl Bands {
             speed_m_s: of(|outcome| outcome.summary.speed_m_s)?,
             sink_m_s: of(|outcome| outcome.summary.sink_m_s)?,
             energy_j: of(|outcome| outcome.summary.landing_energy_j)?,
-            peak_tilt_rad: of(|o| o.summary.peak_roll_rad.max(o.summary.peak_pitch_rad))?,
+            peak_tilt_rad: of(Outcome::peak_tilt_rad)?,
             end_tilt_rad: of(|outcome| outcome.tilt_rad[0].abs().max(outcome.tilt_rad[1].abs()))?,
         })
     }

@@ -19,7 +19,7 @@ use undulift_flight::Spread;
 use crate::{Bands, Drop, DropError, Outcome, Truth};
 use evidence::{Evidence, grid};
 use likeness::Likeness;
-use measures::{Counted, MEASURES, of_seen, tilt_deg, tilt_rad, with_error_rad};
+use measures::{Counted, MEASURES, of_seen, tilt_deg, with_error_rad};
 pub use stop::Stop;
 use weights::{Likely, Weights};
 
@@ -150,7 +150,7 @@ impl<'d> Rung<'d> {
         if self.outcomes.iter().any(|outcome| outcome.summary.inverted) {
             return None;
         }
-        let tilts_rad = self.outcomes.iter().map(|outcome| tilt_rad(outcome));
+        let tilts_rad = self.outcomes.iter().map(|outcome| outcome.peak_tilt_rad());
         tilts_rad.reduce(f64::max).map(with_error_rad)
     }
 

@@ -1,6 +1,6 @@
 //! One height of the release ladder: what must be seen there before the next.
 
-use crate::{Area, Around, Bands, Drop, Ellipse, mean_load_factor, region};
+use crate::{Area, Around, Bands, Drop, Ellipse, Outcome, mean_load_factor, region};
 
 /// Sound drops from one height.
 #[derive(Debug, Clone)]
@@ -26,6 +26,12 @@ pub struct Rung {
 }
 
 impl Rung {
+    /// Length, width and height of what a camera must see, rounded up to whole metres.
+    pub fn film_m(&self) -> [f64; 3] {
+        let [long_m, wide_m] = self.to_film.size_m();
+        [long_m, wide_m, self.film_height_m].map(|size_m| (size_m - 1e-9).ceil())
+    }
+
     /// Of drops from one height, those with faults left out.
     pub fn of(height_m: f64, drops: &[Drop], around: &Around<'_>) -> Self {
         let sound = || drops.iter().filter(|drop| drop.fault.is_none());
@@ -40,7 +46,7 @@ impl Rung {
         let stop = |bands: &Bands| {
             mean_load_factor(bands.sink_m_s.p95.max(0.0), around.hall.catch.stopping_m)
         };
-        let tilts = flown().map(|o| o.summary.peak_roll_rad.max(o.summary.peak_pitch_rad));
+        let tilts = flown().map(Outcome::peak_tilt_rad);
         Self {
             height_m,
             largest_tilt_rad: tilts.reduce(f64::max),

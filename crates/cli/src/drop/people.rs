@@ -237,9 +237,8 @@ fn ladder(told: &Told<'_>, text: &mut String) {
         let pair = |spread: &Spread, digits: usize| {
             format!("{:.digits$} to {:.digits$}", spread.p05, spread.p95)
         };
-        let [long_m, wide_m] = rung.to_film.size_m();
-        let up = |size_m: f64| (size_m - 1e-9).ceil();
-        let film = format!("{} × {} × {}", up(long_m), up(wide_m), up(rung.film_height_m));
+        let [long_m, wide_m, high_m] = rung.film_m();
+        let film = format!("{} × {} × {}", long_m, wide_m, high_m);
         let row = format!(
             "{height_m:>6.1}{:>16}{:>16}{:>16}{:>12}{:>9.0}{film:>16}",
             pair(&bands.distance_m, 1),

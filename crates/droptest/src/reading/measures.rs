@@ -47,12 +47,7 @@ const TILT_OFFSET_DEG: f64 = 20.0;
 /// Of a drop that was flown.
 pub fn of_outcome(outcome: &Outcome) -> Measures {
     let summary = &outcome.summary;
-    [summary.distance_m, summary.side_drift_m, summary.time_s, of_tilt(tilt_rad(outcome))]
-}
-
-/// Larger of roll and pitch on the way, rad.
-pub fn tilt_rad(outcome: &Outcome) -> f64 {
-    outcome.summary.peak_roll_rad.max(outcome.summary.peak_pitch_rad)
+    [summary.distance_m, summary.side_drift_m, summary.time_s, of_tilt(outcome.peak_tilt_rad())]
 }
 
 /// A tilt with as much more as twice its error of measuring, rad.

@@ -58,14 +58,10 @@ fn rung(sheet: &Sheet<'_>, rung_idx: usize, least_rows: usize) -> Block {
         Some(weights) => format!("mean stop {weights:.0} weights"),
         None => format!("none of {} drops could be flown: don't drop from here", rung.drops),
     };
-    let [long_m, wide_m] = rung.to_film.size_m();
-    let up = |size_m: f64| (size_m - 1e-9).ceil();
+    let [long_m, wide_m, high_m] = rung.film_m();
     let about = format!(
         "{stop}; film {} m along, {} m across, {} m high; of {} computed drops",
-        up(long_m),
-        up(wide_m),
-        up(rung.film_height_m),
-        rung.drops
+        long_m, wide_m, high_m, rung.drops
     );
     Block::Rung {
         name: name.into(),
